@@ -1,0 +1,7 @@
+"""``python -m lowpoint``."""
+
+import sys
+
+from lowpoint.faces.cli import main
+
+sys.exit(main())

@@ -1,0 +1,1 @@
+"""Headless workbooks: reading, planning, evaluating, and writing cached values back."""

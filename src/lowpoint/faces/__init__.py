@@ -1,0 +1,1 @@
+"""The faces that users meet: thin layers that parse, call and show."""

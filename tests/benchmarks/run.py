@@ -1,0 +1,52 @@
+"""The benchmark command: ``python tests/benchmarks/run.py [--json FILE] [--quick]``.
+
+Every figure is a ratio of two things measured in this one run (machines are noisy), or a count a row. It prints a
+table with the goal beside each figure, writes ``figures.json`` beside this file unless told otherwise, and ends
+with 1 where a goal is missed. Nothing here is part of the test suite.
+"""
+
+from __future__ import annotations
+
+import argparse
+import json
+import platform
+import sys
+from collections.abc import Callable, Iterator
+from pathlib import Path
+
+HERE = Path(__file__).parent
+sys.path.insert(0, str(HERE))
+
+import bench_kernels  # noqa: E402
+import bench_recalc  # noqa: E402
+import bench_start  # noqa: E402
+from figures import Figure  # noqa: E402
+
+SUITES: dict[str, Callable[[bool], Iterator[Figure]]] = {
+    "kernels": bench_kernels.figures,
+    "recalc": bench_recalc.figures,
+    "start": bench_start.figures,
+}
+
+
+def main() -> int:
+    parser = argparse.ArgumentParser(description="Measure Lowpoint against its goals, in ratios.")
+    parser.add_argument("--json", type=Path, default=HERE / "figures.json", help="where the figures are written")
+    parser.add_argument("--quick", action="store_true", help="smaller sizes: a look, not a measurement")
+    parser.add_argument("--only", choices=SUITES, help="one suite")
+    options = parser.parse_args()
+    found: list[Figure] = []
+    for name, suite in SUITES.items():
+        if options.only in (None, name):
+            for figure in suite(options.quick):
+                found.append(figure)
+                print(figure.line(), flush=True)
+    if not options.quick and options.only is None:
+        record = {"python": platform.python_version(), "machine": platform.machine()}
+        data = {"on": record, "figures": [figure.as_data() for figure in found]}
+        options.json.write_text(json.dumps(data, indent=2) + "\n", encoding="utf-8")
+    return 0 if all(figure.met for figure in found) else 1
+
+
+if __name__ == "__main__":
+    sys.exit(main())

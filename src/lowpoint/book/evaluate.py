@@ -7,8 +7,9 @@ from collections.abc import Hashable, Mapping, Sequence
 from itertools import groupby
 from typing import TYPE_CHECKING, Any
 
-from .. import cells
-from ..cells import OMITTED, CellError, Same
+from lowpoint import cells
+from lowpoint.cells import OMITTED, CellError, Same
+
 from .lowering import FIT, Arg, Cells, Computed, Literal, Result, Site
 from .plan import Entry, Plan
 

@@ -98,7 +98,9 @@ class Formula:
                 continue
             if number is not None and not self._scalar_call(number):
                 return False
-            if token.kind in ("braces", "local", "name", "away", "table") or (token.kind == "op" and token.text in "#@:"):
+            if token.kind in ("braces", "local", "name", "away", "table") or (
+                token.kind == "op" and token.text in "#@:"
+            ):
                 return False
             if token.kind == "blank" and self._intersects(i):
                 return False
@@ -147,7 +149,8 @@ class Formula:
                 return False
             if classes.place_class(self.name(number), place) == "A":
                 return True
-            number, place = self.calls[number].parent, self.calls[number].place
+            call = self.calls[number]
+            number, place = call.parent, call.place
         return False
 
     def _intersects(self, blank: int) -> bool:

@@ -67,7 +67,7 @@ _PREFIX = re.compile(r"(?:_xlfn|_xlws|_xll|_xludf)\.", re.IGNORECASE)
 _SERVICE = "ORG.LOWPOINT.FUNCTIONS."
 
 
-class Unreadable(Exception):
+class Unreadable(Exception):  # noqa: N818 - it is caught by its name, as a verdict on a formula
     """Formula text that cannot be read, or should not be; the message is the reason the report gives."""
 
 
@@ -158,7 +158,9 @@ def _sheet_name(prefix: str | None) -> str | None:
 
 
 def calls_in(tokens: Sequence[Token]) -> list[Call]:
-    """Every call and pair of parentheses, outer before inner. Raises Unreadable when they do not match or nest too deep.
+    """Every call and pair of parentheses, outer before inner.
+
+    Raises Unreadable when they do not match or nest too deep.
 
     >>> [(c.name, c.args) for c in calls_in(tokenise("MAX(A1,(2))"))]
     [('MAX', [(1, 2), (3, 6)]), ('', [(4, 5)])]
@@ -216,7 +218,7 @@ def lp_name(stored: str) -> str | None:
     >>> lp_name("[1]!lp.sigma"), lp_name("_xll.LP_SIGMA"), lp_name("ORG.LOWPOINT.FUNCTIONS.SIGMA"), lp_name("SUM")
     ('LP_SIGMA', 'LP_SIGMA', 'LP_SIGMA', None)
     """
-    from ..registry import canonical
+    from lowpoint.registry import canonical
 
     bare = unprefixed(stored.rpartition("!")[2])
     if bare.upper().startswith(_SERVICE):
@@ -240,7 +242,7 @@ def shifted(tokens: Sequence[Token], columns: int) -> Iterator[Token]:
             yield token
             continue
         c1, c2 = (moved_column(part, columns) for part in column_ends(token))
-        inside = 1 <= min(c1, c2) and max(c1, c2) <= LAST_COLUMN
+        inside = min(c1, c2) >= 1 and max(c1, c2) <= LAST_COLUMN
         yield Token("ref", "", token.ref._replace(c1=c1, c2=c2)) if inside else Token("error", "#REF!")
 
 

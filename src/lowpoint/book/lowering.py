@@ -12,15 +12,29 @@ from collections.abc import Iterable
 from dataclasses import dataclass, field
 from functools import cached_property
 from itertools import count
-from typing import Any, Union
+from typing import Any
 
 from . import classes
 from .formula import Formula
 from .formulas import Token, written
 from .refs import Ref, column_letters
 
-__all__ = ["FIT", "Arg", "Cells", "Literal", "Pieces", "Result", "Setting", "Site", "Slot", "Supply", "Work",
-           "lower", "stored_text", "text_of"]
+__all__ = [
+    "FIT",
+    "Arg",
+    "Cells",
+    "Literal",
+    "Pieces",
+    "Result",
+    "Setting",
+    "Site",
+    "Slot",
+    "Supply",
+    "Work",
+    "lower",
+    "stored_text",
+    "text_of",
+]
 
 FIT = "LPFIT_"
 WIDEST = 16_000  # columns of a scratch sheet
@@ -34,7 +48,7 @@ class Slot:
     column: int
 
 
-Pieces = list[Union[str, int, Slot]]
+Pieces = list[str | int | Slot]
 """Formula text: text, row numbers as offsets from the formula's row, and scratch cells."""
 
 
@@ -68,7 +82,7 @@ class Result:
     site: Site
 
 
-Arg = Union[Literal, Cells, Computed, Result]
+Arg = Literal | Cells | Computed | Result
 
 
 @dataclass(slots=True, eq=False)
@@ -195,7 +209,7 @@ class _Lowering:
         return args
 
     def _arg(self, number: int, place: int, span: tuple[int, int]) -> Arg | None:
-        from ..cells import OMITTED
+        from lowpoint.cells import OMITTED
 
         if span[0] == span[1]:
             return Literal(OMITTED)
@@ -217,7 +231,7 @@ class _Lowering:
         return Computed(self.supply.slot(), self._with_blanks(span))
 
     def _is_table(self, number: int, place: int) -> bool:
-        from ..registry import functions
+        from lowpoint.registry import functions
 
         function = functions[self.f.lp[number]]
         if function.name == "LP_WHY":
@@ -225,7 +239,7 @@ class _Lowering:
         return 0 <= place < len(function.parameters) and function.parameters[place].is_table
 
     def _asked(self, number: int) -> Any:
-        from ..registry import canonical, functions
+        from lowpoint.registry import canonical, functions
 
         first, last = self.f.solid(self.f.calls[number].args[0])
         token = self.f.tokens[first]
@@ -314,7 +328,15 @@ class _Lowering:
             return self._render(args[n], qualify=True)
 
         if name == "IF" and place > 0:
-            return ["IF(", *part(0), ",", *(inner if place == 1 else ["0"]), ",", *(inner if place == 2 else ["0"]), ")"]
+            return [
+                "IF(",
+                *part(0),
+                ",",
+                *(inner if place == 1 else ["0"]),
+                ",",
+                *(inner if place == 2 else ["0"]),
+                ")",
+            ]
         if name in ("IFERROR", "IFNA") and place == 1:
             return ["IF(", "ISERROR(" if name == "IFERROR" else "ISNA(", *part(0), "),", *inner, ",0)"]
         if name == "CHOOSE" and place > 0:
@@ -378,7 +400,7 @@ class _Lowering:
 
 def _constant(tokens: list[Token]) -> Literal | None:
     """The value of a constant, signed or not, or a percentage; None for anything else."""
-    from ..cells import CellError
+    from lowpoint.cells import CellError
 
     sign, percent = 1.0, 1.0
     while len(tokens) > 1 and tokens[0].text in ("+", "-"):
@@ -417,7 +439,9 @@ def text_of(pieces: Pieces) -> list[str | int]:
     """Pieces with the scratch columns written out and neighbouring text joined."""
     flat: list[str | int] = []
     for piece in pieces:
-        parts = [f"{piece.sheet}!{column_letters(piece.column)}", 0] if isinstance(piece, Slot) else [piece]
+        parts: list[str | int] = (
+            [f"{piece.sheet}!{column_letters(piece.column)}", 0] if isinstance(piece, Slot) else [piece]
+        )
         for part in parts:
             if isinstance(part, str) and flat and isinstance(flat[-1], str):
                 flat[-1] += part

@@ -10,7 +10,7 @@ from dataclasses import dataclass, field
 
 from .formulas import LONGEST, Call, Token, Unreadable, calls_in, column_ends, function_name, moved_column, tokenise
 from .package import Package
-from .refs import LAST_COLUMN, LAST_ROW, Ref, Row
+from .refs import LAST_COLUMN, LAST_ROW, Row
 
 __all__ = ["Names", "Place", "let_names", "names_of"]
 
@@ -133,7 +133,7 @@ def _placed(token: Token, place: Place) -> Token:
 
 
 def _wrapped(row: Row) -> Row:
-    """"The row above" is stored as the sheet's last row, counted from A1."""
+    """ "The row above" is stored as the sheet's last row, counted from A1."""
     return Row(True, row.n - LAST_ROW) if row.relative and row.n > LAST_ROW // 2 else row
 
 

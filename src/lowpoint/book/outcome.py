@@ -6,7 +6,8 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any
 
-from ..cells import CellError, reason
+from lowpoint.cells import CellError, reason
+
 from .evaluate import Run
 from .plan import Entry, Plan
 from .refs import Area, address
@@ -40,9 +41,7 @@ class Outcome:
         return [Kept(sheet, address(row, column), why) for (sheet, row, column), why in sorted(self.stale.items())]
 
 
-def outcome_of(
-    engine: Engine, run: Run, plan: Plan, groups: Sequence[Group], titles: Mapping[str, str]
-) -> Outcome:
+def outcome_of(engine: Engine, run: Run, plan: Plan, groups: Sequence[Group], titles: Mapping[str, str]) -> Outcome:
     """Collect the results of a finished run."""
     result = Outcome()
     doubtful: dict[Place, str] = {}

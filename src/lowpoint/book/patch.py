@@ -91,7 +91,7 @@ def _value_edits(sheet: SheetPart, cell: re.Match[bytes], kind: bytes, new: Any)
 
 def _applied(data: bytes, edits: list[Edit]) -> bytes:
     edits.sort(key=lambda edit: edit[:2])
-    out = []
+    out: list[bytes] = []
     begin = 0
     for start, end, new in edits:
         out += (data[begin:start], new)

@@ -104,11 +104,11 @@ def _lower(entry: Entry, supply: Supply, context: Context, batch: bool) -> bool:
         if pieces is not None:
             cured = context.cure(text_of(pieces), group.rows)
             if not stored or cured.changed or group.kind != "plain" or group.shared:
-                work.pieces = cured.parts
+                work.pieces = list(cured.parts)
             entry.met.update(cured.met)
         for computed in work.computed:
             cured = context.cure(text_of(computed.pieces), group.rows)
-            computed.pieces = cured.parts
+            computed.pieces = list(cured.parts)
             entry.met.update(cured.met)
     except Blocked as problem:
         group.reason = f"it {problem}"
@@ -186,4 +186,6 @@ def _downstream(edges: list[set[int]], order: list[list[int]], seeds: set[int]) 
 
 
 def _may_spill(entry: Entry) -> bool:
-    return entry.group.kind == "dynamic" and entry.own is None and not entry.formula.scalar((0, len(entry.formula.tokens)))
+    return (
+        entry.group.kind == "dynamic" and entry.own is None and not entry.formula.scalar((0, len(entry.formula.tokens)))
+    )

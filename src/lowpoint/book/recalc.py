@@ -8,9 +8,10 @@ from collections.abc import Iterator
 from pathlib import Path
 from typing import Any
 
-from ..errors import BookError
+from lowpoint.errors import BookError
+
 from .curing import cure
-from .guard import Limits
+from .guard import DEFAULT_LIMITS, Limits
 from .names import names_of
 from .outcome import Outcome, outcome_of
 from .package import Package, locked
@@ -32,7 +33,7 @@ def recalculate(
     *,
     in_place: bool = False,
     values: bool = False,
-    limits: Limits = Limits(),
+    limits: Limits = DEFAULT_LIMITS,
     per_cell: bool = False,
 ) -> Report:
     """Recompute a workbook's LP_ functions and everything else in it, and write a copy with the new cached values.

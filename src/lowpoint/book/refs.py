@@ -6,7 +6,18 @@ import re
 from functools import lru_cache
 from typing import NamedTuple
 
-__all__ = ["LAST_COLUMN", "LAST_ROW", "Area", "Ref", "Row", "address", "area", "column_letters", "column_number", "quoted"]
+__all__ = [
+    "LAST_COLUMN",
+    "LAST_ROW",
+    "Area",
+    "Ref",
+    "Row",
+    "address",
+    "area",
+    "column_letters",
+    "column_number",
+    "quoted",
+]
 
 LAST_ROW = 1_048_576
 LAST_COLUMN = 16_384
@@ -56,8 +67,10 @@ class Ref(NamedTuple):
 
     def moved(self, rows: int, columns: int) -> Ref:
         """The reference of a formula that was copied: only relative rows and the given column shift change."""
+
         def row(r: Row) -> Row:
             return Row(True, r.n + rows) if r.relative else r
+
         return self._replace(c1=self.c1 + columns, c2=self.c2 + columns, r1=row(self.r1), r2=row(self.r2))
 
 
@@ -104,7 +117,7 @@ def area(text: str) -> Area | None:
         return None
     c1, r1 = column_number(found[1]), int(found[2])
     c2, r2 = (column_number(found[3]), int(found[4])) if found[3] else (c1, r1)
-    inside = 1 <= min(r1, r2) and max(r1, r2) <= LAST_ROW and max(c1, c2) <= LAST_COLUMN
+    inside = min(r1, r2) >= 1 and max(r1, r2) <= LAST_ROW and max(c1, c2) <= LAST_COLUMN
     return Area(min(r1, r2), min(c1, c2), max(r1, r2), max(c1, c2)) if inside else None
 
 

@@ -106,8 +106,9 @@ class Report:
 
     def _lines(self, limit: int) -> Iterator[str]:
         yield (
-            f"{self.book}: {_many(self.recomputed, 'formula cell')} worked out, {_many(self.calls, 'LP_ call')} in them; "
-            f"{len(self.changed) + len(self.unfed)} changed, {self.untouched} were right already ({self.seconds:.1f} s)."
+            f"{self.book}: {_many(self.recomputed, 'formula cell')} worked out, {_many(self.calls, 'LP_ call')} in "
+            f"them; {len(self.changed) + len(self.unfed)} changed, {self.untouched} were right already "
+            f"({self.seconds:.1f} s)."
         )
         if self.failed:
             yield f"{_many(len(self.failed), 'LP_ call')} gave an error:"

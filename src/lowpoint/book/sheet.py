@@ -14,7 +14,8 @@ from functools import cached_property, lru_cache
 from html import unescape
 from xml.parsers import expat
 
-from ..errors import BookError
+from lowpoint.errors import BookError
+
 from .formulas import OWN_ROW, Token, Unreadable, shape_key, shifted, tokenise
 from .refs import LAST_ROW, Area, address, area, column_number
 
@@ -314,7 +315,7 @@ def _common_tokens(text: str, met_before: bool) -> list[Token] | None:
     """Tokens of text in which OWN_ROW stands for the row; None while it is open whether other rows are meant fixed."""
     tokens = tokenise(text)
     for token in tokens:
-        if token.ref is None and OWN_ROW in token.text or OWN_ROW in token.text.rpartition("!")[0]:
+        if (token.ref is None and OWN_ROW in token.text) or OWN_ROW in token.text.rpartition("!")[0]:
             raise Unreadable("the row's number stands outside a reference")
         if token.ref is not None and not met_before and _has_loose_row(token):
             return None

@@ -37,9 +37,7 @@ class Spill:
 
     def cells(self) -> Iterable[tuple[int, int]]:
         """Every cell but the first that the old or the new range fills."""
-        places = {
-            (r, c) for a in (self.old, self.new) for r in range(a.r1, a.r2 + 1) for c in range(a.c1, a.c2 + 1)
-        }
+        places = {(r, c) for a in (self.old, self.new) for r in range(a.r1, a.r2 + 1) for c in range(a.c1, a.c2 + 1)}
         return sorted(places - {(self.row, self.column)})
 
 
@@ -111,8 +109,6 @@ def _dimension(sheet: SheetPart, filled: Sequence[Area]) -> list[Edit]:
     if found is None or stated is None:
         return []
     every = [stated, *filled]
-    wide = Area(
-        min(a.r1 for a in every), min(a.c1 for a in every), max(a.r2 for a in every), max(a.c2 for a in every)
-    )
+    wide = Area(min(a.r1 for a in every), min(a.c1 for a in every), max(a.r2 for a in every), max(a.c2 for a in every))
     text = f"{address(wide.r1, wide.c1)}:{address(wide.r2, wide.c2)}".encode()
     return [] if wide == stated else [(*found.span(1), text)]

@@ -10,7 +10,8 @@ from collections.abc import Sequence
 from html import escape, unescape
 from typing import Any
 
-from ..cells import CellError
+from lowpoint.cells import CellError
+
 from .sheet import attribute
 
 __all__ = ["Edit", "new_attributes", "old_value", "same", "strings_of", "value_element", "with_value"]
@@ -35,9 +36,7 @@ def strings_of(part: bytes) -> list[str]:
     """The shared strings, plain."""
     item = re.compile(rb"<(?:[\w.-]+:)?si\b[^>]*?(?:/>|>(.*?)</(?:[\w.-]+:)?si>)", re.DOTALL)
     phonetic = re.compile(rb"<(?:[\w.-]+:)?rPh\b.*?</(?:[\w.-]+:)?rPh>", re.DOTALL)
-    return [
-        "".join(decoded(t) for t in _TEXTS.findall(phonetic.sub(b"", m[1] or b""))) for m in item.finditer(part)
-    ]
+    return ["".join(decoded(t) for t in _TEXTS.findall(phonetic.sub(b"", m[1] or b""))) for m in item.finditer(part)]
 
 
 def old_value(kind: bytes, value: bytes | None, rest: bytes, strings: Sequence[str]) -> Any:

@@ -39,7 +39,9 @@ class Table:
         top, bottom = self.area.r1 + self.headers, self.area.r2 - self.totals
         if "#this row" in items:
             if not top <= own_row <= bottom:
-                raise Unreadable(f"it asks for its own row of the table {self.name}, but stands outside that table's rows")
+                raise Unreadable(
+                    f"it asks for its own row of the table {self.name}, but stands outside that table's rows"
+                )
             return Row(True, 0), Row(True, 0)
         wanted = {"#headers", "#data", "#totals"} if "#all" in items else items or {"#data"}
         bands = {"#headers": (self.area.r1, top - 1), "#data": (top, bottom), "#totals": (bottom + 1, self.area.r2)}

@@ -1,0 +1,70 @@
+"""Flashing: how much of the liquid leaves a valve as vapour, and the density of what leaves."""
+
+from __future__ import annotations
+
+from typing import Any
+
+from lowpoint import quantities as q
+from lowpoint.declare import Caution, NoAnswer, function
+from lowpoint.physics import fluids
+from lowpoint.physics.liquids import TOO_COLD, TOO_HOT, each
+from lowpoint.physics.names import known_names, resolve_pure
+from lowpoint.physics.sizing import OUTLET
+
+__all__ = ["flash_density", "flash_share"]
+
+
+def _boiled(fluid: Any, t: Any, p1: Any) -> Any:
+    return each(lambda name, x, y: not fluids.is_liquid(name, x, y), fluid, t, p1)
+
+
+def _freezes(fluid: Any, p2: Any) -> Any:
+    return each(lambda name, x: x < fluids.span(name).p_low, fluid, p2)
+
+
+def _all_vapour(fluid: Any, t: Any, p1: Any, p2: Any) -> Any:
+    return each(lambda *state: fluids.flash(*state).quality >= 1.0, fluid, t, p1, p2)
+
+
+_NO_ANSWER = (
+    TOO_COLD,
+    TOO_HOT,
+    NoAnswer("t is above the boiling temperature at p1: what enters is vapour, not liquid; check t and p1", _boiled),
+    NoAnswer("p2 is below the triple point: the liquid would freeze", _freezes),
+)
+_CAUTIONS = (
+    Caution("isenthalpic, phases in equilibrium and at one velocity; the real share lags behind in short valves",
+            lambda fluid, t, p1, p2: each(lambda *state: fluids.flash(*state).quality > 0.0, fluid, t, p1, p2)),
+    Caution("all of the liquid evaporates", _all_vapour),
+)  # fmt: skip
+_FLUID = {"fluid": resolve_pure}
+_WORDS = {"fluid": known_names}
+
+
+@function(
+    "FLASH", group="valves", gives="mass fraction of vapour after the valve, 0 where none", source_key="CoolProp",
+    equation="(h(t, p1) - hf(p2))/hfg(p2), within 0 and 1", must=(OUTLET,), no_answer=_NO_ANSWER, cautions=_CAUTIONS,
+    resolve=_FLUID, words=_WORDS,
+)  # fmt: skip
+def flash_share(fluid: q.Fluid, t: q.T, p1: q.P1, p2: q.P2) -> q.Share:
+    """Vapour share after an isenthalpic drop, ``x = (h(t, p1) - hf(p2))/hfg(p2)``, within 0 and 1.
+
+    Arrays of one length, SI; velocities before and after are taken as equal. Within 0.01 % of the vapour pressure
+    the inlet counts as saturated. NaN where the inlet is no liquid or the outlet would freeze.
+    Source: CoolProp and the equations of state that it cites (water IAPWS-95).
+    """
+    return each(lambda *state: fluids.flash(*state).quality, fluid, t, p1, p2)
+
+
+@function(
+    "FLASH_DENSITY", group="valves", gives="homogeneous density after the valve", source_key="CoolProp",
+    equation="1/((1-x)/rho_f + x/rho_g) at p2", must=(OUTLET,), no_answer=_NO_ANSWER, cautions=_CAUTIONS,
+    resolve=_FLUID, words=_WORDS,
+)  # fmt: skip
+def flash_density(fluid: q.Fluid, t: q.T, p1: q.P1, p2: q.P2) -> q.Density:
+    """Density of the homogeneous mixture after an isenthalpic drop, ``1/((1-x)/rho_f + x/rho_g)``.
+
+    Arrays of one length, SI; without vapour that of the liquid at p2. NaN as for :func:`flash_share`.
+    Source: CoolProp and the equations of state that it cites (water IAPWS-95).
+    """
+    return each(lambda *state: fluids.flash(*state).density, fluid, t, p1, p2)

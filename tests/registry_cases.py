@@ -18,6 +18,7 @@ FIXED: dict[str, dict[str, Any]] = {
     "SIGMA_FORM": {"value": 2.4, "from": "downstream", "to": "upstream"},
     "TRAVEL": {"characteristic": "equal percentage"},
     "TYPICAL": {"property": "fl", "direction": "open"},
+    "OPERATING_TRAVEL": {"flow": 120.0},
     "FLASH": {"fluid": "water", "t": 150.0, "p1": 10.0, "p2": 2.0},
     "FLASH_DENSITY": {"fluid": "water", "t": 150.0, "p1": 10.0, "p2": 2.0},
     "SATURATION_TEMPERATURE": {"fluid": "water", "p": 3.0},

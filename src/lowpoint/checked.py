@@ -300,6 +300,8 @@ class Checked:
     def explain(self, outcome: Outcome) -> list[str]:
         """For every row the reason of its error, else its cautions and the basis of its answer, else "ok"."""
         said: list[list[str]] = [[] for _ in range(len(outcome.values))]
+        if not len(outcome.good):
+            return [outcome.ledger.sentence(row) or "ok" for row in range(len(said))]
         arguments = dict(outcome.arguments)
         if not self.returns_text:
             arguments["result"] = _to_si(np.asarray(outcome.values[outcome.good], np.float64), self.unit)

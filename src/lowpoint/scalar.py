@@ -55,7 +55,7 @@ def bind_scalar(checked: Checked) -> Callable[[tuple[Any, ...]], Any] | None:
         with quiet(all="ignore"):
             answer = kernel(*[np.array((v,)) if type(v) is float else v for v in si])
         if text:
-            return answer[0] or None if not isinstance(answer, str) else answer or None
+            return str(answer if isinstance(answer, str) else answer[0]) or None
         value = float(answer[0])
         if value != value:
             return None

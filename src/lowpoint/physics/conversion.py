@@ -43,9 +43,10 @@ _REFERENCE = re.compile(r"(?P<unit>.*?[A-Za-z0-9])[ _]?[(\[]?(?P<what>a|abs|abso
 _PRESSURE = "[mass] / [length] / [time] ** 2"
 _LISTED = (
     "bar", "bar a", "bar g", "mbar", "Pa", "kPa", "kPa g", "MPa", "psi", "psia", "psig", "kgf/cm2", "atm", "mmHg",
-    "inHg", "mH2O", "ftH2O", "deg C", "deg F", "K", "m3/h", "m3/s", "l/s", "l/min", "US gal/min", "imp gal/min", "bbl/d",
-    "kg/h", "t/h", "lb/h", "mm", "cm", "m", "in", "ft", "kg/m3", "g/cm3", "lb/ft3", "lb/gal", "mPa.s", "Pa.s", "cP", "mm2/s",
-    "cSt", "m2/s", "m/s", "ft/s", "Kv", "Cv", "kJ/kg", "kW", "%",
+    "inHg", "mH2O", "ftH2O", "deg C", "deg F", "K", "m3/h", "m3/s", "l/s", "l/min", "US gal/min", "imp gal/min",
+    "bbl/d",
+    "kg/h", "t/h", "lb/h", "mm", "cm", "m", "in", "ft", "kg/m3", "g/cm3", "lb/ft3", "lb/gal", "mPa.s", "Pa.s", "cP",
+    "mm2/s", "cSt", "m2/s", "m/s", "ft/s", "Kv", "Cv", "kJ/kg", "kW", "%",
 )  # fmt: skip
 
 

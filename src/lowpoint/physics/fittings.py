@@ -17,8 +17,8 @@ from lowpoint.physics.constants import N2, N18
 
 __all__ = ["Pair", "fitting_losses", "piping_geometry_factor", "recovery_with_fittings"]
 
-OVERSIZE = 1.1
-"""Largest d/D that still counts as line size."""
+OVERSIZE = 1.1 * (1.0 + 1e-12)
+"""Largest d/D that still counts as line size: 1.1, and what a change of units may round it up to."""
 
 Pair = tuple[Any, Any]
 
@@ -53,7 +53,7 @@ def too_large(valve_size: Any, pipe_in: Any, pipe_out: Any) -> Any:
     """Where the valve is larger than 1.1 times a pipe beside it."""
     if valve_size is None:
         return False
-    return (valve_size > OVERSIZE * pipe_in) | (valve_size > OVERSIZE * pipe_out)
+    return (valve_size / pipe_in > OVERSIZE) | (valve_size / pipe_out > OVERSIZE)
 
 
 def a_little_larger(valve_size: Any, pipe_in: Any, pipe_out: Any) -> Any:
@@ -91,6 +91,8 @@ LARGE_RESULT = Caution(_CAPACITY, result_too_large)
 
 
 def _expander_gain_too_large(coefficient: Any, valve_size: Any, pipe_in: Any, pipe_out: Any) -> Any:
+    if coefficient is None or valve_size is None:
+        return False
     total, _ = fitting_losses(valve_size, pipe_in, pipe_out)
     return 1.0 + total * coefficient * coefficient <= 0.0
 
@@ -130,7 +132,8 @@ def piping_geometry_factor(
     no_answer=(NoAnswer("the valve is more than 1.1 times as large as the pipe before it; check valve_size against "
                         "pipe_in (inside diameter)",
                         lambda valve_size, pipe_in: too_large(valve_size, pipe_in, pipe_in)),),
-    cautions=(LARGE_CAPACITY,),
+    cautions=(Caution(LINE_SIZE.text, lambda valve_size, pipe_in: a_little_larger(valve_size, pipe_in, pipe_in)),
+              LARGE_CAPACITY),
 )  # fmt: skip
 def recovery_with_fittings(fl: q.FL, coefficient: q.Coefficient, valve_size: q.ValveSize, pipe_in: q.PipeIn) -> q.Ratio:
     """Combined factor, ``FLP = FL/sqrt(1 + FL^2 (K1+KB1) (C/d^2)^2/N2)``.

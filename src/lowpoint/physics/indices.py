@@ -62,7 +62,9 @@ def index_form(value: q.IndexValue, from_: q.FromForm, to: q.ToForm) -> q.Ratio:
     Arrays of one length. NaN where the value cannot be an index of its form.
     Source: identity of the definitions.
     """
-    return from_upstream(to_upstream(value, from_), to)
+    sigma = to_upstream(value, from_)
+    # A value that stays in its form comes back to the bit.
+    return np.where((from_ == to) & ~np.isnan(sigma), value, from_upstream(sigma, to))
 
 
 @function(

@@ -1,7 +1,8 @@
 """Non-turbulent (laminar and transitional) flow: the valve Reynolds number and the factor FR.
 
 For it the standard considers neither fittings nor choking; the callers take the larger coefficient, or the smaller
-flow, of this branch and the turbulent one, so that viscosity never makes an answer smaller than choking does.
+flow, of this branch and the turbulent one, so that viscosity never makes an answer smaller than choking does. Where
+FR is 1 the flow is turbulent and this branch has no say: water in a valve with an outlet expander keeps its FP.
 The factor depends on the unknown itself, so a root is searched: upward from the turbulent coefficient (downward from
 the turbulent flow) in steps of 6 % to the first change of sign, then by bisection. Trim class is an input and never
 switched on the way.
@@ -24,6 +25,7 @@ __all__ = ["coefficient_for", "drop_for", "flow_through", "valve_reynolds"]
 TURBULENT = 10_000.0
 STEP, STEPS, HALVINGS = 1.06, 160, 60
 """The search goes up to 1.06^160, some 11 000 times the turbulent coefficient; 60 halvings end below a rounding."""
+GOLDEN, TOP_STEPS = (5.0**0.5 - 1.0) / 2.0, 40
 
 
 def reynolds(flow: Any, coefficient: Any, nu: Any, fl: Any, fd: Any, pipe_in: Any) -> Any:
@@ -45,22 +47,53 @@ def reynolds_factor(rev: Any, n: Any, fl: Any) -> Any:
     return np.minimum(np.where(rev >= 10.0, np.minimum(transitional, laminar), laminar), 1.0)
 
 
-def _first_root(excess: Callable[[Any], Any], start: Any, step: float) -> Any:
-    """First root of ``excess`` from ``start`` on (geometric steps), where it begins negative; NaN where none."""
-    low, high = start.copy(), np.full_like(start, np.nan)
-    found = np.zeros(start.shape, np.bool_)
-    x = start
+def _first_root(excess: Callable[[Any, Any], Any], start: Any, step: float) -> Any:
+    """First root of ``excess(x, rows)`` from ``start`` on (geometric steps), where it is negative; NaN where none.
+
+    ``rows`` says which elements of ``start`` the values ``x`` belong to. Where the excess steps over zero without a
+    root (FR jumps at Rev 10) the answer is the first value at which it is not negative.
+    """
+    answer = np.full(start.shape, np.nan)
+    rows = np.arange(len(start))
+    x = np.stack([start / step, start])
+    y = np.stack([excess(x[0], rows), excess(x[1], rows)])
     for _ in range(STEPS):
-        x = x * step
-        crossed = ~found & (excess(x) >= 0.0)
-        high = np.where(crossed, x, high)
-        found = found | crossed
-        if found.all():
+        x_next = x[1] * step
+        y_next = excess(x_next, rows)
+        # The excess may rise above zero and fall again within a step: look at the top of every peak.
+        peak = np.flatnonzero((y[1] > y[0]) & (y[1] >= y_next) & (y_next < 0.0))
+        high, found = x_next.copy(), y_next >= 0.0
+        if len(peak):
+            top = _top(excess, x[0][peak], x_next[peak], rows[peak])
+            above = excess(top, rows[peak]) >= 0.0
+            high[peak[above]], found[peak[above]] = top[above], True
+        if found.any():
+            # A top may lie before the middle one of the three points.
+            low = np.where(high > x[1], x[1], x[0]) if step > 1.0 else np.where(high < x[1], x[1], x[0])
+            answer[rows[found]] = _halve(excess, low[found], high[found], rows[found])
+        kept = ~found
+        if not kept.any():
             break
-        low = np.where(found, low, x)
+        x, y = np.stack([x[1][kept], x_next[kept]]), np.stack([y[1][kept], y_next[kept]])
+        rows = rows[kept]
+    return answer
+
+
+def _top(excess: Callable[[Any, Any], Any], low: Any, high: Any, rows: Any) -> Any:
+    """Where a single peak between ``low`` and ``high`` has its top, by the golden section."""
+    for _ in range(TOP_STEPS):
+        ratio = (high / low) ** GOLDEN
+        near, far = high / ratio, low * ratio
+        left = excess(near, rows) >= excess(far, rows)
+        low, high = np.where(left, low, near), np.where(left, far, high)
+    return np.sqrt(low * high)
+
+
+def _halve(excess: Callable[[Any, Any], Any], low: Any, high: Any, rows: Any) -> Any:
+    """Bisection on a logarithmic scale; the end at which the excess is not negative."""
     for _ in range(HALVINGS):
         middle = np.sqrt(low * high)
-        beyond = excess(middle) >= 0.0
+        beyond = excess(middle, rows) >= 0.0
         low, high = np.where(beyond, low, middle), np.where(beyond, middle, high)
     return high
 
@@ -68,7 +101,10 @@ def _first_root(excess: Callable[[Any], Any], start: Any, step: float) -> Any:
 def coefficient_for(
     flow: Any, dp: Any, density: Any, fl: Any, valve_size: Any, pipe_in: Any, viscosity: Any, fd: Any, reduced: Any
 ) -> Any:
-    """Required coefficient of this branch on the actual drop: the first C with ``C FR(C) = Q sqrt(rho/dp)``."""
+    """Required coefficient of this branch on the actual drop: the first C with ``C FR(C) = Q sqrt(rho/dp)``.
+
+    0 where the flow is turbulent: the branch then asks for nothing.
+    """
     nu = viscosity / density
     turbulent = flow * np.sqrt(density / dp)
 
@@ -76,12 +112,11 @@ def coefficient_for(
         rev = reynolds(flow[at], c, nu[at], fl[at], fd[at], pipe_in[at])
         return reynolds_factor(rev, trim_number(c, valve_size[at], reduced[at]), fl[at])
 
-    answer = turbulent.copy()
-    everywhere = np.arange(len(flow))
-    slow = np.flatnonzero(~(factor(turbulent, everywhere) >= 1.0))
+    answer = np.zeros(turbulent.shape)
+    slow = np.flatnonzero(~(factor(turbulent, slice(None)) >= 1.0))
     if len(slow):
         target = turbulent[slow]
-        answer[slow] = _first_root(lambda c: c * factor(c, slow) - target, target, STEP)
+        answer[slow] = _first_root(lambda c, rows: c * factor(c, slow[rows]) - target[rows], target, STEP)
     return answer
 
 
@@ -89,7 +124,7 @@ def flow_through(
     coefficient: Any, dp: Any, density: Any, fl: Any, valve_size: Any, pipe_in: Any, viscosity: Any, fd: Any,
     reduced: Any,
 ) -> Any:  # fmt: skip
-    """Flow of this branch: the largest Q with ``Q = C FR(Q) sqrt(dp/rho)``."""
+    """Flow of this branch: the largest Q with ``Q = C FR(Q) sqrt(dp/rho)``; infinite where the flow is turbulent."""
     nu = viscosity / density
     turbulent = coefficient * np.sqrt(dp / density)
     n = trim_number(coefficient, valve_size, reduced)
@@ -98,10 +133,10 @@ def flow_through(
         rev = reynolds(flow, coefficient[at], nu[at], fl[at], fd[at], pipe_in[at])
         return turbulent[at] * reynolds_factor(rev, n[at], fl[at]) - flow
 
-    answer = turbulent.copy()
-    slow = np.flatnonzero(~(lacking(turbulent, np.arange(len(turbulent))) >= 0.0))
+    answer = np.full(turbulent.shape, np.inf)
+    slow = np.flatnonzero(~(lacking(turbulent, slice(None)) >= 0.0))
     if len(slow):
-        answer[slow] = _first_root(lambda flow: lacking(flow, slow), turbulent[slow], 1.0 / STEP)
+        answer[slow] = _first_root(lambda flow, rows: lacking(flow, slow[rows]), turbulent[slow], 1.0 / STEP)
     return answer
 
 
@@ -109,11 +144,14 @@ def drop_for(
     flow: Any, coefficient: Any, density: Any, fl: Any, valve_size: Any, pipe_in: Any, viscosity: Any, fd: Any,
     reduced: Any,
 ) -> Any:  # fmt: skip
-    """Drop of this branch, explicit since flow and coefficient fix Rev: ``dp = rho (Q/(C FR))^2``."""
+    """Drop of this branch, explicit since flow and coefficient fix Rev: ``dp = rho (Q/(C FR))^2``.
+
+    0 where the flow is turbulent, NaN where FR is not positive.
+    """
     rev = reynolds(flow, coefficient, viscosity / density, fl, fd, pipe_in)
     factor = reynolds_factor(rev, trim_number(coefficient, valve_size, reduced), fl)
     velocity = flow / (coefficient * np.where(factor > 0.0, factor, np.nan))
-    return density * velocity * velocity
+    return np.where(factor >= 1.0, 0.0, density * velocity * velocity)
 
 
 def rows_with(viscosity: Any) -> Any:
@@ -129,7 +167,7 @@ def picked(rows: Any, trim: Any, *arrays: Floats) -> list[Any]:
 
 def not_turbulent(flow: Any, coefficient: Any, density: Any, fl: Any, pipe_in: Any, viscosity: Any, fd: Any) -> Any:
     """Where a viscosity is given and Rev is below 10 000."""
-    if viscosity is None:
+    if viscosity is None or fd is None or pipe_in is None:
         return False
     return reynolds(flow, coefficient, viscosity / density, fl, fd, pipe_in) < TURBULENT
 

@@ -101,7 +101,8 @@ def no_valve_passes(
     """Where the fittings alone take the whole drop, or choke the flow, whatever the valve."""
     total, inlet = fitting_losses(valve_size, pipe_in, pipe_out)
     energy = flow * flow * density
-    return (energy * total >= p1 - p2) | (energy * inlet >= p1 - critical_pressure_factor(pv, pc) * pv)
+    head = p1 - critical_pressure_factor(pv, pc) * pv
+    return (energy / (p1 - p2) * total >= 1.0) | (energy / head * inlet >= 1.0)
 
 
 @function(
@@ -159,7 +160,7 @@ def _turbulent_flow(coefficient: Any, dp: Any, head: Any, density: Any, fl: Any,
         fittings.LINE_SIZE, fittings.LARGE_CAPACITY, nonturbulent.SLOW_FLOW,
         Caution("the flow is choked: a lower outlet pressure gives no more flow",
                 lambda result, coefficient, p1, pv, pc, density, fl, valve_size, pipe_in, pipe_out:
-                result >= 0.999999 * choked_flow(coefficient, p1, pv, pc, density, fl, valve_size, pipe_in, pipe_out)),
+                result >= (1.0 - 1e-12) * choked_flow(coefficient, p1, pv, pc, density, fl, valve_size, pipe_in, pipe_out)),
     ),
 )  # fmt: skip
 def flow_through(
@@ -248,14 +249,15 @@ def velocity(flow: q.Flow, bore: q.Bore) -> q.Speed:
 @function(
     "THROAT_PRESSURE", group="valves", gives="pressure in the vena contracta", source_key="IEC 60534-2-1",
     equation="p1 - (p1-p2)/FL^2; with pv and pc not below FF pv", any_unit=True,
-    needs={"pv": ("pc",), "pc": ("pv",)}, must=(OUTLET, CRITICAL),
+    needs={"pv": ("pc",), "pc": ("pv",)}, must=(OUTLET, BOILS, CRITICAL),
     no_answer=(NoAnswer("the throat pressure would be negative: the flow is choked; give pv and pc for the choked "
                         "value"),),
     cautions=(
         Caution("a throat pressure above the vapour pressure is no evidence of no cavitation; only the limits judge",
                 lambda result: result > 0.0),
         Caution("the flow is choked: the throat stays at FF pv",
-                lambda result, pv, pc: False if pv is None else result <= critical_pressure_factor(pv, pc) * pv),
+                lambda result, pv, pc: False if pv is None or pc is None
+                else result <= critical_pressure_factor(pv, pc) * pv),
     ),
 )  # fmt: skip
 def throat_pressure(p1: q.P1, p2: q.P2, fl: q.FL, pv: q.PV = None, pc: q.PC = None) -> q.Pressure:  # type: ignore[assignment]

@@ -15,8 +15,9 @@ from lowpoint.quantities import Floats
 
 __all__ = ["operating_travel", "value_at_travel", "valve_travel"]
 
-HALVINGS = 60
 PERCENT = 0.01
+ROUNDING = 1e-12
+"""An opening that leaves 0 to 1 by this much is at the end of the travel: the formulas end there only but for rounding."""
 
 
 def between(x: Any, xs: Floats, ys: Floats) -> Any:
@@ -77,7 +78,8 @@ def valve_travel(
     else:
         inverse = _by_table
     opening = inverse(coefficient, rated, characteristic, rangeability)
-    return np.where((opening >= 0.0) & (opening <= 1.0), opening, np.nan)
+    within = (opening >= -ROUNDING) & (opening <= 1.0 + ROUNDING)
+    return np.where(within, np.clip(opening, 0.0, 1.0), np.nan)
 
 
 @function(
@@ -108,16 +110,52 @@ def _lacking(
     )
 
 
-def _fully_open(coefficients: Floats, fls: Floats, needs: tuple[Any, Any]) -> Any:
-    return np.minimum(coefficients[-1] - needs[0], coefficients[-1] * fls[-1] - needs[1])
+def _opening(travels: Floats, coefficients: Floats, fls: Floats, free: Any, choked: Any) -> Any:
+    """Smallest opening of the table with ``C >= free`` and ``C FL >= choked``, both linear between rows; NaN if none.
+
+    ``C FL`` is a quadratic of the opening in each segment, so its roots are written down and nothing is missed where
+    it is largest between two rows.
+    """
+    opening = np.full(free.shape, np.nan)
+    for i in range(len(travels) - 1):
+        c, f = coefficients[i], fls[i]
+        dc, df = coefficients[i + 1] - c, fls[i + 1] - f
+        first, last = _where_not_negative(dc * df, c * df + f * dc, c * f - choked)
+        first = np.maximum(np.maximum(first, (free - c) / dc), 0.0)
+        passes = (first <= np.minimum(last, 1.0)) & np.isnan(opening)
+        opening = np.where(passes, travels[i] + first * (travels[i + 1] - travels[i]), opening)
+    return opening
+
+
+def _where_not_negative(a: float, b: float, c: Any) -> tuple[Any, Any]:
+    """First and last t in 0..1 of the stretch on which ``a t^2 + b t + c`` is not negative (NaN for none).
+
+    The quadratics of a table are not negative on one stretch: ``a <= 0``, or rising from t = 0 on.
+    """
+    root = np.sqrt(np.where(b * b >= 4.0 * a * c, b * b - 4.0 * a * c, np.nan))
+    if a == 0.0 and b == 0.0:
+        return np.where(c >= 0.0, 0.0, np.nan), np.ones_like(c)
+    # Without cancellation: the two roots are c/q and q/a.
+    q_ = -0.5 * (b + root) if b >= 0.0 else -0.5 * (b - root)
+    one = np.where(q_ == 0.0, 0.0, c / q_)
+    if a == 0.0:
+        return (one, np.ones_like(c)) if b > 0.0 else (np.where(c >= 0.0, 0.0, np.nan), one)
+    other = q_ / a
+    if a > 0.0:
+        return np.maximum(one, other), np.ones_like(c)
+    return np.minimum(one, other), np.maximum(one, other)
+
+
+def _impossible_fl(fls: Floats) -> bool:
+    return bool((fls <= 0.0).any() or (fls > 1.0).any())
 
 
 def _too_small(
-    flow: Any, p1: Any, p2: Any, pv: Any, pc: Any, density: Any, coefficients: Any, fls: Any, valve_size: Any,
-    pipe_in: Any, pipe_out: Any,
+    flow: Any, p1: Any, p2: Any, pv: Any, pc: Any, density: Any, travels: Any, coefficients: Any, fls: Any,
+    valve_size: Any, pipe_in: Any, pipe_out: Any,
 ) -> Any:  # fmt: skip
     needs = _lacking(flow, p1, p2, pv, pc, density, valve_size, pipe_in, pipe_out)
-    return _fully_open(coefficients, fls, needs) < 0.0
+    return np.isnan(_opening(travels, coefficients, fls, *needs))
 
 
 @function(
@@ -127,10 +165,11 @@ def _too_small(
     needs={"pipe_in": ("valve_size",), "pipe_out": ("valve_size",)},
     must=(OUTLET, BOILS, CRITICAL),
     no_answer=(
+        NoAnswer("a recovery factor in fls is 0 or above 1: check the column", lambda fls: _impossible_fl(fls)),
         fittings.TOO_LARGE,
         NoAnswer("no valve of this size passes the flow: the fittings alone take the whole drop; choose a larger "
                  "valve_size", no_valve_passes),
-        NoAnswer("the valve is too small: fully open it does not pass the flow", _too_small),
+        NoAnswer("the valve is too small: at no opening of the table does it pass the flow", _too_small),
         NoAnswer("the valve would have to be less open than the table's first row; nothing is extrapolated"),
     ),
     cautions=(
@@ -145,22 +184,11 @@ def operating_travel(
 ) -> q.Travel:  # fmt: skip
     """Opening at which the valve passes the flow with the FL that it has there.
 
-    Arrays of one length, the tables 1-D, SI; linear between rows, solved by bisection in the first segment whose upper
-    end passes the flow. NaN where the valve is too small, or would be less open than the table's first row.
+    Arrays of one length, the tables 1-D, SI; linear between rows, the roots of each segment in closed form. NaN where the
+    valve is too small, or would be less open than the table's first row.
     Source: derived from IEC 60534-2-1; coefficient and FL at the same travel.
     """
     free, choked = _lacking(flow, p1, p2, pv, pc, density, valve_size, pipe_in, pipe_out)
-
-    def spare(h: Any) -> Any:
-        c = np.interp(h, travels, coefficients)
-        return np.minimum(c - free, c * np.interp(h, travels, fls) - choked)
-
-    at_rows = np.minimum(coefficients - free[:, None], coefficients * fls - choked[:, None]) >= 0.0
-    first = np.argmax(at_rows, axis=1)
-    low, high = travels[np.maximum(first - 1, 0)], travels[first]
-    for _ in range(HALVINGS):
-        middle = 0.5 * (low + high)
-        passes = spare(middle) >= 0.0
-        low, high = np.where(passes, low, middle), np.where(passes, middle, high)
-    at_first_row = (first == 0) & (spare(np.full(len(free), travels[0])) > 0.0)
-    return np.where(at_rows.any(axis=1) & ~at_first_row, high, np.nan)
+    opening = _opening(travels, coefficients, fls, free, choked)
+    less_open = (coefficients[0] > free) & (coefficients[0] * fls[0] > choked)
+    return np.where(less_open | _impossible_fl(fls), np.nan, opening)

@@ -80,7 +80,17 @@ def _each(words: Any, *others: Any) -> list[tuple[Any, ...]]:
 
 def _undirected(style: Any, direction: Any) -> Any:
     """Where the style's value depends on a direction that is not given."""
-    return np.array([not d or d == "None" for _, d in _each(style, direction)])
+    return np.array([_absent(d) and len(_table()[s]) > 1 for s, d in _each(style, direction)])
+
+
+def _misdirected(style: Any, direction: Any) -> Any:
+    """Where the style has no row for the direction that is given."""
+    return np.array([not _absent(d) and _row(s, d) is None for s, d in _each(style, direction)])
+
+
+def _absent(word: str | None) -> bool:
+    """Is a word of a column left out? (An array of words holds the text None for it.)"""
+    return not word or word == "None"
 
 
 @function(
@@ -92,7 +102,9 @@ def _undirected(style: Any, direction: Any) -> Any:
     no_answer=(
         NoAnswer("direction must be given for this style: its value depends on the flow direction; 'lowpoint "
                  "functions LP_TYPICAL' lists the words", _undirected, missing=True),
-        NoAnswer("the table has no such value for this style and direction", value=True),
+        NoAnswer("direction must be one that the style has; 'lowpoint functions LP_TYPICAL' lists them",
+                 _misdirected, value=True),
+        NoAnswer("the table has no such value for this style; ask the vendor for it"),
     ),
 )  # fmt: skip
 def typical_value(style: q.Style, property: q.Property, direction: q.Direction = None) -> q.Ratio:
@@ -102,4 +114,4 @@ def typical_value(style: q.Style, property: q.Property, direction: q.Direction =
     Source: IEC 60534-2-1, table of typical values; the mark of each row stands in ``tables/valve_typical.csv``.
     """
     rows = _each(style, property, direction)
-    return np.array([_value(s, p, None if not d or d == "None" else d) for s, p, d in rows])
+    return np.array([_value(s, p, None if _absent(d) else d) for s, p, d in rows])

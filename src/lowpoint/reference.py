@@ -53,7 +53,8 @@ def default_of(parameter: Parameter) -> str:
         return f"default: {parameter.default.symbol}"
     if parameter.default is None:
         return "optional"
-    return f"default: {parameter.default}"
+    default = parameter.default
+    return f"default: {default:g}" if isinstance(default, float) else f"default: {default}"
 
 
 def words_of(function: Function, parameter: Parameter) -> list[str]:

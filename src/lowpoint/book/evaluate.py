@@ -29,8 +29,7 @@ class Run:
     def __init__(self, engine: Engine, plan: Plan, titles: Mapping[str, str]) -> None:
         self.engine, self.plan, self.titles = engine, plan, titles
         self.results: dict[int, list[Any]] = {}  # by site, in the order of the group's rows
-        self.failed: dict[tuple[int, int], list[Any]] = {}  # (site, row): the arguments of a call that gave an error
-        self.errors: dict[tuple[int, int], CellError] = {}  # and the error
+        self.failed: dict[tuple[int, int], tuple[list[Any], CellError]] = {}  # (site, row): arguments and error
         self.settled = True
         self.plan_sites = plan.sites
         self._columns: dict[tuple[str, int, int, int], list[Any]] = {}
@@ -164,8 +163,7 @@ class Run:
         for i, (row, value) in enumerate(zip(entry.group.rows, part, strict=True)):
             key = (site.number, row)
             if isinstance(value, CellError):
-                self.failed[key] = [c.argument if isinstance(c, Same) else c[begin + i] for c in columns]
-                self.errors[key] = value
+                self.failed[key] = [c.argument if isinstance(c, Same) else c[begin + i] for c in columns], value
             else:
                 self.failed.pop(key, None)
 
@@ -178,7 +176,7 @@ class Run:
         key = (int(number), int(row))
         error = _first_error(result)
         if error is not None:
-            self.failed[key], self.errors[key] = args, error
+            self.failed[key] = args, error
         else:
             self.failed.pop(key, None)
         return result

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from functools import cached_property
 
 from . import classes
-from .formulas import Call, Token, Unreadable, calls_in, function_name, lp_name
+from .formulas import Call, Token, Unreadable, calls_in, function_name, lp_name, unknown_lp_name
 from .names import Names, Place
 from .refs import Ref
 from .tables import Tables
@@ -154,9 +154,14 @@ class Formula:
         return False
 
     def _intersects(self, blank: int) -> bool:
-        before, after = self.tokens[blank - 1 : blank], self.tokens[blank + 1 : blank + 2]
+        before, after = self.tokens[max(0, blank - 1) : blank], self.tokens[blank + 1 : blank + 2]
         left = bool(before) and before[0].kind in ("ref", "close", "name", "local")
         return left and bool(after) and after[0].kind in _OPERANDS
+
+    def _is_cut(self, token: int) -> bool:
+        """Whether a range stands in an intersection, which is written as a blank between two references."""
+        blanks = [i for i in (token - 1, token + 1) if 0 <= i < len(self.tokens) and self.tokens[i].kind == "blank"]
+        return any(self._intersects(i) for i in blanks)
 
     def single_ranges(self) -> Iterator[int]:
         """Ranges of a plain formula that stand where a single value is meant: the cell of the formula's own row."""
@@ -165,6 +170,8 @@ class Formula:
             if token.ref is None or token.ref.single or (follows and follows[0].text in ("#", ":")):
                 continue
             if i and self.tokens[i - 1].text in ("@", ":"):
+                continue
+            if self._is_cut(i):
                 continue
             if self._means_one(i):
                 yield i
@@ -195,6 +202,15 @@ def read(tokens: Sequence[Token], place: Place, names: Names, tables: Tables) ->
         plain.pop(0)
     formula = Formula(plain, calls_in(plain), changed=[t.text for t in plain] != [t.text for t in tokens])
     for number, call in enumerate(formula.calls):
-        if "!" in call.name and number not in formula.lp:
-            raise Unreadable(f"the function {call.name} belongs to another workbook or add-in")
+        if call.name and number not in formula.lp:
+            _refuse(call.name)
     return formula
+
+
+def _refuse(name: str) -> None:
+    """Raise Unreadable for a function that is surely not the engine's."""
+    unknown = unknown_lp_name(name)
+    if unknown is not None:
+        raise Unreadable(unknown)
+    if "!" in name:
+        raise Unreadable(f"the function {name} belongs to another workbook or add-in")

@@ -8,6 +8,7 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field
+from difflib import get_close_matches
 from typing import NamedTuple
 
 from .refs import LAST_COLUMN, LAST_ROW, Ref, Row, column_letters, column_number, quoted
@@ -27,6 +28,7 @@ __all__ = [
     "shape_key",
     "shifted",
     "tokenise",
+    "unknown_lp_name",
     "unprefixed",
     "written",
 ]
@@ -65,6 +67,7 @@ _SCANNER = re.compile(
 _CELL_PARTS = re.compile(rf"(\$?)([A-Za-z]{{1,3}})(\$?)({_ROW})")
 _PREFIX = re.compile(r"(?:_xlfn|_xlws|_xll|_xludf)\.", re.IGNORECASE)
 _SERVICE = "ORG.LOWPOINT.FUNCTIONS."
+_LIKE_OURS = re.compile(r"LPU?[._][A-Z]")
 
 
 class Unreadable(Exception):  # noqa: N818 - it is caught by its name, as a verdict on a formula
@@ -207,6 +210,20 @@ def unprefixed(stored: str) -> str:
     while (found := _PREFIX.match(stored)) is not None:
         stored = stored[found.end() :]
     return stored
+
+
+def unknown_lp_name(stored: str) -> str | None:
+    """Why a name that looks like one of Lowpoint's functions is none; None where it does not look so, or is one."""
+    from lowpoint.registry import functions
+
+    bare = unprefixed(stored.rpartition("!")[2]).upper()
+    name = bare.removeprefix(_SERVICE)
+    if lp_name(stored) is not None or not (name != bare or _LIKE_OURS.match(name)):
+        return None
+    spelled = name.replace(".", "_", 1)
+    near = get_close_matches(spelled, functions, 3, 0.7)
+    hint = f"; near are {', '.join(near)}" if near else ""
+    return f"there is no function {spelled} in this version of Lowpoint{hint}"
 
 
 def lp_name(stored: str) -> str | None:

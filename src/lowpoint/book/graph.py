@@ -16,10 +16,10 @@ FEW = 64  # a reference that meets more blocks of one column than this is tied t
 
 @dataclass(frozen=True, slots=True)
 class Block:
-    """A group's place on its sheet (all cells it fills), and every rectangle that it reads."""
+    """A group's places on its sheet (all cells it fills), and every rectangle that it reads."""
 
     sheet: str
-    area: Area
+    areas: tuple[Area, ...]
     reads: tuple[tuple[str, Area], ...]
 
 
@@ -60,9 +60,10 @@ def dependencies(blocks: Sequence[Block]) -> list[set[int]]:
 def _columns(blocks: Sequence[Block]) -> dict[str, dict[int, _Column]]:
     columns: dict[str, dict[int, _Column]] = defaultdict(lambda: defaultdict(_Column))
     for number, block in enumerate(blocks):
-        for c in range(block.area.c1, block.area.c2 + 1):
-            rows = (block.area.r1, block.area.r2, number)
-            (columns[block.sheet][c].small if rows[1] - rows[0] < FEW else columns[block.sheet][c].large).append(rows)
+        for area in block.areas:
+            for c in range(area.c1, area.c2 + 1):
+                column = columns[block.sheet][c]
+                (column.small if area.r2 - area.r1 < FEW else column.large).append((area.r1, area.r2, number))
     for sheet in columns.values():
         for column in sheet.values():
             column.small.sort()

@@ -78,7 +78,7 @@ class Names:
         if sheet == "[0]":  # this workbook itself
             return "", name.casefold()
         if sheet.casefold() not in self.sheets:
-            raise Unreadable(f"{token.text} lies in another workbook, or on several sheets at once")
+            raise Unreadable(f"it reads {token.text}, which lies in another workbook or on several sheets at once")
         return sheet.casefold(), name.casefold()
 
 

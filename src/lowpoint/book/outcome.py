@@ -2,19 +2,20 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping, Sequence
-from dataclasses import dataclass, field
+from collections.abc import Iterable, Iterator, Mapping, Sequence
+from dataclasses import dataclass, field, replace
 from typing import TYPE_CHECKING, Any
 
 from lowpoint.cells import CellError, reason
 
 from .evaluate import Run
-from .plan import Entry, Plan
+from .plan import Entry, Plan, mark_fed
 from .refs import Area, address
 from .report import Failure, Kept
 from .sheet import Group
 from .spills import Spill
-from .stale import Place, stale_cells
+from .stale import Doubts, Place, cells_of, stale_cells
+from .unseen import unseen_readers
 
 if TYPE_CHECKING:
     from .engine import Engine
@@ -22,7 +23,6 @@ if TYPE_CHECKING:
 __all__ = ["Outcome", "outcome_of"]
 
 _NOT_STILL = "its array results push each other about without end"
-_UNSEEN = "it reads, by a reference worked out on the way, a cell that was not refreshed"
 
 
 @dataclass(slots=True)
@@ -42,29 +42,40 @@ class Outcome:
 
 
 def outcome_of(engine: Engine, run: Run, plan: Plan, groups: Sequence[Group], titles: Mapping[str, str]) -> Outcome:
-    """Collect the results of a finished run."""
+    """Collect the results of a finished run; afterwards the engine holds other values."""
     result = Outcome()
-    doubtful: dict[Place, str] = {}
+    doubts = Doubts()
     full = any(_no_room(engine, entry) for entry in plan.entries)
+    spills: list[tuple[Entry, Spill]] = []
     for entry in plan.entries:
-        group = entry.group
         values = run.values(entry)
         if not run.settled:
-            doubtful |= {(group.sheet, row, group.column): _NOT_STILL for row in group.rows}
-        clean = [_cell(value, full) for value in values]
-        result.values[group] = clean
-        for row, value in zip(group.rows, clean, strict=True):
-            if hasattr(value, "reason"):
-                doubtful[group.sheet, row, group.column] = _why(value, entry)
-        if entry.fed:
-            result.fed.add(group)
+            doubts.cells |= {(entry.group.sheet, row, entry.group.column): _NOT_STILL for row in entry.group.rows}
+        result.values[entry.group] = [_cell(value, full) for value in values]
+        spills += ((entry, spill) for spill in _spills(engine, entry, result.values[entry.group], full))
+    failures = list(_failures(run))
+    _doubt(doubts, plan.entries, result.values, spills)
     blocked = [group for group in groups if group.reason]
-    result.stale = stale_cells(blocked, plan.entries, doubtful, titles)
-    for entry in plan.entries:
-        for spill in _spills(engine, entry, result):
-            result.spills.setdefault(entry.group.sheet, []).append(spill)
-    result.failed = list(_failures(run, result.stale))
+    kept = [*(place for group in blocked for place in cells_of(group)), *doubts.cells]
+    doubts.cells |= unseen_readers(engine, run, plan, kept)
+    result.stale = stale_cells(blocked, plan.entries, doubts, titles)
+    _mark_fed(plan, spills)
+    result.fed = {entry.group for entry in plan.entries if entry.fed}
+    for entry, spill in spills:
+        if (entry.group.sheet, spill.row, spill.column) not in result.stale:
+            result.spills.setdefault(entry.group.sheet, []).append(replace(spill, fed=entry.fed))
+    result.failed = _reported(run, failures, result.stale)
     return result
+
+
+def _mark_fed(plan: Plan, spills: Iterable[tuple[Entry, Spill]]) -> None:
+    """Which entries a call feeds, new once more where arrays fill other cells than the file says."""
+    areas: dict[Entry, list[Area]] = {}
+    for entry, spill in spills:
+        if spill.new != spill.old:
+            areas.setdefault(entry, []).append(spill.new)
+    if areas:
+        mark_fed(plan, areas)
 
 
 def _no_room(engine: Engine, entry: Entry) -> bool:
@@ -81,19 +92,31 @@ def _cell(value: Any, full: bool) -> Any:
     return CellError.SPILL if full and getattr(value, "kind", "") == "spill" else value
 
 
-def _why(value: Any, entry: Entry) -> str:
-    if entry.formula.dynamic and value.kind == "name":
-        return _UNSEEN
-    return f"it {value.reason}"
+def _doubt(
+    doubts: Doubts,
+    entries: Iterable[Entry],
+    values: Mapping[Group, Sequence[Any]],
+    spills: Iterable[tuple[Entry, Spill]],
+) -> None:
+    """Note the cells whose result, or part of whose array, the engine cannot vouch for."""
+    for entry in entries:
+        group = entry.group
+        for row, value in zip(group.rows, values[group], strict=True):
+            if hasattr(value, "reason"):
+                doubts.add((group.sheet, row, group.column), value, entry)
+    for entry, spill in spills:
+        place = (entry.group.sheet, spill.row, spill.column)
+        doubts.areas[place] = spill.new
+        wrong = next((value for line in spill.values for value in line if hasattr(value, "reason")), None)
+        if wrong is not None:
+            doubts.add(place, wrong, entry)
 
 
-def _spills(engine: Engine, entry: Entry, result: Outcome) -> Iterator[Spill]:
+def _spills(engine: Engine, entry: Entry, values: Sequence[Any], full: bool) -> Iterator[Spill]:
     group = entry.group
     if group.kind == "plain" or (group.area is None and _single(entry)):
         return
-    for row, value in zip(group.rows, result.values[group], strict=True):
-        if (group.sheet, row, group.column) in result.stale:
-            continue
+    for row, value in zip(group.rows, values, strict=True):
         height, width = 1, 1
         if group.kind == "array" and group.area is not None:
             height, width = group.area.r2 - group.area.r1 + 1, group.area.c2 - group.area.c1 + 1
@@ -103,8 +126,8 @@ def _spills(engine: Engine, entry: Entry, result: Outcome) -> Iterator[Spill]:
         old = group.area or Area(row, group.column, row, group.column)
         if old == new == Area(row, group.column, row, group.column):
             continue
-        values = [[value]] if (height, width) == (1, 1) else engine.values(group.sheet, *new)
-        yield Spill(row, group.column, old, new, values, entry.fed)
+        grid = [[value]] if (height, width) == (1, 1) else engine.values(group.sheet, *new)
+        yield Spill(row, group.column, old, new, [[_cell(v, full) for v in line] for line in grid], entry.fed)
 
 
 def _single(entry: Entry) -> bool:
@@ -112,13 +135,19 @@ def _single(entry: Entry) -> bool:
     return entry.own is not None or entry.formula.scalar((0, len(entry.formula.tokens)))
 
 
-def _failures(run: Run, stale: Mapping[Place, str]) -> Iterator[Failure]:
-    found = []
-    for (number, row), args in run.failed.items():
+def _failures(run: Run) -> Iterator[tuple[Place, int]]:
+    """The calls that gave an error and were really made: their cells and the numbers of their sites."""
+    for number, row in run.failed:
         entry, site = run.plan_sites[number]
-        place = (entry.group.sheet, row, entry.group.column)
-        if place not in stale and run.made(site, row):
-            found.append((place, site, args))
-    for (sheet, row, column), site, args in sorted(found, key=lambda item: (item[0], item[1].number)):
-        error = run.errors[site.number, row]
-        yield Failure(sheet, address(row, column), site.name, error.value, reason(site.name, args))
+        if run.made(site, row):
+            yield (entry.group.sheet, row, entry.group.column), number
+
+
+def _reported(run: Run, failures: Iterable[tuple[Place, int]], stale: Mapping[Place, str]) -> list[Failure]:
+    found = []
+    for place, number in sorted(failures):
+        if place not in stale:
+            (sheet, row, column), site = place, run.plan_sites[number][1]
+            args, error = run.failed[number, row]
+            found.append(Failure(sheet, address(row, column), site.name, error.value, reason(site.name, args)))
+    return found

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Callable, Iterable, Sequence
+from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
+from types import MappingProxyType
 
 from .curing import Blocked, Cured
 from .formula import Formula, read
@@ -16,16 +17,20 @@ from .refs import Area, Ref
 from .sheet import Group
 from .tables import Tables
 
-__all__ = ["Context", "Entry", "Plan", "make_plan", "span"]
+__all__ = ["Context", "Entry", "Plan", "make_plan", "mark_fed", "span"]
 
 
 @dataclass(frozen=True, slots=True)
 class Context:
-    """What reading a formula needs to know of the workbook; ``cure`` makes its text fit for the engine."""
+    """What reading a formula needs to know of the workbook: all sheets' titles, those of worksheets folded.
+
+    ``cure`` makes a formula's text fit for the engine.
+    """
 
     names: Names
     tables: Tables
     titles: tuple[str, ...]
+    worksheets: frozenset[str]
     cure: Callable[[Sequence[str | int], Sequence[int]], Cured]
 
 
@@ -36,7 +41,7 @@ class Entry:
     group: Group
     formula: Formula
     work: Work = field(default_factory=Work)
-    fed: bool = False  # an LP_ call is in it or in something it reads
+    fed: bool = False  # an LP_ call is in it or in something it reads, as far as can be told
     needed: bool = False  # the engine reads its cells
     met: set[str] = field(default_factory=set)
 
@@ -75,6 +80,7 @@ def make_plan(groups: Iterable[Group], context: Context, per_cell: bool = False)
     plan = Plan([e for e in readable if _lower(e, supply, context, batch=not per_cell)])
     plan.met = set().union(*(e.met for e in readable))
     _order(plan, lambda entry: _lower(entry, supply, context, batch=False))
+    plan.entries = [entry for entry in plan.entries if not entry.group.reason]
     plan.uncertain = any(_may_spill(entry) for entry in plan.entries) and bool(plan.levels)
     for entry in plan.entries:
         for slot in entry.work.slots:
@@ -87,10 +93,22 @@ def make_plan(groups: Iterable[Group], context: Context, per_cell: bool = False)
 def _entry(group: Group, context: Context) -> Entry | None:
     place = Place(group.sheet, group.rows[0], group.column)
     try:
-        return Entry(group, read(group.tokens, place, context.names, context.tables))
+        entry = Entry(group, read(group.tokens, place, context.names, context.tables))
+        for ref in entry.formula.refs:
+            _check_sheet(ref, context)
+        return entry
     except Unreadable as problem:
         group.reason = str(problem)
         return None
+
+
+def _check_sheet(ref: Ref, context: Context) -> None:
+    """Raise Unreadable where a reference leads to no cells."""
+    if ref.sheet is None or ref.sheet.casefold() in context.worksheets:
+        return
+    known = ref.sheet.casefold() in {title.casefold() for title in context.titles}
+    why = "holds no cells that are calculated" if known else "is not in the workbook"
+    raise Unreadable(f"it reads the sheet {ref.sheet!r}, which {why}")
 
 
 def _lower(entry: Entry, supply: Supply, context: Context, batch: bool) -> bool:
@@ -122,21 +140,33 @@ def span(ref: Ref, rows: Sequence[int]) -> Area:
     return Area(min(one.r1, two.r1), one.c1, max(one.r2, two.r2), one.c2)
 
 
-def _block(entry: Entry) -> Block:
+def _block(entry: Entry, more: Sequence[Area] = ()) -> Block:
     rows, group = entry.group.rows, entry.group
     place = group.area or Area(min(rows), group.column, max(rows), group.column)
     # A reference's sheet may be spelled in another case than the sheet's own title.
     reads = {((ref.sheet or group.sheet).casefold(), span(ref, rows)) for ref in entry.formula.refs}
-    return Block(group.sheet.casefold(), place, tuple(reads))
+    return Block(group.sheet.casefold(), (place, *more), tuple(reads))
+
+
+def mark_fed(plan: Plan, filled: Mapping[Entry, Sequence[Area]] = MappingProxyType({})) -> None:
+    """Set which entries an LP_ call is in or may feed; ``filled`` are areas that arrays turned out to fill."""
+    edges = dependencies([_block(entry, filled.get(entry, ())) for entry in plan.entries])
+    _mark_fed(plan, edges, components(edges))
+
+
+def _mark_fed(plan: Plan, edges: list[set[int]], order: list[list[int]]) -> None:
+    if any(entry.formula.lp for entry in plan.entries):
+        seeds = {n for n, entry in enumerate(plan.entries) if entry.formula.lp or entry.formula.dynamic}
+        for number in _downstream(edges, order, seeds):
+            if number < len(plan.entries):
+                plan.entries[number].fed = True
 
 
 def _order(plan: Plan, as_callbacks: Callable[[Entry], bool]) -> None:
     """Set the levels; calls that feed themselves or that hang on unknown references become callbacks."""
     edges = dependencies([_block(entry) for entry in plan.entries])
     order = components(edges)
-    for number in _downstream(edges, order, {n for n, e in enumerate(plan.entries) if e.formula.lp}):
-        if number < len(plan.entries):
-            plan.entries[number].fed = True
+    _mark_fed(plan, edges, order)
     unknown = _downstream(edges, order, {n for n, e in enumerate(plan.entries) if e.formula.dynamic})
     level_after = [0] * len(edges)
     levels: dict[int, list[tuple[Entry, Site]]] = defaultdict(list)

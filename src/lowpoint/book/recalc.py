@@ -100,7 +100,7 @@ class Book:
     def context(self) -> Context:
         """Names, tables, titles, and the cure of formulas for the engine."""
         titles = tuple(sheet.title for sheet in self.package.sheets)
-        return Context(names_of(self.package), tables_of(self.package), titles, cure)
+        return Context(names_of(self.package), tables_of(self.package), titles, frozenset(self.titles), cure)
 
     def strings(self) -> list[str]:
         """The shared strings."""
@@ -126,7 +126,8 @@ def _evaluated(book: Book, report: Report, per_cell: bool) -> Outcome:
     report.evaluation_seconds = time.perf_counter() - began
     outcome = outcome_of(engine, run, plan, book.groups, book.titles)
     cells = sum(len(entry.group.rows) for entry in plan.entries)
-    report.recomputed = cells - sum(1 for place in outcome.stale if place not in _blocked(book))
+    blocked = _blocked(book)
+    report.recomputed = cells - sum(1 for place in outcome.stale if place not in blocked)
     report.calls = sum(len(entry.formula.lp) * len(entry.group.rows) for entry in plan.entries)
     report.failed, report.kept = outcome.failed, outcome.kept
     report.differences = _differences(plan.met)

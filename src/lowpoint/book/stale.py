@@ -4,17 +4,38 @@ from __future__ import annotations
 
 from collections import defaultdict, deque
 from collections.abc import Iterable, Iterator, Mapping
+from dataclasses import dataclass, field
+from typing import Any
 
+from .graph import components
 from .plan import Entry
-from .refs import Ref, address, quoted
+from .refs import Area, Ref, address, quoted
 from .sheet import Group
 
-__all__ = ["Place", "stale_cells"]
+__all__ = ["Doubts", "Place", "cells_of", "stale_cells"]
 
 Place = tuple[str, int, int]
 """Sheet title, row, column."""
 
 WIDE = 200  # a reference over more columns than this is looked at for every stale cell of its sheet
+_IN_CIRCLE = "it is part of a circular reference"
+_BY_CIRCLE = "it reads a circular reference, or is part of one"
+
+
+@dataclass(slots=True)
+class Doubts:
+    """Cells whose result cannot be vouched for, with the reason; which of them met a circle; the areas of arrays."""
+
+    cells: dict[Place, str] = field(default_factory=dict)
+    circular: set[Place] = field(default_factory=set)
+    areas: dict[Place, Area] = field(default_factory=dict)
+
+    def add(self, place: Place, marker: Any, entry: Entry) -> None:
+        """Note what the engine says of a cell."""
+        if marker.kind == "circular":
+            self.circular.add(place)
+        unseen = entry.formula.dynamic and marker.kind == "name"
+        self.cells[place] = "it reads a cell that was not refreshed" if unseen else f"it {marker.reason}"
 
 
 class _Readers:
@@ -42,7 +63,9 @@ class _Readers:
 
     def _among(self, readers: Iterable[tuple[Entry, Ref]], row: int) -> Iterator[tuple[Entry, int]]:
         for entry, ref in readers:
-            rows = self._rows.setdefault(entry, set(entry.group.rows))
+            rows = self._rows.get(entry)
+            if rows is None:
+                rows = self._rows[entry] = set(entry.group.rows)
             if ref.r1.relative and ref.r2.relative:
                 low, high = sorted((row - ref.r1.n, row - ref.r2.n))
                 reach = range(low, high + 1)
@@ -55,46 +78,75 @@ class _Readers:
 
 
 def stale_cells(
-    blocked: Iterable[Group], entries: Iterable[Entry], doubtful: Mapping[Place, str], titles: Mapping[str, str]
+    blocked: Iterable[Group], entries: Iterable[Entry], doubts: Doubts, titles: Mapping[str, str]
 ) -> dict[Place, str]:
-    """Every formula cell that keeps its old value, with the reason.
-
-    ``blocked`` groups were never evaluated; ``doubtful`` cells came out as something the engine cannot vouch for.
-    """
+    """Every formula cell that keeps its old value, with the reason; ``blocked`` groups were never evaluated."""
     reasons: dict[Place, str] = {}
-    queue: deque[Place] = deque()
+    start: list[Place] = list(doubts.cells)
     for group in blocked:
-        for row in group.rows:
-            reasons.setdefault((group.sheet, row, group.column), group.reason)
-        queue.extend(_filled(group))
+        reasons |= {(group.sheet, row, group.column): group.reason for row in group.rows}
+        start += cells_of(group)
+    if not start:
+        return reasons
     readers = _Readers(entries, titles)
-    queue.extend(doubtful)
-    seen = set(queue)
+    fed = _fed(start, readers, doubts.areas)
+    circles = _circles(doubts.circular, readers)
+    for place, why in doubts.cells.items():
+        if place in doubts.circular:
+            why = _IN_CIRCLE if place in circles else fed.get(place, _BY_CIRCLE)
+        else:
+            why = fed.get(place, why)
+        reasons.setdefault(place, why)
+    return fed | reasons
+
+
+def _fed(start: Iterable[Place], readers: _Readers, areas: Mapping[Place, Area]) -> dict[Place, str]:
+    """Everything that reads one of the cells, directly or not, and what it reads."""
+    queue: deque[Place] = deque()
+    seen: set[Place] = set()
+
+    def put(place: Place) -> None:
+        for filled in (place, *_inside(place[0], areas.get(place))):
+            if filled not in seen:
+                seen.add(filled)
+                queue.append(filled)
+
+    for place in start:
+        put(place)
     fed: dict[Place, str] = {}
     while queue:
         place = queue.popleft()
         for entry, row in readers.of(place):
             reader = (entry.group.sheet, row, entry.group.column)
             fed.setdefault(reader, f"it reads {_named(place)}, which was not refreshed")
-            if reader not in seen:
-                seen.add(reader)
-                queue.append(reader)
-                queue.extend(p for p in _filled(entry.group) if p not in seen and entry.group.area)
-                seen.update(_filled(entry.group) if entry.group.area else ())
-    for place, reason in doubtful.items():
-        reasons.setdefault(place, reason if "circular" in reason or place not in fed else fed[place])
-    for place, reason in fed.items():
-        reasons.setdefault(place, reason)
-    return reasons
+            put(reader)
+    return fed
 
 
-def _filled(group: Group) -> Iterator[Place]:
+def _circles(places: set[Place], readers: _Readers) -> set[Place]:
+    """Those of some cells that lead back to themselves."""
+    order = sorted(places)
+    numbers = {place: number for number, place in enumerate(order)}
+    edges: list[set[int]] = [set() for _ in order]
+    for number, place in enumerate(order):
+        for entry, row in readers.of(place):
+            reader = numbers.get((entry.group.sheet, row, entry.group.column))
+            if reader is not None:
+                edges[reader].add(number)
+    rings = (ring for ring in components(edges) if len(ring) > 1 or ring[0] in edges[ring[0]])
+    return {order[number] for ring in rings for number in ring}
+
+
+def cells_of(group: Group) -> Iterator[Place]:
     """Every cell whose value is the group's."""
     if group.area is None:
-        yield from ((group.sheet, row, group.column) for row in group.rows)
-        return
-    a = group.area
-    yield from ((group.sheet, r, c) for r in range(a.r1, a.r2 + 1) for c in range(a.c1, a.c2 + 1))
+        return ((group.sheet, row, group.column) for row in group.rows)
+    return _inside(group.sheet, group.area)
+
+
+def _inside(sheet: str, area: Area | None) -> Iterator[Place]:
+    if area is not None:
+        yield from ((sheet, r, c) for r in range(area.r1, area.r2 + 1) for c in range(area.c1, area.c2 + 1))
 
 
 def _named(place: Place) -> str:

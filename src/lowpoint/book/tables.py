@@ -18,7 +18,7 @@ from .refs import Area, Ref, Row, area
 __all__ = ["Table", "Tables", "tables_of"]
 
 _NAMED = re.compile(r"(?P<table>[^\[\]]*)\[(?P<inside>.*)\]", re.DOTALL)
-_PIECE = re.compile(r"\[((?:[^\[\]']|'.)*)\]|([,:])|\s+", re.DOTALL)
+_PIECE = re.compile(r"\[((?:[^\[\]']|'.)*)\]|([,:])|\s+|((?:[^\[\]',:\s]|'.)(?:[^\[\]',:]|'.)*)", re.DOTALL)
 _ESCAPED = re.compile(r"_x([0-9A-Fa-f]{4})_")
 _ITEMS = {"#all", "#data", "#headers", "#totals", "#this row"}
 
@@ -129,12 +129,13 @@ def _specified(inside: str) -> tuple[set[str], list[str]]:
         piece = _PIECE.match(text, place)
         if not piece:
             raise Unreadable(f"the table reference [{inside}] cannot be read")
-        if piece[1] is not None:
-            word = piece[1].strip().casefold()
+        inner = piece[1] if piece[1] is not None else piece[3]  # some writers leave the column's own brackets out
+        if inner is not None:
+            word = inner.strip().casefold()
             if word in _ITEMS:
                 items.add(word)
             else:
-                columns.append(_unescaped(piece[1]))
+                columns.append(_unescaped(inner))
         place = piece.end()
     return items, columns
 

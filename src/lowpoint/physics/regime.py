@@ -12,30 +12,27 @@ from lowpoint.declare import Caution, NoAnswer, function
 __all__ = ["regime_word"]
 
 
-def _given(*limits: Any) -> Any:
-    """Where at least one of the limits is given."""
-    return np.logical_or.reduce([np.asarray(False) if x is None else ~np.isnan(x) for x in limits])
+def _of(limit: Any) -> Any:
+    """A limit as the kernel compares it: NaN, which nothing is at or below, where none is given."""
+    return np.nan if limit is None else limit
 
 
-def _at_or_below(sigma: Any, limit: Any) -> Any:
-    return np.asarray(False) if limit is None else sigma <= limit
+def _given(limit: Any) -> Any:
+    return ~np.isnan(_of(limit))
 
 
 def _of_another_form(incipient: Any, constant: Any, damage: Any) -> Any:
-    given = [x for x in (incipient, constant, damage) if x is not None]
-    return np.logical_or.reduce([x <= 1.0 for x in given] or [False])
+    return (_of(incipient) <= 1.0) | (_of(constant) <= 1.0) | (_of(damage) <= 1.0)
 
 
 def _no_limit_at_all(incipient: Any, constant: Any, damage: Any, vibration: Any, choked: Any) -> Any:
-    return ~_given(incipient, constant, damage, vibration, choked)
+    return ~(_given(incipient) | _given(constant) | _given(damage) | _given(vibration) | _given(choked))
 
 
 def _out_of_order(incipient: Any, constant: Any, damage: Any) -> Any:
     """Where a milder limit lies below a more severe one."""
-    order = [x for x in (incipient, constant, damage) if x is not None]
-    return np.logical_or.reduce(
-        [milder < severe for i, milder in enumerate(order) for severe in order[i + 1 :]] or [False]
-    )
+    incipient, constant, damage = _of(incipient), _of(constant), _of(damage)
+    return (incipient < constant) | (incipient < damage) | (constant < damage)
 
 
 @function(
@@ -71,18 +68,18 @@ def regime_word(
     Source: definition; the order of severity is common practice (ISA-RP75.23).
     """
     worse_known = _given(damage)
-    incipient_known = _given(constant, damage)
+    incipient_known = _given(constant) | worse_known
     word = np.select(
         [
             sigma <= 1.0,
-            _at_or_below(sigma, choked),
-            _at_or_below(sigma, vibration),
-            _at_or_below(sigma, damage),
-            _at_or_below(sigma, constant) & worse_known,
-            _at_or_below(sigma, constant),
-            _at_or_below(sigma, incipient) & incipient_known,
-            _at_or_below(sigma, incipient),
-            _given(incipient),
+            sigma <= _of(choked),
+            sigma <= _of(vibration),
+            sigma <= _of(damage),
+            (sigma <= _of(constant)) & worse_known,
+            sigma <= _of(constant),
+            (sigma <= _of(incipient)) & incipient_known,
+            sigma <= _of(incipient),
+            np.broadcast_to(_given(incipient), sigma.shape),
         ],
         ["flashing", "choked", "vibration", "damage", "constant", "cavitating", "incipient", "cavitating", "clear"],
         "unjudged",

@@ -160,7 +160,8 @@ def _turbulent_flow(coefficient: Any, dp: Any, head: Any, density: Any, fl: Any,
         fittings.LINE_SIZE, fittings.LARGE_CAPACITY, nonturbulent.SLOW_FLOW,
         Caution("the flow is choked: a lower outlet pressure gives no more flow",
                 lambda result, coefficient, p1, pv, pc, density, fl, valve_size, pipe_in, pipe_out:
-                result >= (1.0 - 1e-12) * choked_flow(coefficient, p1, pv, pc, density, fl, valve_size, pipe_in, pipe_out)),
+                result * (1.0 + 1e-12)
+                >= choked_flow(coefficient, p1, pv, pc, density, fl, valve_size, pipe_in, pipe_out)),
     ),
 )  # fmt: skip
 def flow_through(

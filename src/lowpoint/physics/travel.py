@@ -17,7 +17,7 @@ __all__ = ["operating_travel", "value_at_travel", "valve_travel"]
 
 PERCENT = 0.01
 ROUNDING = 1e-12
-"""An opening that leaves 0 to 1 by this much is at the end of the travel: the formulas end there only but for rounding."""
+"""What passes an end of the travel, or of a table, by no more than this is at the end."""
 
 
 def between(x: Any, xs: Floats, ys: Floats) -> Any:
@@ -120,30 +120,25 @@ def _opening(travels: Floats, coefficients: Floats, fls: Floats, free: Any, chok
     for i in range(len(travels) - 1):
         c, f = coefficients[i], fls[i]
         dc, df = coefficients[i + 1] - c, fls[i + 1] - f
-        first, last = _where_not_negative(dc * df, c * df + f * dc, c * f - choked)
+        first, last = _not_negative(dc * df, c * df + f * dc, c * f - choked)
         first = np.maximum(np.maximum(first, (free - c) / dc), 0.0)
-        passes = (first <= np.minimum(last, 1.0)) & np.isnan(opening)
-        opening = np.where(passes, travels[i] + first * (travels[i + 1] - travels[i]), opening)
+        passes = np.isnan(opening) & (first <= np.minimum(last, 1.0) + ROUNDING)
+        opening = np.where(passes, travels[i] + np.minimum(first, 1.0) * (travels[i + 1] - travels[i]), opening)
     return opening
 
 
-def _where_not_negative(a: float, b: float, c: Any) -> tuple[Any, Any]:
-    """First and last t in 0..1 of the stretch on which ``a t^2 + b t + c`` is not negative (NaN for none).
+def _not_negative(a: float, b: float, c: Any) -> tuple[Any, Any]:
+    """First and last t of the one stretch from t = 0 on where ``a t^2 + b t + c`` is not negative; NaN for none.
 
-    The quadratics of a table are not negative on one stretch: ``a <= 0``, or rising from t = 0 on.
+    The product of a rising and any other positive line: where it curves upward it rises (``b > 0``).
     """
-    root = np.sqrt(np.where(b * b >= 4.0 * a * c, b * b - 4.0 * a * c, np.nan))
-    if a == 0.0 and b == 0.0:
-        return np.where(c >= 0.0, 0.0, np.nan), np.ones_like(c)
-    # Without cancellation: the two roots are c/q and q/a.
-    q_ = -0.5 * (b + root) if b >= 0.0 else -0.5 * (b - root)
-    one = np.where(q_ == 0.0, 0.0, c / q_)
-    if a == 0.0:
-        return (one, np.ones_like(c)) if b > 0.0 else (np.where(c >= 0.0, 0.0, np.nan), one)
-    other = q_ / a
-    if a > 0.0:
-        return np.maximum(one, other), np.ones_like(c)
-    return np.minimum(one, other), np.maximum(one, other)
+    inside = b * b - 4.0 * a * c
+    root = np.sqrt(np.where(inside >= 0.0, inside, np.nan))
+    # The root on the rising side is written so that nothing cancels; with b <= 0 it lies before t = 0.
+    first = -2.0 * c / (b + root) if b > 0.0 else np.where(root >= 0.0, 0.0, np.nan)
+    if a >= 0.0:
+        return first, np.inf
+    return first, (b + root) / (-2.0 * a) if b >= 0.0 else 2.0 * c / (root - b)
 
 
 def _impossible_fl(fls: Floats) -> bool:
@@ -184,11 +179,12 @@ def operating_travel(
 ) -> q.Travel:  # fmt: skip
     """Opening at which the valve passes the flow with the FL that it has there.
 
-    Arrays of one length, the tables 1-D, SI; linear between rows, the roots of each segment in closed form. NaN where the
-    valve is too small, or would be less open than the table's first row.
+    Arrays of one length, the tables 1-D, SI; linear between rows, the roots of each segment in closed form. NaN where
+    the valve is too small, or would be less open than the table's first row.
     Source: derived from IEC 60534-2-1; coefficient and FL at the same travel.
     """
     free, choked = _lacking(flow, p1, p2, pv, pc, density, valve_size, pipe_in, pipe_out)
     opening = _opening(travels, coefficients, fls, free, choked)
-    less_open = (coefficients[0] > free) & (coefficients[0] * fls[0] > choked)
+    least = coefficients[0] * (1.0 - ROUNDING)
+    less_open = (least > free) & (least * fls[0] > choked)
     return np.where(less_open | _impossible_fl(fls), np.nan, opening)

@@ -30,8 +30,8 @@ class Outcome:
     values: npt.NDArray[Any]
     ledger: Ledger
     good: npt.NDArray[np.intp]
-    arguments: dict[str, Any]
-    """The kernel's SI arguments for the rows in ``good``."""
+    given: dict[str, Any]
+    """The arguments of the rows in ``good``, defaults filled in; numbers in the user's unit."""
 
 
 class Checked:
@@ -49,6 +49,7 @@ class Checked:
             self._prepare(parameter)
         self.returns_text = isinstance(declaration.returns, Word | Text)
         self.unit = Unit("") if self.returns_text else self._unit_of(declaration.returns)
+        self._is_table = {p.name: p.is_table for p in self.parameters}
         self._limits = {
             p.name: self._bounds(p.kind) for p in self.parameters if isinstance(p.kind, Quantity)
         }  # fmt: skip
@@ -101,11 +102,11 @@ class Checked:
         user = {p.name: self._check(p, columns.get(p.name), ledger) for p in self.parameters if not p.is_table}
         self._check_relations(user, ledger)
         good = ledger.good()
-        arguments = self._si(user, good if not ledger.clean else None)
-        arguments.update(read)
-        values = self._compute(arguments, good, rows)
-        self._no_answer(values, arguments, good, ledger)
-        return Outcome(values, ledger, good, arguments)
+        given = self._filled(user, good if not ledger.clean else None)
+        given.update(read)
+        values = self._compute(given, good, rows)
+        self._no_answer(values, given, good, ledger)
+        return Outcome(values, ledger, good, given)
 
     def _errors_in(self, columns: Mapping[str, Column], ledger: Ledger) -> None:
         for parameter in self.parameters:
@@ -217,9 +218,9 @@ class Checked:
             broken = low > high if must.equal else low >= high
             ledger.blame(broken, CellError.NUM, messages.out_of_order(self, must, low, high))
 
-    def _si(self, user: dict[str, Any], good: npt.NDArray[np.intp] | None) -> dict[str, Any]:
-        """The kernel's arguments for the good rows: SI, defaults filled in, one element or one a row."""
-        si: dict[str, Any] = {}
+    def _filled(self, user: dict[str, Any], good: npt.NDArray[np.intp] | None) -> dict[str, Any]:
+        """The arguments of the good rows: defaults filled in, one element or one a row."""
+        filled: dict[str, Any] = {}
         for parameter in self.parameters:
             if parameter.is_table:
                 continue
@@ -227,26 +228,21 @@ class Checked:
             if good is not None and isinstance(x, np.ndarray) and len(x) > 1:
                 x = x[good]
             if isinstance(parameter.kind, Quantity):
-                x = self._number_si(parameter, x, si)
+                x = _with_default(parameter, x, filled)
             elif isinstance(x, np.ndarray):
                 x = x.astype(str)
-            si[name] = x
-        return si
+            filled[name] = x
+        return filled
 
-    def _number_si(self, parameter: Parameter, x: Any, si: dict[str, Any]) -> Any:
-        default = parameter.default
-        unit = self.units[parameter.name]
-        if x is not None:
-            x = _to_si(x, unit)
-        if default is None:
-            return x
-        fill = si[default.symbol] if isinstance(default, SameAs) else np.array([unit.to_si(float(default))])
-        if x is None or fill is None:
-            return fill if x is None else x
-        absent = np.isnan(x)
-        return np.where(absent, fill, x) if absent.any() else x
+    def _si(self, given: Mapping[str, Any]) -> dict[str, Any]:
+        """The kernel's arguments: numbers in SI."""
+        return {
+            name: _to_si(x, self.units[name]) if isinstance(x, np.ndarray) and x.dtype.kind == "f" and x.ndim == 1
+            and not self._is_table[name] else x
+            for name, x in given.items()
+        }  # fmt: skip
 
-    def _compute(self, arguments: dict[str, Any], good: npt.NDArray[np.intp], rows: int) -> npt.NDArray[Any]:
+    def _compute(self, given: dict[str, Any], good: npt.NDArray[np.intp], rows: int) -> npt.NDArray[Any]:
         count = len(good)
         out: npt.NDArray[Any] = np.full(rows, None, object) if self.returns_text else np.full(rows, np.nan)
         if count == 0:
@@ -254,16 +250,21 @@ class Checked:
         with np.errstate(all="ignore"):
             for start in range(0, count, BLOCK):
                 stop = min(start + BLOCK, count)
-                answer = self.declaration.kernel(*self._block(arguments, start, stop, count))
+                answer = self.declaration.kernel(*self._block(given, start, stop, count))
                 out[good[start:stop] if count < rows else slice(start, stop)] = self._out(answer)
         return out
 
-    def _block(self, arguments: dict[str, Any], start: int, stop: int, count: int) -> list[Any]:
-        size = stop - start
-        return [
-            value if p.is_table else _block(value, start, stop, size, count)
-            for p, value in ((p, arguments[p.name]) for p in self.parameters)
-        ]
+    def _block(self, given: dict[str, Any], start: int, stop: int, count: int) -> list[Any]:
+        """The kernel's arguments for some rows, in SI: converted here, where they stay in the processor's cache."""
+        block = []
+        for parameter in self.parameters:
+            x = given[parameter.name]
+            if parameter.is_number and x is not None:
+                x = _numbers_block(x, self.units[parameter.name], start, stop, count)
+            elif parameter.is_text and isinstance(x, np.ndarray):
+                x = _words_block(x, start, stop, count)
+            block.append(x)
+        return block
 
     def _out(self, answer: Any) -> Any:
         if self.returns_text:
@@ -273,13 +274,13 @@ class Checked:
         return _from_si(answer, self.unit)
 
     def _no_answer(
-        self, values: npt.NDArray[Any], arguments: dict[str, Any], good: npt.NDArray[np.intp], ledger: Ledger
+        self, values: npt.NDArray[Any], given: dict[str, Any], good: npt.NDArray[np.intp], ledger: Ledger
     ) -> None:
         silent = values == None if self.returns_text else np.isnan(values)  # noqa: E711
         silent = silent & (ledger.codes() == 0) if not ledger.clean else silent
         if not silent.any():
             return
-        among_good = silent[good]
+        among_good, arguments = silent[good], self._si(given)
         for why in self.declaration.no_answer:
             mask = np.zeros(len(values), np.bool_)
             mask[good] = among_good & np.asarray(self._looked_at(why.when, arguments, len(good)), np.bool_)
@@ -302,7 +303,7 @@ class Checked:
         said: list[list[str]] = [[] for _ in range(len(outcome.values))]
         if not len(outcome.good):
             return [outcome.ledger.sentence(row) or "ok" for row in range(len(said))]
-        arguments = dict(outcome.arguments)
+        arguments = self._si(outcome.given)
         if not self.returns_text:
             arguments["result"] = _to_si(np.asarray(outcome.values[outcome.good], np.float64), self.unit)
         for caution in self.declaration.cautions:
@@ -348,17 +349,35 @@ def _present(x: Any) -> npt.NDArray[np.bool_]:
     return np.asarray(~np.isnan(x), np.bool_)
 
 
-def _block(value: Any, start: int, stop: int, size: int, count: int) -> Any:
-    """One argument's rows of a block, contiguous and of the block's length."""
-    if not isinstance(value, np.ndarray):
-        return value
-    if value.dtype.kind != "f":
-        if len(value) == 1 and count > 1:
-            return str(value[0])
-        part = value[start:stop]
-        return str(part[0]) if (part == part[0]).all() else part
-    part = np.full(size, value[0]) if len(value) == 1 and count > 1 else value[start:stop]
+def _with_default(parameter: Parameter, x: Any, filled: Mapping[str, Any]) -> Any:
+    default = parameter.default
+    if default is None:
+        return x
+    fill = filled[default.symbol] if isinstance(default, SameAs) else np.array([float(default)])
+    if x is None or fill is None:
+        return fill if x is None else x
+    absent = np.isnan(x)
+    return np.where(absent, fill, x) if absent.any() else x
+
+
+def _numbers_block(x: npt.NDArray[np.float64], unit: Unit, start: int, stop: int, count: int) -> Any:
+    """One argument's rows of a block in SI, of the block's length; None where all are blank.
+
+    A value for all rows stays one in memory (a stride of 0), so that kernels can tell and compute with it once.
+    """
+    if len(x) == 1 and count > 1:
+        one = _to_si(x, unit)
+        return None if np.isnan(one[0]) else np.ndarray((stop - start,), np.float64, one, 0, (0,))
+    part = _to_si(x[start:stop], unit)
     return None if np.isnan(part[0]) and np.isnan(part).all() else part
+
+
+def _words_block(x: npt.NDArray[Any], start: int, stop: int, count: int) -> Any:
+    """One argument's words of a block, one str where all are equal."""
+    if len(x) == 1 and count > 1:
+        return str(x[0])
+    part = x[start:stop]
+    return str(part[0]) if (part == part[0]).all() else part
 
 
 def _table_fault(parameter: Parameter, table: npt.NDArray[np.float64]) -> tuple[CellError | None, str]:

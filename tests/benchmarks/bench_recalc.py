@@ -48,7 +48,7 @@ _OPENPYXL = "import openpyxl, sys; b = openpyxl.load_workbook(sys.argv[1]); b.sa
 _RECALC = (
     "import sys; from pathlib import Path; from lowpoint.book.recalc import recalculate; "
     "r = recalculate(Path(sys.argv[1]), Path(sys.argv[2]), per_cell='per_cell' in sys.argv); "
-    "more['evaluating'] = r.timings['evaluating']"
+    "more['evaluating'] = r.evaluation_seconds"
 )
 _MEASURED = """
 import json, resource, sys, time

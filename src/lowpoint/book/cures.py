@@ -33,7 +33,8 @@ from .expression import (
 )
 from .formulas import lp_name
 from .helpers import HELPERS, PREFIX
-from .rules import kind_of, makes_array, ruled, scalar_places
+from .kinds import kind_of, makes_array, scalar_places
+from .rules import ruled
 
 __all__ = ["Prepared", "Writer", "prepare"]
 

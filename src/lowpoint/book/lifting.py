@@ -15,7 +15,7 @@ from .cures import prepare
 from .engine import Engine
 from .helpers import HELPERS, PREFIX, broadcast
 from .refs import column_letters
-from .rules import scalar_places
+from .kinds import scalar_places
 
 __all__ = ["lift", "register"]
 

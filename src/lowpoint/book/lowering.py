@@ -107,6 +107,7 @@ class Work:
     sites: list[Site] = field(default_factory=list)
     pieces: Pieces | None = None
     fit: tuple[int, int] | None = None  # lay the result out over so many rows and columns
+    single: bool = True  # the formula surely gives one value
 
     @property
     def own(self) -> Site | None:
@@ -279,7 +280,7 @@ class _Lowering:
 
     def _finish(self) -> None:
         span = (0, len(self.f.tokens))
-        one = self.f.scalar(span, self.singles)
+        one = self.work.single = self.f.scalar(span, self.singles)
         marked = set(self.f.single_ranges()) if self.kind == "plain" and not one else set()
         filled = self.kind == "array" and (self.size != (1, 1) or not one)
         alone = one or self.kind != "plain"

@@ -114,13 +114,13 @@ def _doubt(
 
 def _spills(engine: Engine, entry: Entry, values: Sequence[Any], full: bool) -> Iterator[Spill]:
     group = entry.group
-    if group.kind == "plain" or (group.area is None and _single(entry)):
+    if group.kind == "plain" or (group.area is None and entry.work.single):
         return
     for row, value in zip(group.rows, values, strict=True):
         height, width = 1, 1
         if group.kind == "array" and group.area is not None:
             height, width = group.area.r2 - group.area.r1 + 1, group.area.c2 - group.area.c1 + 1
-        elif not _single(entry) and value is not CellError.SPILL:
+        elif not entry.work.single and value is not CellError.SPILL:
             height, width = engine.spill(group.sheet, row, group.column)
         new = Area(row, group.column, row + height - 1, group.column + width - 1)
         old = group.area or Area(row, group.column, row, group.column)
@@ -128,11 +128,6 @@ def _spills(engine: Engine, entry: Entry, values: Sequence[Any], full: bool) -> 
             continue
         grid = [[value]] if (height, width) == (1, 1) else engine.values(group.sheet, *new)
         yield Spill(row, group.column, old, new, [[_cell(v, full) for v in line] for line in grid], entry.fed)
-
-
-def _single(entry: Entry) -> bool:
-    """Whether the formula surely fills one cell."""
-    return entry.own is not None or entry.formula.scalar((0, len(entry.formula.tokens)))
 
 
 def _failures(run: Run) -> Iterator[tuple[Place, int]]:

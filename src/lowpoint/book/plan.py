@@ -81,7 +81,8 @@ def make_plan(groups: Iterable[Group], context: Context, per_cell: bool = False)
     plan.met = set().union(*(e.met for e in readable))
     _order(plan, lambda entry: _lower(entry, supply, context, batch=False))
     plan.entries = [entry for entry in plan.entries if not entry.group.reason]
-    plan.uncertain = any(_may_spill(entry) for entry in plan.entries) and bool(plan.levels)
+    spilling = any(entry.group.kind == "dynamic" and not entry.work.single for entry in plan.entries)
+    plan.uncertain = spilling and bool(plan.levels)
     for entry in plan.entries:
         for slot in entry.work.slots:
             plan.scratch.setdefault(slot.sheet, [])
@@ -213,9 +214,3 @@ def _downstream(edges: list[set[int]], order: list[list[int]], seeds: set[int]) 
         if any(m in reached or not reached.isdisjoint(edges[m]) for m in members):
             reached.update(members)
     return reached
-
-
-def _may_spill(entry: Entry) -> bool:
-    return (
-        entry.group.kind == "dynamic" and entry.own is None and not entry.formula.scalar((0, len(entry.formula.tokens)))
-    )

@@ -14,7 +14,7 @@ from lowpoint.cells import CellError
 
 from .sheet import attribute
 
-__all__ = ["Edit", "new_attributes", "old_value", "same", "strings_of", "value_element", "with_value"]
+__all__ = ["FILE_SPELLING", "Edit", "new_attributes", "old_value", "same", "strings_of", "value_element", "with_value"]
 
 Edit = tuple[int, int, bytes]
 """Bytes from one place to another, and what takes their place."""
@@ -25,6 +25,9 @@ _TEXTS = re.compile(rb"<(?:[\w.-]+:)?t\b[^>]*>([^<]*)</")
 _TYPE = re.compile(rb"""\s+t\s*=\s*(?:"[^"]*"|'[^']*')""")
 _METADATA = re.compile(rb"""\s+vm\s*=\s*(?:"[^"]*"|'[^']*')""")
 _ERRORS = {e.value: e for e in CellError}
+
+# How the file format itself spells the errors that are younger than it: programs say more in parts of their own.
+FILE_SPELLING = {"#SPILL!": "#VALUE!", "#CALC!": "#VALUE!"}
 
 
 def decoded(text: bytes) -> str:
@@ -66,13 +69,19 @@ def same(old: Any, new: Any, exact: bool) -> bool:
         if type(old) is not float:
             return False
         return old == new or (not exact and f"{old:.15g}" == f"{new:.15g}")
+    if isinstance(new, CellError):
+        return isinstance(old, CellError) and _spelled(old) == _spelled(new)
     return type(old) is type(new) and bool(old == new)
+
+
+def _spelled(error: CellError) -> str:
+    return FILE_SPELLING.get(error.value, error.value)
 
 
 def _typed(value: Any) -> tuple[bytes, bytes]:
     """The type attribute and the text of a value."""
     if isinstance(value, CellError):
-        return b"e", value.value.encode()
+        return b"e", _spelled(value).encode()
     if isinstance(value, bool):
         return b"b", b"1" if value else b"0"
     if isinstance(value, str):

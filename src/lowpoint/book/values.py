@@ -16,6 +16,7 @@ from zipfile import ZIP_DEFLATED, ZipFile
 from lowpoint.book.guard import DEFAULT_LIMITS, Limits
 from lowpoint.book.package import Package
 from lowpoint.book.saving import replace_file
+from lowpoint.book.stored import FILE_SPELLING
 from lowpoint.errors import BookError
 from lowpoint.problems import CellError
 
@@ -50,9 +51,6 @@ _LOST_IN_SHEETS: tuple[tuple[bytes, str], ...] = (
 )
 _SHAPES = re.compile(rb"<(?:\w+:)?(?:sp|grpSp|cxnSp)[\s>]")
 _OURS = re.compile(r"(?<![A-Za-z0-9_])LPU?[_.][A-Za-z]", re.IGNORECASE)
-
-# How the file format itself spells the errors that are younger than it.
-_OLD_SPELLING = {"#SPILL!": "#VALUE!", "#CALC!": "#VALUE!"}
 _STARTS_LIKE_A_FORMULA = ("=", "+", "-", "@", "\t", "\r")
 _UNWRITABLE = re.compile(r"[\x00-\x08\x0b-\x1f\ufffe\uffff]|_(?=x[0-9A-Fa-f]{4}_)")
 
@@ -185,7 +183,7 @@ def _stored(value: Any) -> tuple[Any, str]:
     if value is None or value == "":
         return None, "n"
     if isinstance(value, CellError):
-        return _OLD_SPELLING.get(value.value, value.value), "e"
+        return FILE_SPELLING.get(value.value, value.value), "e"
     if isinstance(value, bool):
         return value, "b"
     if isinstance(value, (int, float)):

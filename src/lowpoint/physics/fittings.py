@@ -7,6 +7,7 @@ a nominal size against an inside diameter) counts as line size, beyond that ther
 
 from __future__ import annotations
 
+from functools import lru_cache
 from typing import Any
 
 import numpy as np
@@ -37,6 +38,26 @@ def fitting_losses(valve_size: Any, pipe_in: Any, pipe_out: Any) -> Pair:
     """
     if valve_size is None:
         return 0.0, 0.0
+    if _one(valve_size) and _one(pipe_in) and _one(pipe_out):
+        return _losses_of_one(valve_size.item(0), pipe_in.item(0), pipe_out.item(0))
+    return _losses(valve_size, pipe_in, pipe_out)
+
+
+def _one(x: Any) -> bool:
+    """Is a column one value for all its rows?"""
+    return len(x) == 1 or x.strides == (0,)
+
+
+@lru_cache(4096)
+def _losses_of_one(valve_size: float, pipe_in: float, pipe_out: float) -> Pair:
+    """The losses of one set of fittings, as arrays of one element; a plant has few sets, and each in many rows."""
+    found = _losses(*(np.array((x,)) for x in (valve_size, pipe_in, pipe_out)))
+    for part in found:
+        part.setflags(write=False)
+    return found
+
+
+def _losses(valve_size: Any, pipe_in: Any, pipe_out: Any) -> Pair:
     b1 = bore_ratio2(valve_size, pipe_in)
     b2 = b1 if pipe_out is pipe_in else bore_ratio2(valve_size, pipe_out)
     inlet = 0.5 * (1.0 - b1) ** 2 + (1.0 - b1 * b1)

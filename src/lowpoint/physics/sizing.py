@@ -84,15 +84,15 @@ def choked_drop(
     return choked_drop_of(p1 - critical_pressure_factor(pv, pc) * pv, fl, coefficient, total, inlet)
 
 
-def _free(a: Any, total: Any) -> Any:
-    """Coefficient for unchoked flow, NaN where the fittings alone take the whole drop."""
-    rest = 1.0 - a * total
-    return np.sqrt(a / np.where(rest > 0.0, rest, np.nan))
-
-
-def _choked(b: Any, fl: Any, inlet: Any) -> Any:
-    """Coefficient that just passes a choked flow."""
-    return _free(b, inlet) / fl
+def _for_both(a: Any, b: Any, fl: Any, total: Any, inlet: Any) -> Any:
+    """``max(sqrt(a/(1 - a total)), sqrt(b/(1 - b inlet))/fl)``, NaN where the fittings alone take the whole drop."""
+    if isinstance(total, float):  # no fittings at all
+        return np.maximum(np.sqrt(a), np.sqrt(b) / fl)
+    rest, rest_choked = 1.0 - a * total, 1.0 - b * inlet
+    passes = np.minimum(rest, rest_choked) > 0.0
+    if not passes.all():
+        rest, rest_choked = np.where(passes, rest, np.nan), np.where(passes, rest_choked, np.nan)
+    return np.maximum(np.sqrt(a / rest), np.sqrt(b / rest_choked) / fl)
 
 
 def no_valve_passes(
@@ -134,7 +134,7 @@ def required_coefficient(
     energy = flow * flow * density
     dp = p1 - p2
     head = p1 - critical_pressure_factor(pv, pc) * pv
-    c = np.maximum(_free(energy / dp, total), _choked(energy / head, fl, inlet))
+    c = _for_both(energy / dp, energy / head, fl, total, inlet)
     rows = nonturbulent.rows_with(viscosity)
     if rows is not None:
         slow = nonturbulent.picked(rows, trim, flow, dp, density, fl, valve_size, pipe_in, viscosity, fd)

@@ -137,6 +137,17 @@ PROMISED = {
         "LP_ALLOWED_DROP": "p1, pv, limit, [form]",
         "LP_ALLOWED_OUTLET": "p1, pv, limit, [form]",
         "LP_ALLOWED_INLET": "p2, pv, limit, [form]",
+        "LP_NOISE": "flow, p1, p2, pv, density, sound_speed, coefficient, fl, fd, valve_size, pipe_bore, pipe_wall, [xfz], "
+        "[outlet_size]",
+        "LP_ORIFICE_LOSS": "bore, pipe, [bore_length], [holes], [reynolds]",
+        "LP_ORIFICE_DROP": "flow, bore, pipe, density, [viscosity], [bore_length], [holes], [taps]",
+        "LP_ORIFICE_FLOW": "p1, p2, bore, pipe, density, pv, pc, [viscosity], [bore_length], [holes]",
+        "LP_ORIFICE_BORE": "flow, p1, p2, pipe, density, pv, pc, [viscosity], [bore_length], [holes]",
+        "LP_ORIFICE_FL": "bore, pipe, [bore_length], [holes]",
+        "LP_ORIFICE_LIMIT": "limit, bore, pipe, [bore_length], [holes], [p1], [pv], [pc], [form]",
+        "LP_STAGES": "p1, p2, pv, target, [form]",
+        "LP_STAGE_PRESSURES": "p1, p2, pv, stages, [rule]",
+        "LP_PLATE_THICKNESS": "drop, support_diameter, bore, stress, [support], [allowance]",
         "LP_ALLOWED_TEMPERATURE": "fluid, p1, p2, limit, [form]",
     }.items()
 }

@@ -34,7 +34,7 @@ def call(name: str, args: Sequence[Any]) -> Any:
     """One call as a cell makes it: a cell value, or a grid where a range was given for a scalar argument.
 
     Ranges broadcast as a spreadsheet does it: one row or one column is repeated, and where a range is too short
-    for another the result is #N/A.
+    for another the result is #N/A. A function whose answer is a column gives a grid, and takes no ranges (#VALUE!).
     """
     if name == "LP_WHY":
         return _why(args)
@@ -45,6 +45,10 @@ def call(name: str, args: Sequence[Any]) -> Any:
             return quick
     if len(args) > len(function.parameters):
         return CellError.VALUE
+    if function.column:
+        args = _singled(args)
+        if any(isinstance(a, list) for a in args):
+            return CellError.VALUE
     return _spread(function, args, lambda outcome: _cells(function, outcome))
 
 
@@ -107,11 +111,19 @@ def _row_by_row(function: Function, columns: Sequence[Any], rows: int, explain: 
 
 def _cells(function: Function, outcome: Outcome) -> list[Any]:
     """Cell values of an outcome: plain floats and text, errors where a row failed."""
-    cells: list[Any] = outcome.values.tolist()
+    if function.column:
+        cells: list[Any] = [[[x] for x in row if x == x] for row in outcome.values.tolist()]
+    else:
+        cells = outcome.values.tolist()
     if not outcome.ledger.clean:
         for row in np.flatnonzero(outcome.ledger.codes()):
             cells[row] = outcome.ledger.error(int(row))
     return cells
+
+
+def _singled(args: Sequence[Any]) -> list[Any]:
+    """A range of one cell is that cell."""
+    return [a[0][0] if isinstance(a, list) and _shape(a) == (1, 1) else a for a in args]
 
 
 def _shape(argument: Any) -> tuple[int, int]:
@@ -165,6 +177,10 @@ def _why(args: Sequence[Any]) -> Any:
     function = functions[name]
     if len(args) - 1 > len(function.parameters):
         return _too_many(function, len(args) - 1)
+    if function.column:
+        args = _singled(args)
+        if any(isinstance(a, list) for a in args[1:]):
+            return f"{name}: every argument must be one value, got a range; its answer is a column already."
     return _spread(function, args[1:], function.checked.explain)
 
 

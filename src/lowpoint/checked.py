@@ -244,6 +244,8 @@ class Checked:
 
     def _compute(self, given: dict[str, Any], good: npt.NDArray[np.intp], rows: int) -> npt.NDArray[Any]:
         count = len(good)
+        if self.declaration.column:
+            return self._columns(given, good, rows)
         out: npt.NDArray[Any] = np.full(rows, None, object) if self.returns_text else np.full(rows, np.nan)
         if count == 0:
             return out
@@ -252,6 +254,16 @@ class Checked:
                 stop = min(start + BLOCK, count)
                 answer = self.declaration.kernel(*self._block(given, start, stop, count))
                 out[good[start:stop] if count < rows else slice(start, stop)] = self._out(answer)
+        return out
+
+    def _columns(self, given: dict[str, Any], good: npt.NDArray[np.intp], rows: int) -> npt.NDArray[Any]:
+        """Answers that are columns themselves: a row of numbers for each row of arguments."""
+        if not len(good):
+            return np.full((rows, 1), np.nan)
+        with np.errstate(all="ignore"):
+            answer = self._out(self.declaration.kernel(*self._block(given, 0, len(good), len(good))))
+        out = np.full((rows, answer.shape[1]), np.nan)
+        out[good] = answer
         return out
 
     def _block(self, given: dict[str, Any], start: int, stop: int, count: int) -> list[Any]:
@@ -276,7 +288,8 @@ class Checked:
     def _no_answer(
         self, values: npt.NDArray[Any], given: dict[str, Any], good: npt.NDArray[np.intp], ledger: Ledger
     ) -> None:
-        silent = values == None if self.returns_text else np.isnan(values)  # noqa: E711
+        first = values[:, 0] if values.ndim == 2 else values
+        silent = first == None if self.returns_text else np.isnan(first)  # noqa: E711
         silent = silent & (ledger.codes() == 0) if not ledger.clean else silent
         if not silent.any():
             return

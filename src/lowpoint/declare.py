@@ -109,7 +109,7 @@ class Declaration:
     basis_text: str
     resolve: Mapping[str, Callable[[str], str]]
     words: Mapping[str, Callable[[], Iterable[str]]]
-    variadic: bool = False
+    column: bool = False
 
 
 declarations: dict[str, Declaration] = {}
@@ -132,13 +132,15 @@ def function(
     basis_text: str = "",
     resolve: Mapping[str, Callable[[str], str]] | None = None,
     words: Mapping[str, Callable[[], Iterable[str]]] | None = None,
+    column: bool = False,
 ) -> Callable[[Kernel], Kernel]:
     """Declare the kernel below as the worksheet function ``LP_<name>``; returns the kernel unchanged.
 
     ``any_unit``: the answer depends on ratios alone, any one unit a dimension will do and there is no US twin.
     ``needs``: an argument given asks for others (#N/A). ``must``: relations between arguments (#NUM!).
     ``resolve``: what turns a free word into its canonical spelling, ValueError with a sentence for an unknown one
-    (#VALUE!); ``words`` lists its vocabulary for the reference. ``basis`` is one of :data:`BASES`.
+    (#VALUE!); ``words`` lists its vocabulary for the reference. ``basis`` is one of :data:`BASES`. ``column``: the
+    answer of one call is a column of numbers; the kernel gives a row a call, NaN behind the last.
     """
 
     def declare(kernel: Kernel) -> Kernel:
@@ -146,7 +148,7 @@ def function(
             name=name, kernel=kernel, group=group, gives=gives, parameters=_parameters(name, kernel),
             returns=_returns(name, kernel), source=source(source_key), equation=equation, any_unit=any_unit,
             needs=dict(needs or {}), must=must, no_answer=no_answer, cautions=cautions, basis=basis,
-            basis_text=basis_text, resolve=dict(resolve or {}), words=dict(words or {}),
+            basis_text=basis_text, resolve=dict(resolve or {}), words=dict(words or {}), column=column,
         )  # fmt: skip
         _check(declaration)
         declarations[name] = declaration
@@ -206,6 +208,8 @@ def _check(item: Declaration) -> None:
         seen_optional = seen_optional or not parameter.required
     if isinstance(item.returns, Quantity):
         _check_dimension(wrong, item.returns)
+    elif item.column:
+        raise wrong("must give numbers where it gives a column", item.returns)
     for part, mentioned in _mentioned(item).items():
         for symbol in mentioned:
             if symbol not in symbols and symbol != "result":

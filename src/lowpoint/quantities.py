@@ -337,6 +337,80 @@ HeadExponent = Annotated[
 ]
 ScaleMethod = Annotated[Words, Word("method", "how the size and pressure effects enter", ("isa", "upstream", "tullis"))]
 
+# --- orifice plates ---------------------------------------------------------------------------------------------
+OrificeBore = Annotated[
+    Floats,
+    _positive("bore", "diameter of the bore (of each hole)", "size", (40.0, 60.0), remedy="Sizes are in mm (in)."),
+]
+Pipe = Annotated[Floats, _positive("pipe", "inside diameter of the pipe", "size", (100.0, 150.0))]
+BoreLength = Annotated[
+    Floats,
+    _positive("bore_length", "length of the parallel part of the bore (not the plate's thickness)", "size", (1.0, 2.0)),
+]
+Holes = Annotated[
+    Floats,
+    Quantity(
+        "holes",
+        "number of equal holes",
+        "ratio",
+        low=1.0,
+        closed_low=True,
+        high=1e6,
+        zero_is_blank=True,
+        working=(1.0, 1.0),
+    ),
+]
+Reynolds = Annotated[Floats, _positive("reynolds", "Reynolds number of the pipe", "ratio", (1e5, 1e6))]
+Taps = Annotated[Words, Word("taps", "which drop: net, or between taps", ("net", "corner", "flange", "radius"))]
+LimitKind = Annotated[Words, Word("limit", "which limit", ("incipient", "constant", "choked"))]
+Target = Annotated[Floats, _positive("target", "least index that every stage must have", "ratio", _LIMIT)]
+Stages = Annotated[
+    Floats,
+    Quantity(
+        "stages",
+        "number of stages",
+        "ratio",
+        low=1.0,
+        closed_low=True,
+        high=100.0,
+        closed_high=True,
+        working=(3.0, 3.0),
+    ),
+]
+StageRule = Annotated[Words, Word("rule", "how the drop is split", ("index", "drop"))]
+PressureColumn = Annotated[Floats, Quantity("pressures", "column of pressures from inlet to outlet", "pressure")]
+PlateDrop = Annotated[
+    Floats,
+    _positive(
+        "drop", "largest pressure difference on the plate, start-up and blockage included", "pressure", (5.0, 30.0)
+    ),
+]
+SupportDiameter = Annotated[
+    Floats,
+    _positive("support_diameter", "diameter at which the plate is supported (gasket mean)", "size", (120.0, 200.0)),
+]
+Stress = Annotated[Floats, _positive("stress", "allowable stress of the plate", "stress", (80.0, 140.0))]
+Support = Annotated[Words, Word("support", "how the rim is held", ("simple", "clamped"))]
+Allowance = Annotated[
+    Floats,
+    Quantity("allowance", "added thickness (corrosion, wear)", "size", low=0.0, closed_low=True, working=(0.5, 1.0)),
+]
+Thickness = Annotated[Floats, Quantity("thickness", "thickness of the plate", "size")]
+
+# --- noise ------------------------------------------------------------------------------------------------------
+PipeBore = Annotated[
+    Floats, _positive("pipe_bore", "inside diameter of the pipe after the valve", "size", (100.0, 200.0))
+]
+PipeWall = Annotated[Floats, _positive("pipe_wall", "wall thickness of that pipe", "size", (3.0, 8.0))]
+Xfz = Annotated[
+    Floats,
+    _positive(
+        "xfz", "xF of incipient cavitation at 6 bar", "ratio", (0.2, 0.4), high=1.0, remedy="From the vendor's test."
+    ),
+]
+OutletSize = Annotated[Floats, _positive("outlet_size", "bore of the valve's outlet", "size", (80.0, 200.0))]
+Level = Annotated[Floats, Quantity("level", "sound pressure level", "level")]
+
 # --- results ----------------------------------------------------------------------------------------------------
 Ratio = Annotated[Floats, Quantity("ratio", "ratio", "ratio")]
 Share = Annotated[Floats, Quantity("share", "mass fraction", "ratio")]

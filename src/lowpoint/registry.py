@@ -20,7 +20,8 @@ from lowpoint.scalar import bind_scalar
 __all__ = ["Function", "canonical", "functions"]
 
 _KERNEL_MODULES = (
-    "liquids", "site", "conversion", "sizing", "travel", "typical", "flashing", "indices", "limits", "regime",
+    "liquids", "site", "conversion", "sizing", "travel", "typical", "flashing", "indices", "limits", "regime", "noise",
+    "orifices", "stages", "plate_strength",
 )  # fmt: skip
 
 
@@ -28,10 +29,12 @@ class Function:
     """One worksheet function as Python sees it: keyword or positional arguments in cell units, scalars or arrays.
 
     Arrays broadcast; tables are taken whole. Elements that are missing, wrong or impossible come back NaN (None
-    for functions that give text); :meth:`why` says why, element by element.
+    for functions that give text); :meth:`why` says why, element by element. Where the answer of one call is a column,
+    it is the last axis, filled up with NaN.
     """
 
     variadic = False
+    column = False
 
     def __init__(self, declaration: Declaration, system: str) -> None:
         self.checked = Checked(declaration, system)
@@ -40,7 +43,8 @@ class Function:
         self.system = system
         self.group, self.summary = declaration.group, declaration.gives
         self.parameters: tuple[Parameter, ...] = declaration.parameters
-        self.scalar = bind_scalar(self.checked)
+        self.column = declaration.column
+        self.scalar = None if declaration.column else bind_scalar(self.checked)
         self.__doc__ = f"{self.name}: {declaration.gives}."
 
     def __repr__(self) -> str:
@@ -125,7 +129,7 @@ class Why(Function):
 
 
 def _shaped(values: Any, shape: tuple[int, ...]) -> Any:
-    return values[0] if shape == () else values.reshape(shape)
+    return values[0] if shape == () else values.reshape(shape + values.shape[1:])
 
 
 def _load() -> Mapping[str, Function]:

@@ -5,7 +5,6 @@ from __future__ import annotations
 import tempfile
 from pathlib import Path
 
-
 from hypothesis import example, given, settings
 from hypothesis import strategies as st
 
@@ -89,7 +88,7 @@ def rare(draw: st.DrawFn, place: int) -> str:
     return draw(
         st.sampled_from([
             f'LP_MARGIN(INDIRECT("A{{r}}"),{a})', f"OFFSET(A$2,1,1)+{c}", "NOSUCH(A2)", f"{c}+NOSUCH(1)",
-            "LP_SIGMA(A$2:A$5,B$2:B$5,C$2:C$5)", f"SUM(LP_MARGIN(A$2:A$5,{a}))", f'IFERROR(INDIRECT("E{{r}}"),{c})',
+            "LP_SIGMA(A$2:A$5,B$2:B$5,C$2:C$5)", f"SUM(LP_MARGIN(A$2:A$5,{a}))", f'IFERROR(INDIRECT("B{{r}}"),{c})',
             'LP_WHY("LP_SIGMA",A{r},B{r},C{r})', f"LP_MARGIN({a},1)-{c}", "MAX(E$2:E$5)", "E{below}+1",
         ])  # fmt: skip
     )

@@ -77,5 +77,5 @@ def test_readme_names_only_real_functions_and_commands() -> None:
     text = (ROOT / "README.md").read_text(encoding="utf-8")
     for name in set(re.findall(r"\bLPU?_[A-Z][A-Z_]+\b", text)):
         assert registry.canonical(name), name
-    for command in set(re.findall(r"\blowpoint ([a-z]+)\b", text)):
+    for command in set(re.findall(r"(?:^|`|bin/)lowpoint ([a-z]+)\b", text, re.MULTILINE)):
         assert command in COMMANDS, command

@@ -26,7 +26,8 @@ def _cases() -> list[dict[str, float]]:
         case = {
             "p1": p1, "p2": p1 * float(rng.uniform(0.15, 0.9)), "pv": float(rng.uniform(0.01, 0.3)) * p1 * 0.5,
             "pc": 220.64, "density": float(rng.uniform(850.0, 999.0)), "fl": float(rng.uniform(0.6, 0.95)),
-            "valve_size": d, "pipe_in": d / float(rng.uniform(0.85, 1.0)), "pipe_out": d / float(rng.uniform(0.85, 1.0)),
+            "valve_size": d, "pipe_in": d / float(rng.uniform(0.85, 1.0)),
+            "pipe_out": d / float(rng.uniform(0.85, 1.0)),
         }  # fmt: skip
         # A flow that asks for 4 to 12 Cv an inch squared: fittings matter a little.
         kv = float(rng.uniform(4.0, 12.0)) * (d / 25.4) ** 2 / 1.156

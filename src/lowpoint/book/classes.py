@@ -37,10 +37,10 @@ _PLACES = {
     "IFERROR": "TT",
     "IFNA": "TT",
     "IFS": "VTVTVTVTVTVTVTVTVTVT",
-    "INDEX": "RVVV",
+    "INDEX": "AVVV",  # why MATCH(1,INDEX((a=b)*(c=d),0),0) needs no array entry
     "INTERCEPT": "A",
     "LARGE": "RV",
-    "LOOKUP": "VRR",
+    "LOOKUP": "VAA",
     "MATCH": "VRV",
     "MAXIFS": "RRVRVRVRVRVRV",
     "MINIFS": "RRVRVRVRVRVRV",

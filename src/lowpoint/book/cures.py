@@ -12,7 +12,7 @@ last step is a sum or difference gives 0 when its two sides agree so (common pra
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Iterable
+from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass, replace
 from functools import lru_cache
 from itertools import pairwise
@@ -34,7 +34,7 @@ from .expression import (
 from .formulas import lp_name
 from .helpers import HELPERS, PREFIX
 from .kinds import kind_of, makes_array, scalar_places
-from .rules import ruled
+from .rules_text import ruled
 
 __all__ = ["Prepared", "Writer", "prepare"]
 
@@ -56,9 +56,10 @@ class Prepared:
 class Writer:
     """Writes one formula anew, noting which differences it meets."""
 
-    def __init__(self) -> None:
+    def __init__(self, hiding: int = 0) -> None:
         self.met: dict[str, None] = {}
         self.names: dict[str, Piece] = {}
+        self.hiding = hiding  # how rows of the workbook are hidden: 1 by hand, 2 by a filter
 
     def note(self, probe: str) -> None:
         self.met[probe] = None
@@ -187,15 +188,27 @@ class Writer:
             return done
         return self.lifted(name, call.name, pieces)
 
-    def lifted(self, name: str, stored: str, pieces: list[Piece | None]) -> Piece:
+    def plain(self, name: str, pieces: Sequence[Piece | None]) -> Piece:
+        """A call of the engine's own function with other arguments than were written."""
+        return self.lifted(name, name, pieces)
+
+    def lifted(self, name: str, stored: str, pieces: Sequence[Piece | None]) -> Piece:
         """A call as it stands, or over ranges where the function takes single values."""
         places, possible = scalar_places(name, len(pieces))
         if not any(piece is not None and piece.array for place in places if (piece := pieces[place])):
             return Piece(_written(stored, pieces), makes_array(name, pieces), kind_of(name))
         if not possible or any(piece is None for piece in pieces):
             raise BlockedError("range-for-single-value", f"gives {name} a range where it takes a single value")
+        return self.over_cells(name, pieces, kind_of(name))
+
+    def over_cells(self, name: str, pieces: Sequence[Piece | None], kind: str) -> Piece:
+        """A call for every combination of the single values in its ranges."""
         self.note("single-value-over-range")
-        return Piece(f'{PREFIX}LIFT("{name}",{_arguments(pieces)})', True, kind_of(name))
+        return Piece(f'{PREFIX}LIFT("{name}",{_arguments(pieces)})', True, kind)
+
+    def bound(self, piece: Piece, write: Callable[[str], str]) -> str:
+        """``write`` over the piece, computed once."""
+        return _bound(piece, write)
 
     def helper(self, name: str, pieces: Iterable[Piece | None], array: bool = False, kind: str = "any") -> Piece:
         """A call of our own helper instead."""
@@ -221,7 +234,7 @@ def _arguments(pieces: Iterable[Piece | None]) -> str:
     return ",".join("" if piece is None else piece.text for piece in pieces)
 
 
-def _written(name: str, pieces: list[Piece | None]) -> str:
+def _written(name: str, pieces: Sequence[Piece | None]) -> str:
     return f"{name}({_arguments(pieces)})"
 
 
@@ -279,33 +292,39 @@ def _snapped(left: Piece, operator: str, right: Piece) -> Piece:
     return Piece(_both(left, right, write), array, "number")
 
 
-_OPEN_CELL = re.compile(r"(?<![\w.$])(\$?[A-Za-z]{1,3}\$?\d{1,7})(?![\w.(!])")
-_STAND_IN = re.compile(r"XFC(\d+)")
+_CELL_ROW = re.compile(r"(?<![\w.$])(\$?[A-Za-z]{1,3}\$?)(\d{1,7})(?![\w.(!])")
+_STAND_IN = re.compile(r"104\d{4}")
+_FIRST_STAND_IN = 1_040_000  # rows that no workbook fills stand for the rows of a formula, in order of appearance
 
 
-def prepare(formula: str) -> Prepared:
-    """The text to load instead of ``formula``; formulas that differ only in their cells are worked out once.
+def prepare(formula: str, hiding: int = 0) -> Prepared:
+    """The text to load instead of ``formula``; formulas that differ only in their rows are worked out once.
+
+    ``hiding`` says how rows of the workbook are hidden (hiding.Hiding), which some functions leave out.
 
     >>> prepare("=B2&$C$3").met
     ('number-text-15-digits',)
     """
-    if "XFC" in formula.upper():
-        return _prepared(formula)
-    pieces = _OPEN_CELL.split(formula)
-    stand_ins = [f"XFC{number}" for number in range(1, len(pieces) // 2 + 1)]
-    pattern = "".join(a + b for a, b in zip(pieces[::2], [*stand_ins, ""], strict=True))
-    done = _prepared(pattern)
+    if _STAND_IN.search(formula):
+        return _prepared(formula, hiding)
+    stand_ins: dict[str, str] = {}
+
+    def stand_in(cell: re.Match[str]) -> str:
+        return cell[1] + stand_ins.setdefault(cell[2], str(_FIRST_STAND_IN + len(stand_ins)))
+
+    done = _prepared(_CELL_ROW.sub(stand_in, formula), hiding)
     if done.blocked is not None:
         return replace(done, text=formula)
-    return replace(done, text=_STAND_IN.sub(lambda found: pieces[2 * int(found[1]) - 1], done.text))
+    rows = {number: row for row, number in stand_ins.items()}
+    return replace(done, text=_STAND_IN.sub(lambda found: rows[found[0]], done.text))
 
 
 @lru_cache(maxsize=65536)
-def _prepared(formula: str) -> Prepared:
+def _prepared(formula: str, hiding: int) -> Prepared:
     trouble = unreadable(formula)
     if trouble is not None:
         return Prepared(formula, ("unreadable",), trouble)
-    writer = Writer()
+    writer = Writer(hiding)
     try:
         return Prepared("=" + writer.whole(parse(formula)).text, tuple(writer.met))
     except BlockedError as stop:

@@ -37,12 +37,15 @@ def instance(parts: Sequence[str | int], row: int) -> str:
     return "".join(p if isinstance(p, str) else str(row + p) for p in parts)
 
 
-def cure(parts: Sequence[str | int], rows: Sequence[int]) -> Cured:
-    """Rewrite what the engine would get wrong. Raises Unreadable, with the reason, where that cannot be done."""
+def cure(parts: Sequence[str | int], rows: Sequence[int], hiding: int = 0) -> Cured:
+    """Rewrite what the engine would get wrong; ``hiding`` says how rows of the workbook are hidden (hiding.Hiding).
+
+    Raises Unreadable, with the reason, where that cannot be done.
+    """
     from .cures import prepare
 
     def rewritten(text: str) -> tuple[str, tuple[str, ...]]:
-        done = prepare(f"={text}")
+        done = prepare(f"={text}", hiding)
         if done.blocked is not None:
             raise Blocked(done.blocked, done.met)
         return done.text.removeprefix("="), done.met

@@ -10,7 +10,8 @@ from typing import TYPE_CHECKING, Any
 from lowpoint import cells
 from lowpoint.cells import OMITTED, CellError, Same
 
-from .lowering import FIT, Arg, Cells, Computed, Literal, Result, Site
+from .curing import instance
+from .lowering import FIT, Arg, Cells, Computed, Literal, Result, Site, formula_of, text_of
 from .plan import Entry, Plan
 
 if TYPE_CHECKING:
@@ -49,8 +50,10 @@ class Run:
             for level in self.plan.levels:
                 self._level(level)
             if not self.plan.uncertain or before == self.results:
-                return
-        self.settled = False
+                break
+        else:
+            self.settled = False
+        self._confirm()
 
     def values(self, entry: Entry) -> list[Any]:
         """The final values of an entry's cells, in the order of its rows."""
@@ -66,6 +69,20 @@ class Run:
         """Whether a call was really made, or stands in a branch that was not taken."""
         guard = site.guard
         return guard is None or self.engine.value(guard.slot.sheet, row, guard.slot.column) not in (0.0, False, None)
+
+    def _confirm(self) -> None:
+        """Work out the formulas of failed callbacks once more: an earlier round may have made a call in a branch that
+        is not taken by now."""
+        cells = {(site, row) for site, row in self.failed if self.plan_sites[site][1].args is None}
+        for key in cells:
+            del self.failed[key]
+        for entry, row in {(self.plan_sites[site][0], row) for site, row in cells}:
+            pieces = formula_of(entry.work)
+            if pieces is not None:
+                formula = "=" + instance(text_of(pieces), row)
+                self.engine.set_formulas(entry.group.sheet, row, entry.group.column, [[formula]])
+        if cells:
+            self.engine.evaluate()
 
     # Batches
 

@@ -25,6 +25,7 @@ __all__ = [
     "is_cell",
     "is_range",
     "parse",
+    "spans",
 ]
 
 _CELL = re.compile(r"\$?[A-Za-z]{1,3}\$?\d{1,7}")
@@ -101,6 +102,25 @@ def is_cell(text: str) -> bool:
 def is_range(text: str) -> bool:
     """Whether a range word is an area of cells (one or more), not a name or a single cell."""
     return _AREA.fullmatch(_body(text)) is not None
+
+
+_END = re.compile(r"\$?([A-Za-z]{0,3})\$?(\d{0,7})")
+
+
+def spans(text: str) -> tuple[bool, bool]:
+    """Whether a range word, or an array constant, has more than one row, and more than one column.
+
+    >>> spans("List!$A$2:B2"), spans("A:A"), spans("{1,2;3,4}")
+    ((False, True), (True, False), (True, True))
+    """
+    if text.startswith("{"):
+        return ";" in text, "," in text
+    if not is_range(text):
+        return False, False
+    one, two = (_END.fullmatch(end) for end in _body(text).split(":"))
+    if one is None or two is None:
+        return False, False
+    return one[2] != two[2] or not one[2], one[1].upper() != two[1].upper() or not one[1]
 
 
 class _Reader:

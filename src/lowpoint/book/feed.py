@@ -13,7 +13,7 @@ from collections.abc import Iterable, Mapping, Sequence
 from html import escape
 
 from .curing import instance
-from .lowering import FIT, text_of
+from .lowering import formula_of, text_of
 from .package import Package
 from .plan import Entry, Plan
 from .refs import column_letters
@@ -63,13 +63,10 @@ def _cell_text(entry: Entry | None) -> list[str | int] | None:
     """Escaped text of the engine's formula; None to leave the stored bytes, empty for no formula."""
     if entry is None or entry.own is not None:
         return []
-    if entry.work.pieces is None:
+    pieces = formula_of(entry.work)
+    if pieces is None:
         return None
-    parts = text_of(entry.work.pieces)
-    if entry.work.fit is not None:
-        height, width = entry.work.fit
-        parts = [f"{FIT}({height},{width},", *parts, ")"]
-    return [escape(p, quote=False) if isinstance(p, str) else p for p in parts]
+    return [escape(p, quote=False) if isinstance(p, str) else p for p in text_of(pieces)]
 
 
 def _cell(prefix: bytes, row: int, column: int, formula: str) -> bytes:

@@ -169,7 +169,7 @@ def _sort(array: Any, places: Any = 1.0, orders: Any = 1.0, by_column: Any = Fal
 def _sortby(array: Any, *pairs: Any) -> Any:
     """The array sorted by other ranges, each followed by 1 or -1."""
     grid = grid_of(array)
-    across = len(grid_of(pairs[0])) == 1 and len(grid) > 1 or len(grid) == 1
+    across = (len(grid_of(pairs[0])) == 1 and len(grid) > 1) or len(grid) == 1
     lines = flipped(grid) if across else grid
     keys = []
     for cells, sign in itertools.zip_longest(pairs[::2], pairs[1::2], fillvalue=1.0):

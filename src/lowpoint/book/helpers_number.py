@@ -136,18 +136,19 @@ def _sorted_numbers(array: Any, skip_errors: bool) -> Any:
 @helper
 def _aggregate(function: Any, option: Any, array: Any, place: Any) -> Any:
     """AGGREGATE 14 to 19: LARGE, SMALL, PERCENTILE and QUARTILE, each over what the option leaves."""
+    if isinstance(place, list):
+        return [[_aggregate(function, option, array, cell) for cell in line] for line in place]
     numbers = _sorted_numbers(array, option == 6.0)
-    at = number_of(place) if not isinstance(place, (*WRONG, list)) else None
-    if isinstance(numbers, WRONG) or isinstance(place, WRONG):
-        return numbers if isinstance(numbers, WRONG) else place
+    wrong = next((cell for cell in (numbers, place) if isinstance(cell, WRONG)), None)
+    at = None if wrong is not None else number_of(place)
     if at is None:
-        return CellError.VALUE
-    if function in (14.0, 15.0):
-        rank = math.ceil(at)
-        if not 1 <= rank <= len(numbers):
-            return CellError.NUM
-        return numbers[-rank] if function == 14.0 else numbers[rank - 1]
-    return _quantile(numbers, at if function in (16.0, 18.0) else int(at) / 4.0, function < 18.0)
+        return wrong or CellError.VALUE
+    if function not in (14.0, 15.0):
+        return _quantile(numbers, at if function in (16.0, 18.0) else int(at) / 4.0, function < 18.0)
+    rank = math.ceil(at)
+    if not 1 <= rank <= len(numbers):
+        return CellError.NUM
+    return numbers[-rank] if function == 14.0 else numbers[rank - 1]
 
 
 def _quantile(numbers: list[float], share: float, inclusive: bool) -> Any:

@@ -9,7 +9,7 @@ from typing import Any
 
 from lowpoint.problems import CellError
 
-from .helping import WRONG, Grid, cells_of, each, helper, number_of, text_of
+from .helping import WRONG, cells_of, each, helper, number_of, text_of
 
 _CLOCK = re.compile(r"(?:.*\s)?(\d{1,2})(?::(\d{1,2})(?::(\d{1,2}(?:\.\d*)?))?)?\s*([AaPp][Mm])?")
 _FIGURE = re.compile(r"([-+]?)\$?([-+]?)(\d{1,3}(?:,\d{3})+|\d+)?(\.\d*)?([Ee][-+]?\d+)?\s*(%?)")
@@ -128,9 +128,10 @@ def _cuts(text: str, marks: Any, folded: Any) -> list[tuple[int, int]]:
     return [(cut.start(), cut.end()) for cut in found]
 
 
-def _cut(arguments: tuple[Any, ...]) -> Any:
-    """The text and the delimiter that TEXTBEFORE and TEXTAFTER mean, None for the end, or their other answer."""
-    text, marks, which, folded, ends, missing = (*arguments, *(1.0, 0.0, 0.0, CellError.NA)[len(arguments) - 2 :])
+def _cut(
+    text: Any, marks: Any, which: Any = 1.0, folded: Any = 0.0, ends: Any = 0.0, missing: Any = CellError.NA
+) -> Any:
+    """The text and where the delimiter that TEXTBEFORE and TEXTAFTER mean stands in it, or their other answer."""
     wrong = next((cell for cell in (text, *cells_of(marks), which, folded, ends) if isinstance(cell, WRONG)), None)
     if wrong is not None or not which:
         return wrong or CellError.VALUE
@@ -148,31 +149,11 @@ def _cut(arguments: tuple[Any, ...]) -> Any:
 
 @helper
 def _textbefore(*arguments: Any) -> Any:
-    found = _cut(arguments)
+    found = _cut(*arguments)
     return found[0][: found[1][0]] if isinstance(found, tuple) else found
 
 
 @helper
 def _textafter(*arguments: Any) -> Any:
-    found = _cut(arguments)
+    found = _cut(*arguments)
     return found[0][found[1][1] :] if isinstance(found, tuple) else found
-
-
-def _parts(text: str, marks: Any, folded: Any, skip: Any) -> list[str]:
-    begin, parts = 0, []
-    for start, end in _cuts(text, marks, folded):
-        parts.append(text[begin:start])
-        begin = end
-    return [part for part in [*parts, text[begin:]] if part or not skip]
-
-
-@helper
-def _textsplit(
-    text: Any, columns: Any, rows: Any = None, skip: Any = False, folded: Any = False, pad: Any = CellError.NA
-) -> Any:
-    wrong = next((cell for cell in (text, *cells_of(columns), *cells_of(rows)) if isinstance(cell, WRONG)), None)
-    if wrong is not None:
-        return wrong
-    grid: Grid = [_parts(line, columns, folded, skip) for line in _parts(text_of(text), rows, folded, skip)]
-    wide = max(map(len, grid), default=0)
-    return [line + [pad] * (wide - len(line)) for line in grid] if wide else CellError.CALC

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from .expression import Piece
+from .expression import Piece, spans
 
 __all__ = ["Pieces", "kind_of", "makes_array", "scalar_places"]
 
@@ -85,7 +85,7 @@ def makes_array(name: str, pieces: Pieces) -> bool:
     if name == "INDEX":
         return len(pieces) > 1 and any(piece is None or piece.kind == "zero" for piece in pieces[1:3])
     if name == "XLOOKUP":
-        return False
+        return len(pieces) > 2 and pieces[2] is not None and all(spans(pieces[2].text))
     if name == "INDIRECT":
         return ":" in (pieces[0].text if pieces and pieces[0] else "")
     return name in _PASSING and any(piece is not None and piece.array for piece in pieces)

@@ -14,8 +14,8 @@ from lowpoint.problems import CellError
 from .cures import prepare
 from .engine import Engine
 from .helpers import HELPERS, PREFIX, broadcast
-from .refs import column_letters
 from .kinds import scalar_places
+from .refs import column_letters
 
 __all__ = ["lift", "register"]
 

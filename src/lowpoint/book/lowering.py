@@ -31,6 +31,7 @@ __all__ = [
     "Slot",
     "Supply",
     "Work",
+    "formula_of",
     "lower",
     "stored_text",
     "text_of",
@@ -95,7 +96,7 @@ class Site:
     given: tuple[bool, ...]
     own: bool = False  # its result is the cell's own value
     slot: Slot | None = None  # scratch column of a nested batched call
-    guard: Computed | None = None  # 1 where the call is really made; None when it always is
+    guard: Computed | None = None  # of a batched call: 1 where it is really made; None when it always is
     inner: list[Site] = field(default_factory=list)  # the calls inside this one
     level: int = 0
 
@@ -160,7 +161,15 @@ class Supply:
 
 def lower(formula: Formula, setting: Setting, supply: Supply, batch: bool) -> Work:
     """Plan one formula; without ``batch`` all its LP_ calls are callbacks."""
-    return _Lowering(formula, setting, supply, batch).work
+    done = _Lowering(formula, setting, supply, batch)
+    return _Lowering(formula, setting, supply, False).work if done.misplaced else done.work
+
+
+def formula_of(work: Work) -> Pieces | None:
+    """The engine's formula with its array laid into the stored range; None where there is none, or the stored one."""
+    if work.pieces is None or work.fit is None:
+        return work.pieces
+    return [f"{FIT}({work.fit[0]},{work.fit[1]},", *work.pieces, ")"]
 
 
 def gives_array(name: str) -> bool:
@@ -174,6 +183,7 @@ class _Lowering:
         self.sheet, self.kind, self.size = setting.sheet, setting.kind, setting.size
         self.work = Work()
         self.done: dict[int, Site] = {}
+        self.misplaced = False  # a guard would mean something else where it stands
         for number in sorted(formula.lp, reverse=True):  # inner calls begin later than the ones around them
             self.done[number] = self._site(number)
         self.work.sites = [self.done[n] for n in sorted(self.done)]
@@ -307,10 +317,12 @@ class _Lowering:
         return whole or self.f.scalar(span, known)
 
     def _guards(self) -> None:
+        """Guards for the batched calls: callbacks are made by the engine, which takes one branch only."""
         for number, site in self.done.items():
-            pieces = self._guard(number)
+            pieces = self._guard(number) if site.args is not None else None
             if pieces is not None:
                 site.guard = Computed(self.supply.slot(), ["IFERROR(SUM(", *pieces, "),0)"])
+                self.misplaced = not self._anywhere((0, len(self.f.tokens)))
 
     def _guard(self, number: int) -> Pieces | None:
         """A formula that gives 1 where the call is made and 0 where it stands in a branch not taken."""

@@ -1,7 +1,8 @@
 """The known differences between the engine and spreadsheet programs: a table that is tested row by row.
 
 Each row holds an example, what it must give and why, and what the bare engine gives. ``cured`` rows come out right
-once :func:`lowpoint.book.cures.prepare` has written the formula anew; ``blocks`` rows make a formula keep its value.
+once :func:`lowpoint.book.cures.prepare` has written the formula anew; ``blocks`` rows make a formula keep its value;
+``stands`` rows depend on what cells hold, which a formula's text does not tell: they are neither cured nor reported.
 A new version of the engine, or another engine, shows itself here: a row fails when the behaviour changes either way.
 """
 
@@ -12,7 +13,7 @@ from dataclasses import dataclass
 
 from .cures import prepare
 
-__all__ = ["CELLS", "KNOWN", "PROBES", "Probe", "blocking", "met"]
+__all__ = ["CELLS", "FORMULA", "KNOWN", "PROBES", "Probe", "blocking", "met"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -24,9 +25,11 @@ class Probe:
     truth: object
     source: str
     bare: object
+    hiding: int = 0  # how rows of the example's workbook are hidden: 1 by hand, 2 by a filter
 
 
-# The cells that the examples read: A1:C3.
+# The cells that the examples read: A1:C3, and D1, which holds this formula.
+FORMULA = "=1+2*3"
 CELLS: list[list[object]] = [[1.2, "pump", "2024-03-15"], [2.7, "valve", True], [1.9, "pipe", None]]
 
 # What each difference is, and whether it is cured or makes a formula keep its value.
@@ -37,17 +40,32 @@ KNOWN: dict[str, tuple[str, str]] = {
     "single-value-over-range": ("cured", "a function of single values takes the first cell of a range only"),
     "row-of-range": ("cured", "ROW and COLUMN of a range give the first only"),
     "text-scientific": ("cured", "TEXT does not know exponents"),
-    "text-of-logical": ("cured", "TEXT makes numbers of logicals"),
+    "text-of-words": ("cured", "TEXT makes numbers of logicals, and an error of words that look like dates"),
     "case-of-accents": ("cured", "letters with accents keep their case"),
     "value-of-text": ("cured", "VALUE does not know thousands commas"),
     "date-from-text": ("cured", "a date written as text is not a date"),
-    "ceiling-negative-step": ("cured", "CEILING and FLOOR with a negative step round the wrong way"),
+    "time-from-text": ("cured", "a time written as text is not a time"),
+    "logical-from-text": ("cured", "IF and NOT do not take the words TRUE and FALSE"),
+    "no-break-space": ("cured", "TRIM takes no-break spaces, tabs and line feeds away"),
+    "replace-at-end": ("cured", "REPLACE beyond the end of a text adds nothing"),
+    "text-cutting": ("cured", "TEXTBEFORE and TEXTAFTER lack their later arguments"),
+    "whole-of-15-digits": ("cured", "INT takes all digits of a number, not 15"),
+    "multiples": ("cured", "CEILING, FLOOR and their like err with negative steps, a mode, or a rest below 15 digits"),
+    "divisor-of-many": ("cured", "GCD and LCM take two numbers only"),
+    "single-holiday": ("cured", "NETWORKDAYS and WORKDAY pass a single holiday over that DATE gives"),
     "convert-units": ("cured", "CONVERT lacks pressure, power, energy and other units"),
     "array-functions": ("cured", "MMULT, MINVERSE, MDETERM, EXPAND, WRAPROWS and WRAPCOLS are missing"),
     "stack-unequal": ("cured", "VSTACK and HSTACK of unequal sizes are refused"),
     "unique-case": ("cured", "UNIQUE tells capitals from small letters"),
+    "filter-columns": ("cured", "FILTER of columns keeps them all"),
+    "sort-keys": ("cured", "SORT and SORTBY look at the first key only, and sort accents behind z"),
+    "choose-of-several": ("cured", "CHOOSE does not put ranges side by side"),
+    "index-of-row": ("cured", "INDEX with one number gives the first cell of a table's row"),
+    "keys-out-of-order": ("cured", "MATCH, VLOOKUP and HLOOKUP of the nearest key refuse keys out of order"),
+    "lookup-blanks": ("cured", "LOOKUP finds blanks behind the keys"),
     "xlookup-next": ("cured", "XLOOKUP of the next key wants sorted keys"),
     "lookup-computed": ("cured", "LOOKUP in a computed vector stops at errors"),
+    "aggregate-array": ("cured", "AGGREGATE 14 to 19 are missing"),
     "mode-tie": ("cured", "MODE takes the least of several commonest numbers"),
     "type-of-error": ("cured", "TYPE hands an error on"),
     "unreadable": ("blocks", "the formula cannot be read"),
@@ -59,17 +77,26 @@ KNOWN: dict[str, tuple[str, str]] = {
     "range-of-calls": ("blocks", "a range between the results of two lookups is missing"),
     "lambda": ("blocks", "LAMBDA is missing"),
     "unknown-function": ("blocks", "the function is missing"),
-    "aggregate-array": ("blocks", "AGGREGATE 12 to 19 are missing"),
+    "aggregate-form": ("blocks", "AGGREGATE 12 and 13, and options 0 to 3, are missing or wrong"),
+    "hidden-rows": ("blocks", "SUBTOTAL and AGGREGATE count hidden rows"),
+    "indirect-r1c1": ("blocks", "INDIRECT does not know rows and columns by number"),
+    "datedif-unit": ("blocks", "DATEDIF counts YD differently"),
     "cell-info": ("blocks", "CELL knows no file, width or format"),
+    "formula-text": ("blocks", "FORMULATEXT and ISFORMULA look at the engine's formulas"),
     "text-pattern": ("blocks", "TEXT does not know the pattern"),
     "text-argument": ("blocks", "text among the numbers of a statistic is passed over"),
     "range-for-single-value": ("blocks", "a function takes the first cell of a range only"),
+    "number-in-text": ("stands", "text such as 1,000 in a sum or product is no number"),
+    "order-of-accents": ("stands", "letters with accents are greater than z in comparisons"),
+    "exact-lookup-slack": ("stands", "an exact lookup finds a number that differs below the 12th digit"),
+    "arrays-of-unequal-size": ("stands", "arrays that do not fit give #VALUE! as a whole"),
 }
 
 _MS = "Microsoft function reference (from memory), "
 _OF = "OASIS ODF 1.3 part 4 (from memory), "
 _DIGITS = "Microsoft support article 78113 (15 significant digits); LibreOffice 7.4 agrees"
 _ARRAY = "ISO/IEC 29500-1, 18.17: taken element by element in an array formula"
+_INT = "reported: INT rounds to 15 digits first (office-forums.com thread 1184458)"
 _SI = "NIST SP 811 appendix B"
 
 PROBES: tuple[Probe, ...] = tuple(
@@ -91,12 +118,26 @@ PROBES: tuple[Probe, ...] = tuple(
         ("row-of-range", "=SUM(ROW(A1:A3))", 6.0, _OF + "ROW", 1.0),
         ("row-of-range", "=SUM(COLUMN(A1:C1))", 6.0, _OF + "COLUMN", 1.0),
         ("text-scientific", '=TEXT(1234567,"0.00E+00")', "1.23E+06", "LibreOffice 7.4", "1234567.00"),
-        ("text-of-logical", '=TEXT(C2,"0")', "TRUE", "common practice: TEXT leaves a logical as it is", "1"),
+        ("text-of-words", '=TEXT("FV-101","0.0")', "FV-101", "LibreOffice 7.4; common practice: words stay", "#VALUE!"),
+        ("text-of-words", '=TEXT(C2,"0")', "TRUE", "common practice: TEXT leaves a logical as it is", "1"),
         ("case-of-accents", '=UPPER("équilibré")', "ÉQUILIBRÉ", "LibreOffice 7.4", "éQUILIBRé"),
         ("value-of-text", '=VALUE("1,234.5")', 1234.5, _MS + 'VALUE (example "$1,000")', "#VALUE!"),
         ("date-from-text", "=YEAR(C1)", 2024.0, _OF + "YEAR: a date parameter takes text", "#VALUE!"),
-        ("ceiling-negative-step", "=CEILING(-2.5,-2)", -4.0, "ECMA-376 part 1, CEILING: its example", -2.0),
-        ("ceiling-negative-step", "=FLOOR(-2.5,-2)", -2.0, "ECMA-376 part 1, FLOOR: its example", -4.0),
+        ("time-from-text", '=HOUR("13:45")', 13.0, _OF + "HOUR: a time parameter takes text", "#VALUE!"),
+        ("time-from-text", '=MINUTE("2024-03-15 6:30 PM")', 30.0, _OF + "MINUTE", "#VALUE!"),
+        ("logical-from-text", '=IF("TRUE",1,2)', 1.0, "LibreOffice 7.4; common practice", "#VALUE!"),
+        ("no-break-space", '=LEN(TRIM(UNICHAR(160)&"a "))', 2.0, _MS + "TRIM: not the no-break space", 1.0),
+        ("replace-at-end", '=REPLACE("abc",5,1,"X")', "abcX", "LibreOffice 7.4", "abc"),
+        ("text-cutting", '=TEXTAFTER("FV-101","v",1,1)', "-101", _MS + "TEXTAFTER: match_mode 1", "#VALUE!"),
+        ("text-cutting", '=TEXTBEFORE("ab","-",1,0,1)', "ab", _MS + "TEXTBEFORE: match_end 1", "#VALUE!"),
+        ("whole-of-15-digits", "=INT(4.35*100)", 435.0, "LibreOffice 7.4; " + _INT, 434.0),
+        ("whole-of-15-digits", "=INT(123456789-0.0000004)", 123456789.0, _INT, 123456788.0),
+        ("multiples", "=CEILING(-2.5,-2)", -4.0, "ECMA-376 part 1, CEILING: its example", -2.0),
+        ("multiples", "=FLOOR(-2.5,-2)", -2.0, "ECMA-376 part 1, FLOOR: its example", -4.0),
+        ("multiples", "=FLOOR(0.3,0.1)", 3 * 0.1, "LibreOffice 7.4", 0.2),
+        ("multiples", "=CEILING.MATH(-5.5,2,-1)", -6.0, _MS + "CEILING.MATH: its example", "#VALUE!"),
+        ("divisor-of-many", "=LCM(4,6,10)", 60.0, _OF + "LCM; by hand 2*2*3*5", "#VALUE!"),
+        ("single-holiday", "=NETWORKDAYS(45352,45366,DATE(2024,3,15))", 10.0, "LibreOffice 7.4; by hand", 11.0),
         ("convert-units", '=CONVERT(1,"atm","Pa")', 101325.0, _SI, "#N/A"),
         ("convert-units", '=CONVERT(1,"gal","l")', 3.785411784, _SI, "#N/A"),
         ("array-functions", "=SUM(MMULT({1,2;3,4},{5;6}))", 56.0, _OF + "MMULT; by hand 17+39", "name"),
@@ -107,6 +148,18 @@ PROBES: tuple[Probe, ...] = tuple(
         ("array-functions", "=SUM(INDEX(WRAPCOLS({1,2,3,4},2),2,0))", 6.0, _MS + "WRAPCOLS", "name"),
         ("stack-unequal", "=COUNT(VSTACK({1,2},{3}))", 3.0, _MS + "VSTACK: padded with #N/A", "#VALUE!"),
         ("unique-case", '=ROWS(UNIQUE({"a";"A";"b"}))', 2.0, "common practice: UNIQUE is not case-sensitive", 3.0),
+        ("filter-columns", "=SUM(FILTER({1,2,3},{1,0,1}))", 4.0, _MS + "FILTER: by columns", 6.0),
+        ("sort-keys", "=INDEX(SORT({1,2;1,1;0,5},{1,2}),2,2)", 1.0, _MS + "SORT: sort_index of several", 2.0),
+        ("sort-keys", '=INDEX(SORTBY({"a";"b";"c"},{1;1;2},1,{3;1;2},1),1)', "b", _MS + "SORTBY: two keys", "#VALUE!"),
+        ("sort-keys", '=INDEX(SORT({"é";"f"}),1)', "é", "common practice: accents beside their letter", "f"),
+        ("choose-of-several", "=SUM(CHOOSE({1,2},A1:A3,ROW(A1:A3)))", 11.8, _ARRAY, "#VALUE!"),
+        ("index-of-row", "=SUM(INDEX({1,2;3,4},2))", 7.0, _MS + "INDEX: without a column, the row", 3.0),
+        ("keys-out-of-order", "=MATCH(1E9,{3,1,2})", 3.0, "LibreOffice 7.4; common practice: the last number", "#N/A"),
+        ("keys-out-of-order", "=VLOOKUP(99,A1:B3,2)", "pipe", "LibreOffice 7.4", "#N/A"),
+        ("lookup-blanks", "=LOOKUP(9E9,A1:A9)", 1.9, "LibreOffice 7.4; common practice: the last number", 0.0),
+        ("aggregate-array", "=AGGREGATE(14,6,A1:A3,1)", 2.7, _MS + "AGGREGATE: 14 is LARGE", "missing"),
+        ("aggregate-array", "=AGGREGATE(15,6,A1:A3/(A1:A3>1.5),1)", 1.9, _MS + "AGGREGATE: 15 is SMALL", "missing"),
+        ("aggregate-array", "=AGGREGATE(16,4,A1:A3,0.25)", 1.55, _OF + "PERCENTILE: by hand (1.2+1.9)/2", "missing"),
         ("xlookup-next", "=XLOOKUP(90,{200;50;100;80},{1;2;3;4},,-1)", 4.0, _MS + "XLOOKUP match_mode", "#N/A"),
         ("xlookup-next", "=XLOOKUP(90,{200;50;100;80},{1;2;3;4},,1)", 3.0, _MS + "XLOOKUP match_mode", "#N/A"),
         (
@@ -129,26 +182,36 @@ PROBES: tuple[Probe, ...] = tuple(
         ("unknown-function", "=AREAS(A1:A3)", 1.0, _OF + "AREAS", "name"),
         ("unknown-function", "=IFERROR(MAP(A1:A3,1),5)", None, _MS + "MAP", 5.0),
         ("unknown-function", '=GETPIVOTDATA("Flow",A1)', None, _MS + "GETPIVOTDATA", "name"),
-        ("aggregate-array", "=AGGREGATE(14,6,A1:A3,1)", 2.7, _MS + "AGGREGATE: 14 is LARGE", "missing"),
+        ("aggregate-form", "=AGGREGATE(12,6,A1:A3)", 1.9, _MS + "AGGREGATE: 12 is MEDIAN", "missing"),
+        ("hidden-rows", "=SUBTOTAL(109,A1:A3)", 3.1, _MS + "SUBTOTAL; row 2 hidden: 1.2+1.9", 5.8, 1),
+        ("hidden-rows", "=SUBTOTAL(9,A1:A3)", 3.1, _MS + "SUBTOTAL; row 2 filtered out: 1.2+1.9", 5.8, 2),
+        ("hidden-rows", "=AGGREGATE(9,5,A1:A3)", 3.1, _MS + "AGGREGATE; row 2 hidden: 1.2+1.9", 5.8, 1),
+        ("indirect-r1c1", '=INDIRECT("R1C2",FALSE)', "pump", _MS + "INDIRECT: a1 FALSE", "#REF!"),
+        ("datedif-unit", '=DATEDIF(45000,45365,"YD")', 365.0, "LibreOffice 7.4", 364.0),
         ("cell-info", '=CELL("filename",A1)', None, _MS + "CELL", "#VALUE!"),
+        ("formula-text", "=FORMULATEXT(D1)", "=1+2*3", _MS + "FORMULATEXT", "=1 + 2 * 3"),
         ("text-pattern", '=TEXT(3.75,"# ?/?")', "3 3/4", "LibreOffice 7.4", "3.75"),
         ("text-pattern", '=TEXT(1234,"0-00")', "12-34", "LibreOffice 7.4", "1234"),
         ("text-argument", '=AVERAGE("x",1)', "#VALUE!", _MS + "AVERAGE: text that is no number", 1.0),
         ("range-for-single-value", '=SUM(INDIRECT({"A1","A2"}))', None, "depends on the program", "#VALUE!"),
+        ("number-in-text", '="1,000"+0', 1000.0, "LibreOffice 7.4; common practice", "#VALUE!"),
+        ("order-of-accents", '="é">"f"', False, "LibreOffice 7.4", True),
+        ("exact-lookup-slack", "=MATCH(0.1+0.2,{0.1,0.2,0.3},0)", "#N/A", "LibreOffice 7.4; common practice", 3.0),
+        ("arrays-of-unequal-size", "=IFERROR(INDEX({1,2,3}+{10,20},1),0)", 11.0, _OF + "array calculation", 0.0),
     )
 )
 
 
-def blocking(formula: str) -> str | None:
+def blocking(formula: str, hiding: int = 0) -> str | None:
     """Why a cell with this formula must keep its value; ``None`` where it can be recalculated.
 
     >>> blocking("=SUM(A1:A3 B1:B3)")
     'uses the intersection of two ranges'
     """
-    return prepare(formula).blocked
+    return prepare(formula, hiding).blocked
 
 
-def met(formulas: Iterable[str]) -> list[str]:
+def met(formulas: Iterable[str], hiding: int = 0) -> list[str]:
     """The ids of the known differences that these formulas meet, in the order of :data:`KNOWN`."""
-    found = {probe for formula in formulas for probe in prepare(formula).met}
+    found = {probe for formula in formulas for probe in prepare(formula, hiding).met}
     return [probe for probe in KNOWN if probe in found]

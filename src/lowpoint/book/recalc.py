@@ -5,6 +5,7 @@ from __future__ import annotations
 import os
 import time
 from collections.abc import Iterator
+from functools import partial
 from pathlib import Path
 from typing import Any
 
@@ -12,6 +13,7 @@ from lowpoint.errors import BookError
 
 from .curing import cure
 from .guard import DEFAULT_LIMITS, Limits
+from .hiding import hiding_of
 from .names import names_of
 from .outcome import Outcome, outcome_of
 from .package import Package, locked
@@ -100,7 +102,8 @@ class Book:
     def context(self) -> Context:
         """Names, tables, titles, and the cure of formulas for the engine."""
         titles = tuple(sheet.title for sheet in self.package.sheets)
-        return Context(names_of(self.package), tables_of(self.package), titles, frozenset(self.titles), cure)
+        fit = partial(cure, hiding=hiding_of(self.package, self.sheets))
+        return Context(names_of(self.package), tables_of(self.package), titles, frozenset(self.titles), fit)
 
     def strings(self) -> list[str]:
         """The shared strings."""

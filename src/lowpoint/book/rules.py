@@ -1,6 +1,7 @@
-"""What :mod:`lowpoint.book.cures` knows about single worksheet functions: how to write a call anew, or that it cannot.
+"""How calls of single worksheet functions are written anew, or that they cannot be.
 
 A rule gets the writer, the function's name and the written arguments, and gives the call anew, or None to leave it.
+Rules of text, dates and ``TEXT`` patterns are in :mod:`lowpoint.book.rules_text`.
 """
 
 from __future__ import annotations
@@ -9,125 +10,87 @@ import re
 from collections.abc import Callable
 from typing import TYPE_CHECKING
 
-from .expression import BlockedError, Piece
+from .expression import BlockedError, Piece, spans
+from .kinds import Pieces, kind_of
 
 if TYPE_CHECKING:
     from .cures import Writer
 
-__all__ = ["kind_of", "makes_array", "ruled", "scalar_places"]
+__all__ = ["RULES", "Rule", "always", "any_array", "filled"]
 
-Pieces = list[Piece | None]
 Rule = Callable[["Writer", str, Pieces], Piece | None]
+_ONE_CELL = frozenset({"MODE", "MDETERM", "TYPE", "GCD", "LCM"})
 
 
-def _names(text: str) -> frozenset[str]:
-    return frozenset(text.split())
+def any_array(pieces: Pieces) -> bool:
+    """Whether one of the arguments is an array."""
+    return any(piece is not None and piece.array for piece in pieces)
 
 
-_KINDS = {
-    "text": "TEXT LEFT RIGHT MID UPPER LOWER PROPER TRIM CLEAN SUBSTITUTE REPLACE REPT CONCATENATE CONCAT TEXTJOIN "
-    "CHAR FIXED DOLLAR UNICHAR TEXTBEFORE TEXTAFTER ADDRESS DEC2HEX DEC2BIN BASE ROMAN T",
-    "logical": "AND OR XOR NOT ISNUMBER ISTEXT ISBLANK ISERROR ISERR ISNA ISNONTEXT ISLOGICAL ISEVEN ISODD ISREF "
-    "ISFORMULA EXACT TRUE FALSE",
-    "whole": "ROW COLUMN ROWS COLUMNS COUNT COUNTA COUNTBLANK COUNTIF COUNTIFS LEN MATCH XMATCH FIND SEARCH YEAR MONTH "
-    "DAY WEEKDAY WEEKNUM ISOWEEKNUM INT SIGN CODE UNICODE HOUR MINUTE SECOND QUOTIENT DATE EOMONTH EDATE TODAY DAYS",
-    "rounded": "ROUND ROUNDUP ROUNDDOWN",
-}
-_KIND_OF = {name: kind for kind, names in _KINDS.items() for name in names.split()}
-_ARRAYS = _names(
-    "FILTER SORT SORTBY UNIQUE SEQUENCE RANDARRAY TRANSPOSE TAKE DROP CHOOSECOLS CHOOSEROWS TOCOL TOROW HSTACK VSTACK "
-    "EXPAND WRAPROWS WRAPCOLS TEXTSPLIT MMULT MINVERSE MUNIT LINEST LOGEST FREQUENCY MODE.MULT GROWTH"
-)
-_PASSING = _names("IF IFERROR IFNA CHOOSE SIN COS TAN ATAN2 TREND OFFSET INDEX XLOOKUP")
-_DATE_PARTS = ("YEAR", "MONTH", "DAY", "WEEKDAY", "WEEKNUM", "EDATE", "EOMONTH")
-_TEXT_PLACES: dict[str, tuple[int, ...]] = {
-    **dict.fromkeys(("LEN", "LEFT", "RIGHT", "MID", "TRIM", "REPT", "TEXTSPLIT"), (0,)),
-    **dict.fromkeys(("FIND", "SEARCH", "EXACT", "TEXTBEFORE", "TEXTAFTER"), (0, 1)),
-    "SUBSTITUTE": (0, 1, 2),
-    "REPLACE": (0, 3),
-    "CONCATENATE": tuple(range(255)),
-}
+def filled(pieces: Pieces, *defaults: str) -> list[Piece | None]:
+    """Arguments left out between others, which a call-back would get as 0, with what the function takes for them."""
+    return [piece or Piece(defaults[k]) for k, piece in enumerate(pieces)]
 
 
-_SINGLE = _names(
-    "ABS INT ROUND ROUNDUP ROUNDDOWN TRUNC SQRT EXP LN LOG LOG10 ASIN ACOS ATAN SINH COSH TANH ASINH ACOSH ATANH POWER "
-    "MOD SIGN CEILING FLOOR CEILING.MATH FLOOR.MATH MROUND EVEN ODD QUOTIENT FACT DEGREES RADIANS COMBIN ISNUMBER "
-    "ISTEXT ISBLANK ISERROR ISNA ISERR ISNONTEXT ISLOGICAL ISEVEN ISODD NOT IFS SWITCH LEN LEFT RIGHT MID TRIM CLEAN "
-    "FIND SEARCH SUBSTITUTE REPLACE REPT EXACT CHAR CODE UNICHAR UNICODE TEXT FIXED CONCATENATE TEXTBEFORE TEXTAFTER "
-    "NUMBERVALUE VALUE DATE YEAR MONTH DAY WEEKDAY WEEKNUM ISOWEEKNUM EDATE EOMONTH HOUR MINUTE SECOND TIME DATEVALUE "
-    "TIMEVALUE DAYS DAYS360 DATEDIF YEARFRAC ADDRESS DEC2HEX HEX2DEC DEC2BIN BIN2DEC BASE DECIMAL BITAND BITOR BITXOR "
-    "ERF ERFC GAMMALN STANDARDIZE NORMSDIST NORMDIST NORMSINV NORMINV NORM.S.DIST NORM.DIST NORM.INV NORM.S.INV PMT PV "
-    "FV NPER RATE ROMAN ERROR.TYPE"
-)
-_SOME: dict[str, tuple[int, ...]] = {
-    "VLOOKUP": (0, 2),
-    "HLOOKUP": (0, 2),
-    "MATCH": (0,),
-    "LOOKUP": (0,),
-    "XLOOKUP": (0,),
-    "XMATCH": (0,),
-    "INDEX": (1, 2),
-    "COUNTIF": (1,),
-    "SUMIF": (1,),
-    "AVERAGEIF": (1,),
-    "COUNTIFS": tuple(range(1, 254, 2)),
-    **dict.fromkeys(("SUMIFS", "AVERAGEIFS", "MAXIFS", "MINIFS"), tuple(range(2, 254, 2))),
-    **dict.fromkeys(
-        ("LARGE", "SMALL", "PERCENTILE", "PERCENTILE.INC", "PERCENTILE.EXC", "QUARTILE", "QUARTILE.INC"), (1,)
-    ),
-    **dict.fromkeys(("RANK", "RANK.EQ", "RANK.AVG", "FORECAST", "FORECAST.LINEAR"), (0,)),
-}
-_REFUSED: dict[str, tuple[int, ...]] = {"INDIRECT": (0, 1), "N": (0,), "T": (0,), "CHOOSE": (0,), "NETWORKDAYS": (0, 1)}
-_REFUSED |= {"OFFSET": (1, 2, 3, 4), "WORKDAY": (0, 1), "GCD": (), "CELL": (0,), "HYPERLINK": (0, 1), "TYPE": ()}
+def always(probe: str, *defaults: str, array: bool = False) -> Rule:
+    """A rule that calls the helper of the function's name, whatever the arguments are."""
 
-
-def scalar_places(function: str, count: int) -> tuple[tuple[int, ...], bool]:
-    """The arguments of ``function`` that stand for single values, and whether a range there can be lifted."""
-    if function in _SINGLE:
-        return tuple(range(count)), True
-    if function in _SOME:
-        return tuple(place for place in _SOME[function] if place < count), True
-    return tuple(place for place in _REFUSED.get(function, ()) if place < count), False
-
-
-def kind_of(name: str) -> str:
-    """What kind of value a function is sure to give."""
-    return _KIND_OF.get(name, "any")
-
-
-def makes_array(name: str, pieces: Pieces) -> bool:
-    """Whether a call gives an array (single values in single places)."""
-    if name in _ARRAYS:
-        return True
-    if name == "OFFSET":
-        return len(pieces) > 3 and any(piece is None or piece.text != "1" for piece in pieces[3:])
-    if name == "INDEX":
-        return len(pieces) > 1 and any(piece is None or piece.kind == "zero" for piece in pieces[1:3])
-    if name == "XLOOKUP":
-        return False
-    if name == "INDIRECT":
-        return ":" in (pieces[0].text if pieces and pieces[0] else "")
-    return name in _PASSING and any(piece is not None and piece.array for piece in pieces)
-
-
-def ruled(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
-    """The call written anew by the rule of its name; None where none applies."""
-    rule = _RULES.get(name)
-    return rule(writer, name, pieces) if rule is not None else None
-
-
-def _always(probe: str, *, array: bool = False) -> Rule:
     def rule(writer: Writer, name: str, pieces: Pieces) -> Piece:
         writer.note(probe)
-        over = array or any(piece is not None and piece.array for piece in pieces)
-        return writer.helper(name, pieces, over and name not in {"MODE", "MDETERM", "TYPE"}, kind_of(name))
+        over = (array or any_array(pieces)) and name not in _ONE_CELL
+        return writer.helper(name, filled(pieces, *defaults) if defaults else pieces, over, kind_of(name))
 
     return rule
+
+
+def _whole_literal(piece: Piece | None) -> bool:
+    return piece is not None and piece.kind in {"literal", "zero"} and piece.text.isdigit()
+
+
+def _int(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    if len(pieces) != 1 or pieces[0] is None or pieces[0].kind == "whole" or _whole_literal(pieces[0]):
+        return None
+    writer.note("whole-of-15-digits")
+    return writer.helper(name, pieces, pieces[0].array, "whole")
+
+
+def _step(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    if len(pieces) != 2 or all(map(_whole_literal, pieces)):
+        return None
+    writer.note("multiples")
+    return writer.helper(name, pieces, any_array(pieces))
+
+
+def _math_step(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    """CEILING.MATH and its like, with a step of 1 and the usual direction where nothing else is said."""
+    if not 1 <= len(pieces) <= 3 or pieces[0] is None:
+        return None
+    writer.note("multiples")
+    given = filled([*pieces, None, None][:3], "", "1", "0")
+    return writer.helper("CEILINGMATH" if "CEILING" in name else "FLOORMATH", given, any_array(pieces))
+
+
+def _divisor(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    if len(pieces) == 2 and not any_array(pieces):
+        return None
+    writer.note("divisor-of-many")
+    return writer.helper(name, pieces, False, "whole")
 
 
 def _mode(writer: Writer, name: str, pieces: Pieces) -> Piece:
     writer.note("mode-tie")
     return writer.helper("MODE", pieces)
+
+
+def _condition(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    """The word TRUE or FALSE, written as text, where IF or NOT take a logical."""
+    first = pieces[0] if pieces else None
+    if first is None or first.array or first.kind not in {"text", "reference"}:
+        return None
+    writer.note("logical-from-text")
+    x = first.text
+    made = Piece(f"IF(ISTEXT({x}),{writer.helper('LOGICAL', [first]).text},{x})", False, "logical")
+    return writer.plain(name, [made, *pieces[1:]])
 
 
 def _position(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
@@ -141,90 +104,38 @@ def _position(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
     return Piece(text, True, "whole")
 
 
-def _value(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+def _n(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    """N of a computed array goes cell by cell; of a range it takes the first cell, which is blocked elsewhere."""
     piece = pieces[0] if len(pieces) == 1 else None
-    if piece is None or piece.array:
+    if piece is None or not piece.array or piece.kind == "reference" or re.match(r"OFFSET|IND|CHOOSE", piece.text):
         return None
-    writer.note("value-of-text")
-    return Piece(f"IFERROR(VALUE({piece.text}),{writer.helper('VALUE', [piece]).text})")
+    return writer.over_cells(name, pieces, "whole" if piece.kind == "logical" else "any")
 
 
-def _text(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
-    """TEXT by its pattern: the engine's own, ours with an exponent, or blocked."""
-    if len(pieces) != 2 or pieces[1] is None or pieces[0] is None:
+def _choose(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    """CHOOSE({1,2},...) puts ranges side by side."""
+    which = re.fullmatch(r"\{(\d+(?:,\d+)*)\}", pieces[0].text) if pieces and pieces[0] else None
+    places = [int(number) for number in which[1].split(",")] if which else []
+    if not places or not all(1 <= place < len(pieces) for place in places):
         return None
-    pattern = pieces[1]
-    if not re.fullmatch(r'"(?:[^"]|"")*"', pattern.text):
-        raise BlockedError("text-pattern", "uses TEXT with a pattern that stands elsewhere")
-    inside = pattern.text[1:-1].replace('""', '"')
-    power = re.fullmatch(r"0(?:\.(0+))?[Ee]([+-])(0+)", inside)
-    if power:
-        writer.note("text-scientific")
-        places = [Piece(str(len(power[1] or ""))), Piece(f'"{power[2]}"'), Piece(str(len(power[3])))]
-        return writer.helper("SCIENTIFIC", [pieces[0], *places], pieces[0].array, "text")
-    if not _plain_pattern(inside):
-        raise BlockedError("text-pattern", f"uses TEXT with the pattern {inside}")
-    if inside.lower() in {"general", "@"}:
-        return Piece(f'({writer.as_text(pieces[0]).text}&"")', pieces[0].array, "text")
-    x = pieces[0]
-    if x.array or x.kind not in {"logical", "reference"}:
+    writer.note("choose-of-several")
+    return writer.helper("HSTACK", [pieces[place] for place in places], True)
+
+
+def _index(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    """One number picks a whole row of a table."""
+    if len(pieces) != 2 or pieces[0] is None or pieces[1] is None or pieces[1].array:
         return None
-    writer.note("text-of-logical")
-    plain = f"TEXT({x.text},{pattern.text})"
-    return Piece(
-        f'IF(ISLOGICAL({x.text}),{x.text}&"",{plain})' if x.kind == "reference" else f'({x.text}&"")', False, "text"
-    )
-
-
-def _plain_pattern(pattern: str) -> bool:
-    """Whether the engine is right about a pattern: the forms that the ordinary-formula test has tried."""
-    bare = re.sub(r'"[^"]*"|\\.', "", pattern)
-    if bare.lower() in {"general", "@", ""}:
-        return True
-    if re.search(r"[ymdhs]", bare, re.IGNORECASE):
-        return re.fullmatch(r"(?:[ymdhsYMDHS]+|AM/PM|\[[hms]+\]|[-/ .:,]|\.0+)+", bare) is not None
-    one = r"(?:\[Red\])?[-+($€£ ]*(?:[#0,]*[#0](?:\.[0#]+)?,*)[ %)]*"
-    return re.fullmatch(rf"{one}(?:;{one}(?:;(?:{one}|[ ]*))?)?", bare) is not None
-
-
-def _text_places(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
-    """Numbers that a text function reads become text of at most 15 digits first."""
-    places = _TEXT_PLACES[name]
-    if any(piece is not None and piece.array for piece in pieces):
+    if spans(pieces[0].text) != (True, True):
         return None
-    changed: Pieces = [writer.as_text(p) if p is not None and k in places else p for k, p in enumerate(pieces)]
-    return writer.lifted(name, name, changed)
+    writer.note("index-of-row")
+    return Piece(f"INDEX({pieces[0].text},{pieces[1].text},0)", True)
 
 
-def _joining(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
-    """CONCAT and TEXTJOIN: ranges need the helper, single values only 15 digits."""
-    if any(piece is not None and piece.array for piece in pieces):
-        writer.note("number-text-15-digits")
-        return writer.helper(name, pieces, False, "text")
-    first = 0 if name == "CONCAT" else 2
-    changed: Pieces = [writer.as_text(p) if p is not None and k >= first else p for k, p in enumerate(pieces)]
-    return writer.lifted(name, name, changed)
-
-
-def _date_part(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
-    """A date that is written as text."""
-    if not pieces or pieces[0] is None or any(p is not None and p.array for p in pieces):
-        return None
-    if pieces[0].kind not in {"text", "reference", "any"}:
-        return None
-    writer.note("date-from-text")
-    x = pieces[0].text
-    date = Piece(
-        f"IF(ISTEXT({x}),DATEVALUE({x}),{x})" if len(x) < 40 else f"LET(lp_d,{x},IF(ISTEXT(lp_d),DATEVALUE(lp_d),lp_d))"
-    )
-    return writer.lifted(name, name, [date, *pieces[1:]])
-
-
-def _step(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
-    if len(pieces) != 2 or (pieces[1] is not None and pieces[1].kind == "literal" and "-" not in pieces[1].text):
-        return None
-    writer.note("ceiling-negative-step")
-    return writer.helper(name, pieces, any(p is not None and p.array for p in pieces))
+def _indirect(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    if len(pieces) > 1 and (pieces[1] is None or pieces[1].text.upper() not in {"TRUE", "1", "TRUE()"}):
+        raise BlockedError("indirect-r1c1", "uses INDIRECT with rows and columns by number (R1C1)")
+    return None
 
 
 def _xlookup(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
@@ -233,29 +144,92 @@ def _xlookup(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
     if pieces[0] is None or pieces[0].array:
         raise BlockedError("range-for-single-value", "gives XLOOKUP a range where it takes a single value")
     writer.note("xlookup-next")
-    missing = pieces[3] or Piece("#N/A")
-    return writer.helper(name, [*pieces[:3], missing, *pieces[4:]])
+    several = pieces[2] is not None and all(spans(pieces[2].text))
+    return writer.helper(name, filled(pieces, "", "", "", "#N/A", "0", "1"), several)
+
+
+def _approximate(writer: Writer, name: str, pieces: Pieces, mode: int) -> bool:
+    """Whether a lookup is for the last key not above the wanted value, with one wanted value."""
+    asked = pieces[mode] if len(pieces) > mode else Piece("1")
+    if pieces[0] is None or pieces[0].array or asked is None or asked.text.upper() not in {"1", "TRUE", "TRUE()"}:
+        return False
+    writer.note("keys-out-of-order")
+    return True
+
+
+def _match(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    if len(pieces) not in (2, 3) or not _approximate(writer, name, pieces, 2):
+        return None
+    return _placed(writer, pieces)
+
+
+def _placed(writer: Writer, pieces: Pieces) -> Piece:
+    """MATCH, and where the engine says #N/A (it refuses keys out of order) the helper."""
+    written = writer.plain("MATCH", [*pieces[:2], Piece("1")]).text
+    return Piece(f"IFNA({written},{writer.helper('MATCH', pieces[:2]).text})", False, "whole")
+
+
+def _table_lookup(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    if len(pieces) not in (3, 4) or pieces[2] is None or pieces[2].array:
+        return None
+    if not _approximate(writer, name, pieces, 3):
+        return None
+    return Piece(f"IFNA({writer.plain(name, pieces).text},{writer.helper(name, pieces[:3]).text})")
 
 
 def _lookup(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
-    keys = pieces[1] if len(pieces) > 1 else None
-    if keys is None or keys.kind == "reference" or keys.text.startswith("{") or (pieces[0] and pieces[0].array):
+    """LOOKUP in a row or column of cells is INDEX of MATCH; in anything else the helper's."""
+    keys = pieces[1] if len(pieces) in (2, 3) else None
+    if keys is None or pieces[0] is None or pieces[0].array:
         return None
-    writer.note("lookup-computed")
-    return writer.helper(name, pieces)
+    if keys.kind != "reference":
+        writer.note("lookup-computed")
+        return writer.helper(name, pieces)
+    writer.note("lookup-blanks")
+    results = pieces[2] if len(pieces) == 3 else keys
+    if all(spans(keys.text)) or results is None or results.kind != "reference" or all(spans(results.text)):
+        return writer.helper(name, pieces)
+    return Piece(f"INDEX({results.text},{_placed(writer, pieces).text})")
 
 
 def _aggregate(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
-    known = {str(number) for number in range(1, 12)}
-    if not pieces or pieces[0] is None or pieces[0].text not in known:
-        raise BlockedError("aggregate-array", "uses a form of AGGREGATE that the recalculator's engine does not have")
+    """AGGREGATE by the numbers of its function and option, where both are written as numbers."""
+    numbers = [p.text if p is not None and p.kind in {"literal", "zero"} else "" for p in pieces[:2]]
+    if len(pieces) < 3 or "" in numbers:
+        raise BlockedError("aggregate-form", "uses a form of AGGREGATE that the recalculator's engine does not have")
+    if numbers[1] in {"5", "7"} and writer.hiding:
+        raise BlockedError("hidden-rows", "leaves hidden rows out, which the recalculator's engine does not see")
+    if numbers[1] not in {"4", "5", "6", "7"} or numbers[0] in {"12", "13"}:
+        raise BlockedError("aggregate-form", "uses a form of AGGREGATE that the recalculator's engine does not have")
+    if int(numbers[0]) < 12:
+        return None
+    writer.note("aggregate-array")
+    option = "6" if numbers[1] in {"6", "7"} else "4"
+    several = len(pieces) > 3 and pieces[3] is not None and pieces[3].array
+    return writer.helper(name, [pieces[0], Piece(option), *pieces[2:]], several)
+
+
+def _subtotal(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    """1 to 11 leave out what a filter hides, 101 to 111 whatever is hidden."""
+    plain = pieces and pieces[0] is not None and re.fullmatch(r"[1-9]|1[01]", pieces[0].text)
+    if writer.hiding > (1 if plain else 0):
+        raise BlockedError("hidden-rows", "leaves hidden rows out, which the recalculator's engine does not see")
     return None
 
 
 def _cell(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
-    if not pieces or pieces[0] is None or pieces[0].text.strip('"').lower() not in {"row", "col", "contents"}:
-        raise BlockedError("cell-info", "asks CELL for what only the program that shows the workbook knows")
+    if name != "CELL" or _asked(pieces) not in {"row", "col", "contents"}:
+        raise BlockedError("cell-info", f"asks {name} for what only the program that shows the workbook knows")
     return None
+
+
+def _asked(pieces: Pieces) -> str:
+    return pieces[0].text.strip('"').lower() if pieces and pieces[0] is not None else ""
+
+
+def _formula_text(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    """The engine writes a formula in its own way, and it gets other formulas than the cells hold."""
+    raise BlockedError("formula-text", f"uses {name}, and the recalculator's engine has formulas of its own")
 
 
 def _numbers_only(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
@@ -266,26 +240,37 @@ def _numbers_only(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
     return None
 
 
-_RULES: dict[str, Rule] = {
-    **dict.fromkeys(("MMULT", "MINVERSE", "EXPAND", "WRAPROWS", "WRAPCOLS"), _always("array-functions", array=True)),
-    "MDETERM": _always("array-functions"),
-    **dict.fromkeys(("VSTACK", "HSTACK"), _always("stack-unequal", array=True)),
-    "UNIQUE": _always("unique-case", array=True),
-    **dict.fromkeys(("UPPER", "LOWER", "PROPER"), _always("case-of-accents")),
-    "CONVERT": _always("convert-units"),
-    "TYPE": _always("type-of-error"),
-    **dict.fromkeys(("MODE", "MODE.SNGL"), _mode),
-    **dict.fromkeys(("ROW", "COLUMN"), _position),
-    "VALUE": _value,
-    "TEXT": _text,
-    **dict.fromkeys(_TEXT_PLACES, _text_places),
-    **dict.fromkeys(("CONCAT", "TEXTJOIN"), _joining),
-    **dict.fromkeys(_DATE_PARTS, _date_part),
+RULES: dict[str, Rule] = {
+    **dict.fromkeys(("MMULT", "MINVERSE"), always("array-functions", array=True)),
+    "EXPAND": always("array-functions", "", "0", "0", "#N/A", array=True),
+    **dict.fromkeys(("WRAPROWS", "WRAPCOLS"), always("array-functions", array=True)),
+    "MDETERM": always("array-functions"),
+    **dict.fromkeys(("VSTACK", "HSTACK"), always("stack-unequal", array=True)),
+    "UNIQUE": always("unique-case", "", "FALSE", "FALSE", array=True),
+    "FILTER": always("filter-columns", "", "", '""', array=True),
+    "SORT": always("sort-keys", "", "1", "1", "FALSE", array=True),
+    "SORTBY": always("sort-keys", "", *("1",) * 252, array=True),
+    "CONVERT": always("convert-units"),
+    "TYPE": always("type-of-error"),
+    "INT": _int,
     **dict.fromkeys(("CEILING", "FLOOR"), _step),
+    **dict.fromkeys(("CEILING.MATH", "FLOOR.MATH", "CEILING.PRECISE", "FLOOR.PRECISE", "ISO.CEILING"), _math_step),
+    **dict.fromkeys(("GCD", "LCM"), _divisor),
+    **dict.fromkeys(("MODE", "MODE.SNGL"), _mode),
+    **dict.fromkeys(("IF", "NOT"), _condition),
+    **dict.fromkeys(("ROW", "COLUMN"), _position),
+    "N": _n,
+    "CHOOSE": _choose,
+    "INDEX": _index,
+    "INDIRECT": _indirect,
     "XLOOKUP": _xlookup,
+    "MATCH": _match,
+    **dict.fromkeys(("VLOOKUP", "HLOOKUP"), _table_lookup),
     "LOOKUP": _lookup,
     "AGGREGATE": _aggregate,
-    "CELL": _cell,
+    "SUBTOTAL": _subtotal,
+    **dict.fromkeys(("CELL", "INFO", "SHEET", "SHEETS"), _cell),
+    **dict.fromkeys(("FORMULATEXT", "ISFORMULA"), _formula_text),
     **dict.fromkeys(
         ("AVERAGE", "MAX", "MIN", "PRODUCT", "STDEV", "STDEV.S", "STDEVP", "STDEV.P", "VAR", "VAR.S", "MEDIAN"),
         _numbers_only,

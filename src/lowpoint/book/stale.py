@@ -113,14 +113,15 @@ def _fed(start: Iterable[Place], readers: _Readers, areas: Mapping[Place, Area])
 
     for place in start:
         put(place)
-    fed: dict[Place, str] = {}
+    fed: dict[Place, Place] = {}  # of what a cell reads, the first by place is named
     while queue:
         place = queue.popleft()
         for entry, row in readers.of(place):
             reader = (entry.group.sheet, row, entry.group.column)
-            fed.setdefault(reader, f"it reads {_named(place)}, which was not refreshed")
-            put(reader)
-    return fed
+            if reader != place:
+                fed[reader] = min(place, fed.get(reader, place))
+                put(reader)
+    return {reader: f"it reads {_named(place)}, which was not refreshed" for reader, place in fed.items()}
 
 
 def _circles(places: set[Place], readers: _Readers) -> set[Place]:

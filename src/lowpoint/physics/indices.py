@@ -103,18 +103,19 @@ def margin(sigma: q.Sigma, limit: q.Limit) -> q.Ratio:
     return sigma / limit - 1.0
 
 
-def _no_limit(limit: Any, form: Any) -> Any:
+def no_limit(limit: Any, form: Any) -> Any:
     """Where a limit, in its form, is no limit of a liquid that stays liquid: upstream at or below 1."""
     return ~(to_upstream(limit, form) > 1.0)
 
 
-_ABOVE_ONE = NoAnswer(
-    "the limit must be above 1 in upstream form (above 0 downstream, below 1 as xf), else the outlet would be at or "
-    "below the vapour pressure; was another form meant?", _no_limit,
-)  # fmt: skip
+ABOVE_ONE = (
+    "must be above 1 in upstream form (above 0 downstream, below 1 as xf), else the outlet would be at or below the "
+    "vapour pressure; was another form meant?"
+)
+_ABOVE_ONE = NoAnswer(f"the limit {ABOVE_ONE}", no_limit)
 
 
-def _upstream_limit(limit: Any, form: Any) -> Any:
+def upstream_limit(limit: Any, form: Any) -> Any:
     sigma = to_upstream(limit, form)
     return np.where(sigma > 1.0, sigma, np.nan)
 
@@ -131,7 +132,7 @@ def allowed_drop(p1: q.P1, pv: q.PV, limit: q.Limit, form: q.Form = "upstream") 
     at or below the vapour pressure.
     Source: definition of sigma, solved.
     """
-    return (p1 - pv) / _upstream_limit(limit, form)
+    return (p1 - pv) / upstream_limit(limit, form)
 
 
 @function(
@@ -145,7 +146,7 @@ def allowed_outlet(p1: q.P1, pv: q.PV, limit: q.Limit, form: q.Form = "upstream"
     Arrays of one length, any one pressure unit. NaN for a limit at or below 1 (upstream).
     Source: definition of sigma, solved.
     """
-    return p1 - (p1 - pv) / _upstream_limit(limit, form)
+    return p1 - (p1 - pv) / upstream_limit(limit, form)
 
 
 @function(
@@ -160,4 +161,4 @@ def allowed_inlet(p2: q.P2, pv: q.PV, limit: q.Limit, form: q.Form = "upstream")
     Arrays of one length, any one pressure unit. NaN for a limit at or below 1 (upstream).
     Source: definition of sigma, solved.
     """
-    return p2 + (p2 - pv) / (_upstream_limit(limit, form) - 1.0)
+    return p2 + (p2 - pv) / (upstream_limit(limit, form) - 1.0)

@@ -289,10 +289,14 @@ class Checked:
         self, values: npt.NDArray[Any], given: dict[str, Any], good: npt.NDArray[np.intp], ledger: Ledger
     ) -> None:
         first = values[:, 0] if values.ndim == 2 else values
-        silent = first == None if self.returns_text else np.isnan(first)  # noqa: E711
+        silent = first == None if self.returns_text else ~np.isfinite(first)  # noqa: E711
         silent = silent & (ledger.codes() == 0) if not ledger.clean else silent
         if not silent.any():
             return
+        if not self.returns_text:
+            # A cell holds no infinity.
+            infinite, values[silent] = np.isinf(first), np.nan
+            ledger.blame(infinite, CellError.NUM, messages.sentence(self, "the answer is too large for a cell"))
         among_good, arguments = silent[good], self._si(given)
         for why in self.declaration.no_answer:
             mask = np.zeros(len(values), np.bool_)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from math import isfinite
 from typing import Any
 
 import numpy as np
@@ -57,7 +58,7 @@ def bind_scalar(checked: Checked) -> Callable[[tuple[Any, ...]], Any] | None:
         if text:
             return str(answer if isinstance(answer, str) else answer[0]) or None
         value = float(answer[0])
-        if value != value:
+        if not isfinite(value):
             return None
         return value if plain else (value - offset) / factor
 

@@ -71,12 +71,12 @@ def expression(draw: st.DrawFn, place: int, depth: int) -> str:
     part = expression(place, depth - 1)
     called = call(place, depth)
     pick = draw(st.integers(0, 17))
-    a, b, c = draw(part), draw(part), draw(called)
+    a, b, c, r = draw(part), draw(part), draw(called), draw(reference(place))
     number = draw(st.sampled_from(["1", "2", "3"]))
     return [
         c, c, c, c, f"{a}+{c}", f"{c}*{b}", f"IF({a}>2,{c},{b})", f"IFERROR({c},{a})", f"IFERROR({a},{c})",
         f"_xlfn.IFS({a}>3,{c},TRUE,{b})", f"CHOOSE({number},{a},{c},{b})", f"_xlfn.SWITCH({a},1,{c},{b})",
-        f"_xlfn.LET(_xlpm.x,{a},{c.replace('$3', '{r}')}+_xlpm.x)", f"SUM({a},$A$2:$A$5,{c})",
+        f"_xlfn.LET(_xlpm.x,{a},{c.replace('$3', '{r}')}+_xlpm.x)", f"SUM({r},$A$2:$A$5,{c})",
         f"INDEX($B$2:$B$5,{number})", f"SUMPRODUCT(LP_MARGIN($A$2:$A$5,{a})*1)", f"ROW()*{a}", f'({a})&"/"&({c})',
     ][pick]  # fmt: skip
 

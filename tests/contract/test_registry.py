@@ -261,6 +261,15 @@ def test_no_warnings_on_wild_numbers(name: str) -> None:
         assert isinstance(reason(name, args), str)
 
 
+@pytest.mark.parametrize("rows", [1, 3])
+def test_an_answer_beyond_all_numbers_is_num(rows: int) -> None:
+    args = [[1e308] * rows, [1e-300] * rows]
+    assert call_many("LP_MARGIN", args, rows) == [CellError.NUM] * rows
+    assert call("LP_MARGIN", [1e308, 1e-300]) is CellError.NUM
+    assert "too large for a cell" in reason("LP_MARGIN", [1e308, 1e-300])
+    assert math.isnan(functions["LP_MARGIN"](1e308, 1e-300))
+
+
 @pytest.mark.parametrize("bare", sorted(declarations))
 def test_documentation_is_complete(bare: str) -> None:
     declaration = declarations[bare]

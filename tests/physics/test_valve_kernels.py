@@ -152,6 +152,8 @@ def test_turbulent_flow_with_a_viscosity_is_sized_as_without() -> None:
     assert thin[0] == required(FLOW, *sizes) < required(FLOW)
     kv = arrays(60.0 * KV, *WATER, *sizes)
     assert sizing.flow_through(*kv, *arrays(1e-3, 0.46), "full") == sizing.flow_through(*kv)
+    case = arrays(FLOW, 60.0 * KV, WATER[0], *WATER[2:], *sizes)
+    assert sizing.drop_for_flow(*case, *arrays(1e-3, 0.46), "full") == sizing.drop_for_flow(*case)
     thick = sizing.required_coefficient(*arrays(FLOW, *WATER, *sizes), *arrays(1.0, 0.46), "full")
     assert thick[0] > 1.05 * required(FLOW)
 
@@ -179,6 +181,11 @@ def test_reynolds_factor_by_its_three_parts() -> None:
     transitional = 1.0 + 0.33 * math.sqrt(0.9) / 4.0**0.25 * math.log10(500.0 / 1e4)
     got = nonturbulent.reynolds_factor(rev, n, fl)
     assert got == pytest.approx([laminar[0], laminar[1], min(transitional, laminar[2]), 1.0], rel=1e-12)
+    # For n = 1 the transitional curve lies below the laminar one at Rev 10, so FR jumps there.
+    at = nonturbulent.reynolds_factor(np.array([9.999999, 10.0]), np.ones(2), np.full(2, 0.9))
+    jump = [0.026 / 0.9 * math.sqrt(9.999999), 1.0 - 0.33 * math.sqrt(0.9) * 3.0]
+    assert at == pytest.approx(jump, rel=1e-12)
+    assert jump[0] > 1.4 * jump[1]
 
 
 def test_a_flow_too_viscous_for_full_size_trim_has_no_root() -> None:
@@ -195,3 +202,11 @@ def test_a_table_is_not_extrapolated() -> None:
     got = travel.value_at_travel(x, xs, ys)
     assert np.isnan(got).tolist() == [True, False, False, False, True]
     assert got[1:4] == pytest.approx([0.95, 0.925, 0.7], rel=1e-12)
+
+
+def test_the_first_row_that_passes_exactly_is_an_opening_even_where_c_times_fl_falls() -> None:
+    """C FL is 25 at the first row and falls from there; needs in C FL of 25, 24.999 and 25.001."""
+    xs, cs, fls = np.array([0.1, 0.9]), np.array([50.0, 60.0]), np.array([0.5, 0.25])
+    got = travel._opening(xs, cs, fls, np.zeros(3), np.array([25.0, 24.999, 25.001]))
+    assert got[:2].tolist() == [0.1, 0.1]
+    assert np.isnan(got[2])

@@ -94,7 +94,7 @@ def flow(coefficient: float, fl: float, service: Service, piping: Piping) -> flo
     return coefficient * N1 * FP(coefficient, piping) * math.sqrt(dp / service.relative_density)
 
 
-# --- non-turbulent -----------------------------------------------------------------------------------------------------
+# --- non-turbulent ---------------------------------------------------------------------------------------------------
 
 
 @dataclass(frozen=True)

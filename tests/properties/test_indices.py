@@ -6,7 +6,7 @@ import math
 
 import numpy as np
 import pytest
-from hypothesis import assume, given
+from hypothesis import assume, example, given
 from hypothesis import strategies as st
 
 from lowpoint import functions
@@ -36,6 +36,13 @@ def test_forms(service: Service, one: str, other: str) -> None:
     assert carried == pytest.approx(_by_definition(p1, p2, pv, other), rel=1e-9, abs=1e-11)
     assert FORM(carried, other, one) == pytest.approx(value, rel=1e-9, abs=1e-11)
     assert FORM(value, one, one) == value
+
+
+@given(st.floats(0.001, 50.0), forms)
+@example(0.1, "downstream")
+@example(49.0, "xf")
+def test_a_value_that_stays_in_its_form_keeps_its_bits(value: float, form: str) -> None:
+    assert FORM(value, form, form) == value
 
 
 @given(st.floats(-10.0, 10.0), forms)

@@ -27,14 +27,14 @@ def slow_valves(draw: st.DrawFn) -> tuple[Slow, Service, float]:
     d = draw(st.sampled_from((15.0, 25.0, 50.0, 100.0, 200.0)))
     service = Service(draw(st.floats(300.0, 3000.0)), 200.0, PV, PC, draw(st.floats(600.0, 1300.0)))
     nu = 10.0 ** draw(st.floats(-6.5, -1.0))
-    slow = Slow(draw(st.floats(0.5, 1.0)), draw(st.floats(0.05, 1.0)), d, d * draw(st.sampled_from((1.0, 1.5, 2.0))), nu,
-                draw(st.booleans()))  # fmt: skip
+    pipe = d * draw(st.sampled_from((1.0, 1.5, 2.0)))
+    slow = Slow(draw(st.floats(0.5, 1.0)), draw(st.floats(0.05, 1.0)), d, pipe, nu, draw(st.booleans()))
     turbulent = d * d * 10.0 ** draw(st.floats(-4.7, -1.4))
     return slow, service, standard.flow(turbulent, slow.fl, service, Piping())
 
 
 def _viscous(slow: Slow, service: Service) -> dict[str, object]:
-    # Wide pipes enter Rev alone: with the valve's own size beside it no fitting enters the turbulent branch.
+    # A wide pipe enters Rev; its fittings enter the turbulent branch alone.
     return {
         "fl": slow.fl, "valve_size": slow.d, "pipe_in": slow.D, "pipe_out": slow.D,
         "viscosity": slow.nu * service.density * 1e3, "fd": slow.fd, "trim": "reduced" if slow.reduced else "full",

@@ -233,10 +233,15 @@ def _overlay(values: list[Any], first: int, rows: Sequence[int], results: Sequen
 
 
 def _vouched(value: Any) -> Any:
-    """An argument; what the engine cannot vouch for counts as an unknown name (the report tells it apart later)."""
+    """An argument; what the engine cannot vouch for counts as an unknown name (the report tells it apart later).
+
+    An array with no room is no doubt but an error, which is passed on.
+    """
     if isinstance(value, list):
         return [[_vouched(cell) for cell in row] for row in value]
-    return CellError.NAME if hasattr(value, "reason") else value
+    if not hasattr(value, "reason"):
+        return value
+    return CellError.SPILL if value.kind == "spill" else CellError.NAME
 
 
 def _first_error(result: Any) -> CellError | None:

@@ -31,7 +31,7 @@ _OPENING = re.compile(rb"<(?:[\w.-]+:)?worksheet\b[^>]*>")
 def engine_bytes(package: Package, sheets: Sequence[SheetPart], plan: Plan) -> bytes:
     """A package for the engine's load: the sheets' cells, the shared strings, the scratch sheets."""
     entries = {entry.group: entry for entry in plan.entries}
-    contents = {sheet.title: _sheet_xml(sheet, entries) for sheet in sheets}
+    contents = {sheet.title: _sheet_xml(sheet, entries, plan.uncertain) for sheet in sheets}
     for title, computed in plan.scratch.items():
         columns = [(entry.group.rows, slot.slot.column, text_of(slot.pieces)) for entry, slot in computed]
         contents[title] = _scratch_xml(columns)
@@ -39,8 +39,11 @@ def engine_bytes(package: Package, sheets: Sequence[SheetPart], plan: Plan) -> b
     return _packed(contents, package.read(strings) if strings in package else b"", package.date1904)
 
 
-def _sheet_xml(sheet: SheetPart, entries: Mapping[Group, Entry]) -> bytes:
-    """The sheet's root and cells; formulas that the engine reads as they are keep their bytes."""
+def _sheet_xml(sheet: SheetPart, entries: Mapping[Group, Entry], spilling: bool) -> bytes:
+    """The sheet's root and cells; formulas that the engine reads as they are keep their bytes.
+
+    Where results may spill, a call that was taken out leaves a number in its cell: it is in the way of others.
+    """
     texts = {g: _cell_text(entries.get(g)) for g in sheet.distinct}
     edits = []
     for i, group in enumerate(sheet.groups):
@@ -51,7 +54,7 @@ def _sheet_xml(sheet: SheetPart, entries: Mapping[Group, Entry]) -> bytes:
         if group not in entries:
             edits.append((start, end, _poisoned(sheet, row, sheet.columns[i])))
         elif not text:
-            edits.append((start, end, b""))
+            edits.append((start, end, _held(sheet, row, sheet.columns[i]) if spilling else b""))
         else:
             edits.append((start, end, _cell(sheet.prefix, row, sheet.columns[i], instance(text, row))))
     edits += _cleared(sheet, entries)
@@ -72,6 +75,11 @@ def _cell_text(entry: Entry | None) -> list[str | int] | None:
 def _cell(prefix: bytes, row: int, column: int, formula: str) -> bytes:
     p = prefix.decode()
     return f'<{p}c r="{column_letters(column)}{row}"><{p}f>{formula}</{p}f></{p}c>'.encode()
+
+
+def _held(sheet: SheetPart, row: int, column: int) -> bytes:
+    p = sheet.prefix.decode()
+    return f'<{p}c r="{column_letters(column)}{row}"><{p}v>0</{p}v></{p}c>'.encode()
 
 
 def _poisoned(sheet: SheetPart, row: int, column: int) -> bytes:

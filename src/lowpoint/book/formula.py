@@ -111,12 +111,13 @@ class Formula:
 
     def _scalar_call(self, number: int) -> bool:
         name, call = self.name(number), self.calls[number]
-        if number in self.lp or name == "SINGLE" or not classes.known(name):
+        if number in self.lp or not classes.known(name):
             return False
-        if name == "":
+        if name in ("", "SINGLE"):
             return len(call.args) == 1
         if name == "INDEX":  # row or column 0, or a missing one of two, gives a whole row or column
-            return len(call.args) > 1 and all(self._surely_not_zero(span) for span in call.args[1:])
+            whole = len(call.args) < 2 or (len(call.args) == 2 and not self._one_wide(call.args[0]))
+            return not whole and all(self._surely_not_zero(span) for span in call.args[1:])
         if name == "XLOOKUP":
             return len(call.args) > 2 and self._one_wide(call.args[2])
         return True
@@ -134,6 +135,8 @@ class Formula:
         """Whether a range stands where a function takes it whole and gives one value for it."""
         number, place = self.place_of(token)
         if number is None:
+            return False
+        if self.name(number) == "SINGLE":  # which cell it takes depends on where the formula stands
             return False
         if self.solid(self.calls[number].args[place]) == (token, token + 1):
             letter = classes.place_class(self.name(number), place)

@@ -10,7 +10,7 @@ from typing import Any
 from lowpoint.problems import CellError
 
 from .engine import Unrefreshable
-from .helping import WRONG, cells_of, each, helper, number_of, text_of
+from .helping import WRONG, cells_of, each, grid_of, helper, number_of, text_of
 from .unitwords import convert
 
 
@@ -121,6 +121,27 @@ def _mode(*arguments: Any) -> Any:
             numbers[cell] = numbers.get(cell, 0) + 1
     most = max(numbers.values(), default=1)
     return CellError.NA if most < 2 else next(number for number, times in numbers.items() if times == most)
+
+
+@helper
+def _sumproduct(*arrays: Any) -> Any:
+    """Cells that are no numbers, logicals among them, count as 0; arrays of different sizes are #VALUE!."""
+    grids = [grid_of(array) for array in arrays]
+    if len({(len(grid), len(grid[0])) for grid in grids}) > 1:
+        return CellError.VALUE
+    total = 0.0
+    for cells in zip(*map(cells_of, grids), strict=True):
+        wrong = next((cell for cell in cells if isinstance(cell, WRONG)), None)
+        if wrong is not None:
+            return wrong
+        total += math.prod(cell if type(cell) is float else 0.0 for cell in cells)
+    return total
+
+
+@helper
+def _counterror(cells: Any, name: Any) -> Any:
+    """How many cells hold the error of this name."""
+    return float(sum(isinstance(cell, CellError) and cell == text_of(name).upper() for cell in cells_of(cells)))
 
 
 def _sorted_numbers(array: Any, skip_errors: bool) -> Any:

@@ -1,7 +1,8 @@
-"""Functions of single values over whole ranges: ``LEN(A2:A9)``, ``VLOOKUP({25;80},...)``, ``COUNTIF(range,{"a","b"})``.
+"""Helpers that let an engine of their own evaluate something: functions of single values over whole ranges.
 
-The engine takes only the first cell there (or gives an error). The call-back here matches the arguments cell by cell,
-puts them into a scratch book, and lets the engine evaluate the plain function for each.
+In ``LEN(A2:A9)``, ``VLOOKUP({25;80},...)`` or ``COUNTIF(range,{"a","b"})`` the engine takes only the first cell (or
+gives an error). The call-back here matches the arguments cell by cell, puts them into a scratch book, and lets the
+engine evaluate the plain function for each.
 Source of the broadcasting: ISO/IEC 29500-1, 18.17; OASIS ODF 1.3 part 4 (array calculation).
 """
 
@@ -13,11 +14,11 @@ from lowpoint.problems import CellError
 
 from .cures import prepare
 from .engine import Engine
-from .helpers import HELPERS, PREFIX, broadcast
+from .helping import HELPERS, PREFIX, WRONG, broadcast, cells_of
 from .kinds import scalar_places
 from .refs import column_letters
 
-__all__ = ["lift", "register"]
+__all__ = ["error_if", "lift", "register"]
 
 
 def lift(function: Any, *arguments: Any) -> Any:
@@ -49,8 +50,27 @@ def lift(function: Any, *arguments: Any) -> Any:
     return [found[i : i + wide] for i in range(0, len(found), wide)]
 
 
+def error_if(cells: Any, *pairs: Any) -> Any:
+    """The first error among ``cells`` whose places meet all criteria (range, criterion, range, ...); 0 for none."""
+    ranges, criteria = [list(cells_of(given)) for given in pairs[::2]], list(pairs[1::2])
+    places = [k for k, cell in enumerate(cells_of(cells)) if isinstance(cell, WRONG)]
+    if not places or any(len(given) <= places[-1] for given in ranges):
+        return 0.0
+    engine = Engine.empty("A", "C")
+    engine.set_values("C", 1, 1, [criteria])
+    engine.set_values("A", 1, 2, [[given[k] for given in ranges] for k in places])
+    columns = range(len(ranges))
+    for row in range(1, len(places) + 1):
+        asked = ",".join(f"{column_letters(2 + i)}{row},C!${column_letters(1 + i)}$1" for i in columns)
+        engine.set_formulas("A", row, 1, [[f"=COUNTIFS({asked})"]])
+    engine.evaluate()
+    met = [line[0] for line in engine.values("A", 1, 1, len(places), 1)]
+    return next((list(cells_of(cells))[k] for k, count in zip(places, met, strict=True) if count == 1.0), 0.0)
+
+
 def register(engine: Engine) -> None:
     """Make every helper a function of the book; prepared formulas call them as ``LOWPOINT.NAME``."""
     for name, function in HELPERS.items():
         engine.register(PREFIX + name, function)
     engine.register(PREFIX + "LIFT", lift)
+    engine.register(PREFIX + "ERRORIF", error_if)

@@ -400,6 +400,8 @@ class _Lowering:
         pieces: Pieces = [f"{site.name}({site.number},", 0]
         for span, given in zip(call.args, site.given, strict=True):
             pieces += [",", *(self._render(span, qualify) if given else ["0"])]
+        if number in self.singles and any(t.ref and not t.ref.single for t in self.f.tokens[call.start : call.stop]):
+            return ["(@", *pieces, "))"]  # one value in spite of the range in it: what stands around it may know
         return [*pieces, ")"]
 
     def _token_text(self, token: Token, qualify: bool) -> Pieces:

@@ -11,6 +11,8 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import dataclass
 
+from lowpoint.problems import CellError
+
 from .cures import prepare
 
 __all__ = ["CELLS", "FORMULA", "KNOWN", "PROBES", "Probe", "blocking", "met"]
@@ -28,9 +30,14 @@ class Probe:
     hiding: int = 0  # how rows of the example's workbook are hidden: 1 by hand, 2 by a filter
 
 
-# The cells that the examples read: A1:C3, and D1, which holds this formula.
+# The cells that the examples read: A1:E4; D1 holds this formula.
 FORMULA = "=1+2*3"
-CELLS: list[list[object]] = [[1.2, "pump", "2024-03-15"], [2.7, "valve", True], [1.9, "pipe", None]]
+CELLS: list[list[object]] = [
+    [1.2, "pump", "2024-03-15", None, 3.0],
+    [2.7, "valve", True, None, "2"],
+    [1.9, "pipe", None, None, None],
+    [None, "meter", None, None, CellError.NA],
+]
 
 # What each difference is, and whether it is cured or makes a formula keep its value.
 KNOWN: dict[str, tuple[str, str]] = {
@@ -65,6 +72,11 @@ KNOWN: dict[str, tuple[str, str]] = {
     "lookup-blanks": ("cured", "LOOKUP finds blanks behind the keys"),
     "xlookup-next": ("cured", "XLOOKUP of the next key wants sorted keys"),
     "lookup-computed": ("cured", "LOOKUP in a computed vector stops at errors"),
+    "product-of-words": ("cured", "SUMPRODUCT takes logicals and text such as 2 for numbers"),
+    "sum-of-errors": ("cured", "SUMIF, AVERAGEIF and their like pass errors over that meet the criteria"),
+    "count-of-errors": ("cured", "COUNTIF does not count errors by name"),
+    "subtotal-of-errors": ("cured", "SUBTOTAL gives an error where it counts cells with errors"),
+    "error-criterion": ("blocks", "an error's name is no criterion for SUMIF, COUNTIFS and their like"),
     "aggregate-array": ("cured", "AGGREGATE 14 to 19 are missing"),
     "mode-tie": ("cured", "MODE takes the least of several commonest numbers"),
     "type-of-error": ("cured", "TYPE hands an error on"),
@@ -157,6 +169,19 @@ PROBES: tuple[Probe, ...] = tuple(
         ("keys-out-of-order", "=MATCH(1E9,{3,1,2})", 3.0, "LibreOffice 7.4; common practice: the last number", "#N/A"),
         ("keys-out-of-order", "=VLOOKUP(99,A1:B3,2)", "pipe", "LibreOffice 7.4", "#N/A"),
         ("lookup-blanks", "=LOOKUP(9E9,A1:A9)", 1.9, "LibreOffice 7.4; common practice: the last number", 0.0),
+        (
+            "product-of-words",
+            "=SUMPRODUCT(A1:A3,E1:E3)",
+            1.2 * 3 + 2.7 * 0,
+            _MS + "SUMPRODUCT: what is no number is 0",
+            9.0,
+        ),
+        ("product-of-words", '=SUMPRODUCT(B1:B3="pump",A1:A3)', 0.0, _MS + "SUMPRODUCT: logicals are 0", 1.2),
+        ("sum-of-errors", '=SUMIFS(E1:E4,B1:B4,"meter")', "#N/A", "LibreOffice 7.4; common practice", 0.0),
+        ("sum-of-errors", '=AVERAGEIF(B1:B4,"m*",E1:E4)', "#N/A", "LibreOffice 7.4; common practice", "#DIV/0!"),
+        ("count-of-errors", '=COUNTIF(E1:E4,"#N/A")', 1.0, "LibreOffice 7.4; common practice", 0.0),
+        ("subtotal-of-errors", "=SUBTOTAL(2,E1:E4)", 1.0, _OF + "SUBTOTAL 2 is COUNT; by hand", "#N/A"),
+        ("error-criterion", '=COUNTIFS(E1:E4,"#N/A",B1:B4,"m*")', 1.0, "LibreOffice 7.4; common practice", 0.0),
         ("aggregate-array", "=AGGREGATE(14,6,A1:A3,1)", 2.7, _MS + "AGGREGATE: 14 is LARGE", "missing"),
         ("aggregate-array", "=AGGREGATE(15,6,A1:A3/(A1:A3>1.5),1)", 1.9, _MS + "AGGREGATE: 15 is SMALL", "missing"),
         ("aggregate-array", "=AGGREGATE(16,4,A1:A3,0.25)", 1.55, _OF + "PERCENTILE: by hand (1.2+1.9)/2", "missing"),

@@ -210,11 +210,57 @@ def _aggregate(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
 
 
 def _subtotal(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
-    """1 to 11 leave out what a filter hides, 101 to 111 whatever is hidden."""
-    plain = pieces and pieces[0] is not None and re.fullmatch(r"[1-9]|1[01]", pieces[0].text)
-    if writer.hiding > (1 if plain else 0):
+    """1 to 11 leave out what a filter hides, 101 to 111 whatever is hidden; counts pass errors over."""
+    number = pieces[0].text if pieces and pieces[0] is not None else ""
+    if writer.hiding > (1 if re.fullmatch(r"[1-9]|1[01]", number) else 0):
         raise BlockedError("hidden-rows", "leaves hidden rows out, which the recalculator's engine does not see")
-    return None
+    if number not in {"2", "3", "102", "103"} or any(piece is None for piece in pieces):
+        return None
+    writer.note("subtotal-of-errors")
+    count = writer.plain("COUNT" if number[-1] == "2" else "COUNTA", pieces[1:])
+    return Piece(f"IFERROR({writer.plain(name, pieces).text},{count.text})", False, "whole")
+
+
+def _products(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    """SUMPRODUCT of cells, or of whatever may be text or logical: the engine takes these for numbers."""
+    doubtful = [p for p in pieces if p is not None and p.kind not in {"number", "whole", "rounded", "literal"}]
+    if not doubtful or len(pieces) > sum(piece is not None for piece in pieces):
+        return None
+    writer.note("product-of-words")
+    made = writer.helper(name, pieces)
+    if any(piece.kind != "reference" for piece in doubtful):
+        return made
+    counted = "+".join(f"COUNT({p.text})" for p in doubtful)
+    cells = "+".join(f"ROWS({p.text})*COLUMNS({p.text})" for p in doubtful)
+    return Piece(f"IF({counted}={cells},{writer.plain(name, pieces).text},{made.text})", False, "number")
+
+
+def _conditional(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    """SUMIFS and its like: an error among the cells that meet the criteria is the answer."""
+    _refuse_error_criterion(name, pieces)
+    last = name in {"SUMIF", "AVERAGEIF"}
+    if any(piece is None for piece in pieces) or len(pieces) < 3:
+        return None
+    given, pairs = (pieces[2], pieces[:2]) if last else (pieces[0], pieces[1:])
+    if given is None or given.kind != "reference" or any(p is not None and p.array for p in pairs[1::2]):
+        return None
+    writer.note("sum-of-errors")
+    found = writer.helper("ERRORIF", [given, *pairs]).text
+    return Piece(f"(IF(ISERROR(SUM({given.text})),{found},0)+{writer.plain(name, pieces).text})", False, "number")
+
+
+def _refuse_error_criterion(name: str, pieces: Pieces) -> None:
+    if any(piece is not None and piece.text.startswith('"#') and piece.text[2:3].isupper() for piece in pieces):
+        raise BlockedError("error-criterion", f"asks {name} for the cells that hold an error")
+
+
+def _count_if(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    """COUNTIF of an error's name."""
+    if name != "COUNTIF" or len(pieces) != 2 or pieces[1] is None or not pieces[1].text.startswith('"#'):
+        _refuse_error_criterion(name, pieces)
+        return None
+    writer.note("count-of-errors")
+    return writer.helper("COUNTERROR", pieces, False, "whole")
 
 
 def _cell(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
@@ -269,6 +315,9 @@ RULES: dict[str, Rule] = {
     "LOOKUP": _lookup,
     "AGGREGATE": _aggregate,
     "SUBTOTAL": _subtotal,
+    "SUMPRODUCT": _products,
+    **dict.fromkeys(("SUMIF", "SUMIFS", "AVERAGEIF", "AVERAGEIFS", "MAXIFS", "MINIFS"), _conditional),
+    **dict.fromkeys(("COUNTIF", "COUNTIFS"), _count_if),
     **dict.fromkeys(("CELL", "INFO", "SHEET", "SHEETS"), _cell),
     **dict.fromkeys(("FORMULATEXT", "ISFORMULA"), _formula_text),
     **dict.fromkeys(

@@ -31,6 +31,7 @@ _NO_ANSWER = (
     TOO_HOT,
     NoAnswer("t is above the boiling temperature at p1: what enters is vapour, not liquid; check t and p1", _boiled),
     NoAnswer("p2 is below the triple point: the liquid would freeze", _freezes),
+    NoAnswer("the inlet is frozen, or p1 is beyond the range of the equation of state"),
 )
 _CAUTIONS = (
     Caution("isenthalpic, phases in equilibrium and at one velocity; the real share lags behind in short valves",

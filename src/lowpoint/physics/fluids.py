@@ -15,26 +15,31 @@ from typing import Any, NamedTuple
 
 from lowpoint.physics.names import key_of
 
-__all__ = ["Span", "Split", "density", "flash", "is_liquid", "saturation_temperature", "sound_speed", "span",
-           "vapour_pressure", "viscosity"]  # fmt: skip
+__all__ = ["Span", "Split", "density", "flash", "is_frozen", "is_liquid", "saturation_temperature", "sound_speed",
+           "span", "vapour_pressure", "viscosity"]  # fmt: skip
 
 MEMORY = 1 << 16
 """Values remembered of each property: a list of valves repeats the same few states over and over."""
 SATURATED = 1e-4
 """A pressure this near to the vapour pressure, relative, is the saturated liquid."""
+P_HIGHEST = 1e8
+"""Pa up to which an equation of state is continued beyond its own range."""
 _FREEZING_SLACK = 0.02
-"""K below the triple point that still count as liquid: 0 deg C is 0.01 K below that of water."""
+"""K below the freezing point that still count as liquid: 0 deg C is 0.01 K below the triple point of water."""
+_CRITICAL_SLACK = 1e-9
 
 _local = threading.local()
 
 
 class Span(NamedTuple):
-    """Where a substance can be liquid: K and Pa."""
+    """Where a substance can be liquid, K and Pa; up to which pressure its equation was fitted, and is used."""
 
     t_low: float
     t_critical: float
     p_low: float
     p_critical: float
+    p_fitted: float
+    p_high: float
 
 
 class Split(NamedTuple):
@@ -42,6 +47,9 @@ class Split(NamedTuple):
 
     quality: float
     density: float
+
+
+_NOTHING = Split(math.nan, math.nan)
 
 
 def _state(fluid: str) -> Any:
@@ -63,19 +71,25 @@ def span(fluid: str) -> Span:
     state = _state(fluid)
     t_low = max(state.Ttriple(), state.Tmin())
     state.update(QT_INPUTS, 0.0, t_low)
-    return Span(t_low, state.T_critical(), state.p(), state.p_critical())
+    fitted = state.pmax()
+    return Span(t_low, state.T_critical(), state.p(), state.p_critical(), fitted, max(fitted, P_HIGHEST))
 
 
-def _value(fluid: str, inputs: str, one: float, two: float, read: Callable[[Any], float]) -> float:
-    """One property at one state; NaN where the library has no state or no model there."""
+def _value(fluid: str, inputs: str, one: float, two: float, read: Callable[[Any], float], phase: str = "") -> float:
+    """One property at one state, of the phase named; NaN where the library has no state or no model there."""
     from CoolProp import CoolProp
 
     state = _state(fluid)
+    if phase:
+        state.specify_phase(getattr(CoolProp, phase))
     try:
         state.update(getattr(CoolProp, inputs), one, two)
         answer = float(read(state))
     except ValueError:
         return math.nan
+    finally:
+        if phase:
+            state.unspecify_phase()
     return answer if math.isfinite(answer) else math.nan
 
 
@@ -83,33 +97,83 @@ def _value(fluid: str, inputs: str, one: float, two: float, read: Callable[[Any]
 def vapour_pressure(fluid: str, t: float) -> float:
     """Saturation pressure at a temperature between the triple and the critical point."""
     limits = span(fluid)
-    if not limits.t_low - _FREEZING_SLACK <= t <= limits.t_critical:
+    if not limits.t_low - _FREEZING_SLACK <= t <= limits.t_critical * (1.0 + _CRITICAL_SLACK):
         return math.nan
+    if t >= limits.t_critical * (1.0 - _CRITICAL_SLACK):
+        return limits.p_critical
     return _value(fluid, "QT_INPUTS", 0.0, t, lambda state: state.p())
 
 
 @lru_cache(MEMORY)
 def saturation_temperature(fluid: str, p: float) -> float:
-    """Boiling temperature at a pressure between that of the triple point and the critical one."""
+    """Boiling temperature at a pressure between that of the freezing point and the critical one."""
     limits = span(fluid)
-    if not limits.p_low <= p <= limits.p_critical:
+    if limits.p_low <= p < limits.p_critical * (1.0 - _CRITICAL_SLACK):
+        t = _value(fluid, "PQ_INPUTS", p, 0.0, lambda state: state.T())
+        # Far below 1 Pa the library settles on temperatures that belong to other pressures.
+        return t if p > 1.0 or abs(vapour_pressure(fluid, t) / p - 1.0) < 1e-6 else math.nan
+    if p < limits.p_low:
+        return _just_below_triple(fluid, p)
+    return limits.t_critical if p <= limits.p_critical * (1.0 + _CRITICAL_SLACK) else math.nan
+
+
+def _just_below_triple(fluid: str, p: float) -> float:
+    """The boiling temperature within the slack below the triple point, where ln p is a straight line in 1/T."""
+    limits = span(fluid)
+    t_end = limits.t_low - _FREEZING_SLACK
+    p_end = vapour_pressure(fluid, t_end)
+    if not p_end <= p:
         return math.nan
-    return _value(fluid, "PQ_INPUTS", p, 0.0, lambda state: state.T())
+    share = math.log(p / p_end) / math.log(limits.p_low / p_end)
+    return 1.0 / (1.0 / t_end + share * (1.0 / limits.t_low - 1.0 / t_end))
 
 
 def is_liquid(fluid: str, t: float, p: float | None) -> bool:
-    """Is the substance liquid at this temperature and pressure?"""
+    """Is the substance above its boiling pressure at this temperature, between its triple and critical point?"""
     pv = vapour_pressure(fluid, t)
     return pv == pv and (p is None or p >= pv * (1.0 - SATURATED))
+
+
+def _melting(fluid: str, p: float) -> float:
+    """Melting temperature at a pressure, NaN where no melting line is known for it."""
+    from CoolProp.CoolProp import iP, iT
+
+    state = _state(fluid)
+    if not state.has_melting_line():
+        return math.nan
+    try:
+        return float(state.melting_line(iT, iP, p))
+    except ValueError:
+        return math.nan
+
+
+@lru_cache(512)
+def _has_true_melting_line(fluid: str) -> bool:
+    """Does the melting line begin at the triple point? That of deuterium lies a kelvin above it."""
+    limits = span(fluid)
+    lowest = _melting(fluid, max(2.0 * limits.p_low, 1e5))
+    return abs(lowest - limits.t_low) < 0.1 + 0.005 * limits.t_low
+
+
+@lru_cache(MEMORY)
+def is_frozen(fluid: str, t: float, p: float) -> bool:
+    """Is the substance solid because of its pressure, although above its triple point?"""
+    return _has_true_melting_line(fluid) and t < _melting(fluid, p) - _FREEZING_SLACK
+
+
+def _phase(fluid: str, p: float) -> str:
+    """The phase to look for: told so, the library neither misses the liquid nor stops short of saturation."""
+    return "iphase_liquid" if p < span(fluid).p_critical else "iphase_supercritical_liquid"
 
 
 def _of_liquid(fluid: str, t: float, p: float | None, read: Callable[[Any], float]) -> float:
     if not is_liquid(fluid, t, p):
         return math.nan
-    # Close to saturation the library refuses temperature and pressure together.
     if p is None or p <= vapour_pressure(fluid, t) * (1.0 + 2e-6):
         return _value(fluid, "QT_INPUTS", 0.0, t, read)
-    return _value(fluid, "PT_INPUTS", p, t, read)
+    if p > span(fluid).p_high or is_frozen(fluid, t, p):
+        return math.nan
+    return _value(fluid, "PT_INPUTS", p, t, read, _phase(fluid, p))
 
 
 @lru_cache(MEMORY)
@@ -141,21 +205,39 @@ def flash(fluid: str, t: float, p1: float, p2: float) -> Split:
     """Isenthalpic expansion of the liquid from ``t, p1`` to ``p2``: quality within 0 and 1, homogeneous density."""
     limits, h = span(fluid), _enthalpy(fluid, t, p1)
     if not (h == h and limits.p_low <= p2):
-        return Split(math.nan, math.nan)
-    if p2 < limits.p_critical:
-        h_liquid, v_liquid = _saturated(fluid, p2, 0.0)
-        h_vapour, v_vapour = _saturated(fluid, p2, 1.0)
-        x = (h - h_liquid) / (h_vapour - h_liquid)
-        if 0.0 < x < 1.0:
-            return Split(x, 1.0 / ((1.0 - x) * v_liquid + x * v_vapour))
-        if x != x:
-            return Split(x, x)
-    else:
-        x = 0.0
-    return Split(min(max(x, 0.0), 1.0), _value(fluid, "HmassP_INPUTS", h, p2, lambda state: state.rhomass()))
+        return _NOTHING
+    x = _quality(fluid, h, p2) if p2 < limits.p_critical else 0.0
+    if x <= 0.0:
+        # From the boiling temperature downward Newton's steps close in from one side.
+        start = min(t, saturation_temperature(fluid, p2)) if p2 < limits.p_critical else t
+        return Split(0.0, _expanded_liquid(fluid, h, start, p2))
+    if x >= 1.0:
+        return Split(1.0, _value(fluid, "HmassP_INPUTS", h, p2, lambda state: state.rhomass()))
+    if x != x:
+        return _NOTHING
+    v_liquid, v_vapour = (1.0 / _saturated(fluid, p2, q, lambda state: state.rhomass()) for q in (0.0, 1.0))
+    return Split(x, 1.0 / ((1.0 - x) * v_liquid + x * v_vapour))
 
 
-def _saturated(fluid: str, p: float, quality: float) -> tuple[float, float]:
-    """Enthalpy and specific volume of the boiling liquid (0) or the dry vapour (1)."""
-    h = _value(fluid, "PQ_INPUTS", p, quality, lambda state: state.hmass())
-    return h, 1.0 / _state(fluid).rhomass() if h == h else math.nan
+def _quality(fluid: str, h: float, p: float) -> float:
+    """Vapour share at a pressure, below 0 for a liquid and above 1 for a superheated vapour."""
+    h_liquid, h_vapour = (_saturated(fluid, p, q, lambda state: state.hmass()) for q in (0.0, 1.0))
+    return (h - h_liquid) / (h_vapour - h_liquid)
+
+
+def _saturated(fluid: str, p: float, quality: float, read: Callable[[Any], float]) -> float:
+    """A property of the boiling liquid (0) or the dry vapour (1)."""
+    return _value(fluid, "PQ_INPUTS", p, quality, read)
+
+
+def _expanded_liquid(fluid: str, h: float, t: float, p: float) -> float:
+    """Density of the liquid of an enthalpy at a pressure, by Newton's steps in the temperature from ``t``."""
+    # The library's own search for it misses by up to 0.05 % next to saturation.
+    for _ in range(30):
+        excess = _value(fluid, "PT_INPUTS", p, t, lambda state: (state.hmass() - h) / state.cpmass(), _phase(fluid, p))
+        if not abs(excess) < 0.5 * t:
+            return math.nan
+        t -= excess
+        if abs(excess) <= 1e-9 * t:
+            break
+    return _value(fluid, "PT_INPUTS", p, t, lambda state: state.rhomass(), _phase(fluid, p))

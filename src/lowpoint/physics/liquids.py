@@ -6,7 +6,7 @@ Kernels over columns; the values come one by one from :mod:`lowpoint.physics.flu
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterable
 from itertools import repeat
 from typing import Any
 
@@ -28,20 +28,25 @@ NORMAL_SALINITY = 35.0
 WATER_LIKE = "water"
 
 
-def _names(fluid: Any) -> Iterator[str]:
-    return repeat(fluid) if isinstance(fluid, str) else iter(fluid.tolist())
+def _names(fluid: Any, rows: int) -> Iterable[str]:
+    return (
+        repeat(fluid, rows) if isinstance(fluid, str) else repeat(fluid[0], rows) if len(fluid) == 1 else fluid.tolist()
+    )
 
 
-def _numbers(x: Any) -> Iterator[float | None]:
-    """The numbers of a column, None where one is omitted."""
-    return repeat(None) if x is None else (None if v != v else v for v in x.tolist())
+def _numbers(x: Any, rows: int) -> Iterable[float | None]:
+    """The numbers of a column, None where one is omitted; one number stands for all rows."""
+    if x is None:
+        return repeat(None, rows)
+    numbers = [None if v != v else v for v in x.tolist()]
+    return repeat(numbers[0], rows) if len(numbers) == 1 else numbers
 
 
 def each(answer: Callable[..., Any], fluid: Any, *columns: Any) -> Any:
-    """``answer(name, number...)`` row by row; a column may be None, a row of it omitted."""
-    if isinstance(fluid, str) and not any(x is not None for x in columns):
-        return np.array([answer(fluid, *repeat(None, len(columns)))])
-    return np.array([answer(*row) for row in zip(_names(fluid), *map(_numbers, columns), strict=False)])
+    """``answer(name, number...)`` row by row; a column may be None or hold one number for all rows."""
+    lengths = [len(x) for x in (fluid, *columns) if x is not None and not isinstance(x, str)]
+    rows = max(lengths, default=1)
+    return np.array([*map(answer, _names(fluid, rows), *(_numbers(x, rows) for x in columns))])
 
 
 def pure(name: str) -> str:
@@ -79,8 +84,25 @@ def _hot(fluid: Any, t: Any) -> Any:
     return each(lambda name, x: x > _temperatures(name)[1], fluid, t)
 
 
+def is_liquid(name: str, t: float, p: float | None) -> bool:
+    """Does a liquid stay one at a pressure?"""
+    return seawater.is_liquid(t, p, NORMAL_SALINITY / 1000.0) if is_salty(name) else fluids.is_liquid(name, t, p)
+
+
 def _boils(fluid: Any, t: Any, p: Any) -> Any:
-    return each(lambda name, x, y: y is not None and not fluids.is_liquid(pure(name), x, y), fluid, t, p)
+    return each(lambda name, x, y: not is_liquid(name, x, y), fluid, t, p)
+
+
+def _freezes(fluid: Any, t: Any, p: Any) -> Any:
+    return each(lambda name, x, y: y is not None and fluids.is_frozen(pure(name), x, y), fluid, t, p)
+
+
+def _beyond_state(fluid: Any, p: Any) -> Any:
+    return each(lambda name, x: x is not None and x > fluids.span(pure(name)).p_high, fluid, p)
+
+
+def _beyond_fit(fluid: Any, p: Any) -> Any:
+    return each(lambda name, x: x is not None and x > fluids.span(pure(name)).p_fitted, fluid, p)
 
 
 def _salty(fluid: Any) -> Any:
@@ -100,13 +122,22 @@ TOO_HOT = NoAnswer(
     "t is above the critical temperature: there is no liquid (sea water: above 120 C, where its equations end)", _hot
 )
 BOILS_AWAY = NoAnswer("the liquid boils at this temperature and pressure; check t, and whether p is absolute", _boils)
-OUT_OF_STATE = NoAnswer("the pressure is beyond the range of the equation of state")
+FROZEN = NoAnswer("the liquid is frozen at this temperature and pressure", _freezes)
+OUT_OF_STATE = NoAnswer("the pressure is beyond the range of the equation of state", _beyond_state)
+NO_STATE = NoAnswer("the equation of state has no answer here; it is weak next to the critical point")
 
 SALT_IS_NORMAL = Caution(
     "a brine was taken at the salinity of normal sea water, 35 g/kg; give its own",
     lambda fluid, salinity: each(lambda name, s: name == "brine" and s == NORMAL_SALINITY / 1000.0, fluid, salinity),
 )
 SALT_IS_FIXED = Caution("sea water of 35 g/kg was taken", _salty)
+SALT_NOT_USED = Caution(
+    "salinity is used for sea water and its brines only, and was left aside",
+    lambda fluid, salinity: each(
+        lambda name, s: not is_salty(name) and s not in (None, 0.0, NORMAL_SALINITY / 1000.0), fluid, salinity
+    ),
+)
+CONTINUED = Caution("the pressure is above those that the equation of state was fitted to", _beyond_fit)
 EXTRAPOLATED = Caution(
     "the vapour pressure of sea water is extrapolated above 80 C",
     lambda fluid, t: each(lambda name, x: is_salty(name) and x > 353.15, fluid, t),
@@ -121,7 +152,8 @@ CORRELATION = Caution(
     "VAPOUR_PRESSURE", group="liquids", gives="saturation (vapour) pressure of a liquid", source_key="CoolProp",
     equation="equation of state of the pure liquid (water: IAPWS-95); sea water: that of water times "
     "exp(-phi m Mw), phi from IAPWS-08",
-    no_answer=(TOO_COLD, TOO_HOT), cautions=(SALT_IS_NORMAL, EXTRAPOLATED), resolve=FLUID, words=FLUID_WORDS,
+    no_answer=(TOO_COLD, TOO_HOT, NO_STATE), cautions=(SALT_IS_NORMAL, SALT_NOT_USED, EXTRAPOLATED),
+    resolve=FLUID, words=FLUID_WORDS,
 )  # fmt: skip
 def saturation_pressure(fluid: q.Fluid, t: q.T, salinity: q.Salinity = NORMAL_SALINITY) -> q.Pressure:  # type: ignore[assignment]
     """Vapour pressure ``pv`` at a temperature, from the equation of state of the liquid.
@@ -138,7 +170,7 @@ def saturation_pressure(fluid: q.Fluid, t: q.T, salinity: q.Salinity = NORMAL_SA
     equation="inverse of the vapour pressure",
     no_answer=(NoAnswer("p is below the vapour pressure at the freezing point", _low_pressure),
                NoAnswer("p is above the critical pressure: the liquid does not boil", _high_pressure),
-               NoAnswer("sea water would boil outside 0 to 120 C, where its equations hold", _salty)),
+               NoAnswer("sea water would boil outside 0 to 120 C, where its equations hold", _salty), NO_STATE),
     cautions=(SALT_IS_FIXED,), resolve=FLUID, words=FLUID_WORDS,
 )  # fmt: skip
 def boiling_temperature(fluid: q.Fluid, p: q.P) -> q.Temperature:
@@ -179,7 +211,8 @@ def _sound_speed_of(name: str, t: float, p: float | None) -> float:
 @function(
     "DENSITY", group="liquids", gives="density of the liquid", source_key="CoolProp",
     equation="equation of state at t and p; without p the saturated liquid",
-    no_answer=(TOO_COLD, TOO_HOT, BOILS_AWAY, OUT_OF_STATE), cautions=(SALT_IS_NORMAL, CORRELATION),
+    no_answer=(TOO_COLD, TOO_HOT, BOILS_AWAY, FROZEN, OUT_OF_STATE, NO_STATE),
+    cautions=(SALT_IS_NORMAL, SALT_NOT_USED, CORRELATION, CONTINUED),
     resolve=FLUID, words=FLUID_WORDS,
 )  # fmt: skip
 def liquid_density(
@@ -197,9 +230,9 @@ def liquid_density(
 @function(
     "VISCOSITY", group="liquids", gives="dynamic viscosity of the liquid", source_key="CoolProp",
     equation="published correlation at t and p; without p the saturated liquid",
-    no_answer=(TOO_COLD, TOO_HOT, BOILS_AWAY,
+    no_answer=(TOO_COLD, TOO_HOT, BOILS_AWAY, FROZEN, OUT_OF_STATE,
                NoAnswer("no published equation gives the viscosity of this liquid here: take it from its data sheet")),
-    cautions=(SALT_IS_NORMAL, CORRELATION), resolve=FLUID, words=FLUID_WORDS,
+    cautions=(SALT_IS_NORMAL, SALT_NOT_USED, CORRELATION, CONTINUED), resolve=FLUID, words=FLUID_WORDS,
 )  # fmt: skip
 def liquid_viscosity(
     fluid: q.Fluid, t: q.T, p: q.P = None, salinity: q.Salinity = NORMAL_SALINITY  # type: ignore[assignment]
@@ -216,8 +249,9 @@ def liquid_viscosity(
     "SOUND_SPEED", group="liquids", gives="speed of sound in the liquid", source_key="CoolProp",
     equation="equation of state at t and p; without p the saturated liquid",
     no_answer=(TOO_COLD, TOO_HOT, BOILS_AWAY,
-               NoAnswer("the equation for the speed of sound in sea water holds from 2 to 30 C", _salty), OUT_OF_STATE),
-    cautions=(Caution("sea water of 35 g/kg by the equation of Mackenzie (1981), from memory", _salty),),
+               NoAnswer("the equation for the speed of sound in sea water holds from 2 to 30 C", _salty),
+               FROZEN, OUT_OF_STATE, NO_STATE),
+    cautions=(Caution("sea water of 35 g/kg by the equation of Mackenzie (1981), from memory", _salty), CONTINUED),
     resolve=FLUID, words=FLUID_WORDS,
 )  # fmt: skip
 def sound_speed(fluid: q.Fluid, t: q.T, p: q.P = None) -> q.SoundSpeed:  # type: ignore[assignment]
@@ -252,6 +286,7 @@ def _highest_vapour_pressure(p1: Any, p2: Any, limit: Any, form: Any) -> Any:
                  lambda fluid, p1, p2, limit, form: _high_pressure(
                      fluid, _highest_vapour_pressure(p1, p2, limit, form))),
         NoAnswer("the temperature lies outside 0 to 120 C, where the equations of sea water hold", _salty),
+        NO_STATE,
     ),
     cautions=(SALT_IS_FIXED,
               Caution("at this limit the outlet is at or below the vapour pressure: the liquid flashes",

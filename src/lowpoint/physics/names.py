@@ -1,7 +1,7 @@
 """Liquids by the names that the trade uses: what each word means, without loading any property library.
 
 The table ``tables/fluid_names.csv`` holds every name with its aliases. Spelling is compared without case, spaces,
-hyphens and dots, so that ``R-134a`` and ``r134A`` are one.
+hyphens, brackets and dots, so that ``R-134a`` and ``r134A`` are one.
 """
 
 from __future__ import annotations
@@ -9,6 +9,7 @@ from __future__ import annotations
 import csv
 import difflib
 import re
+import unicodedata
 from functools import cache
 from importlib import resources
 from typing import NamedTuple
@@ -16,6 +17,8 @@ from typing import NamedTuple
 __all__ = ["Name", "is_salty", "key_of", "known_names", "resolve", "resolve_pure"]
 
 GIVE_PV = "give pv, pc and density yourself from its data sheet"
+LONGEST = 60
+"""Longer texts are no names, and are not compared with any."""
 
 
 class Name(NamedTuple):
@@ -27,7 +30,8 @@ class Name(NamedTuple):
 
 
 def _folded(text: str) -> str:
-    return re.sub(r"[\s\-_.,()']+", "", text).casefold()
+    """A spelling as it is compared: any dash, subscript digits as digits, no spaces and signs between."""
+    return re.sub(r"[\W_]+", "", unicodedata.normalize("NFKC", text)).casefold()
 
 
 @cache
@@ -72,9 +76,9 @@ def is_salty(name: str) -> bool:
 
 def resolve(text: str) -> str:
     """The canonical name of a liquid whose properties are known; ValueError with the sentence for any other."""
-    entry = _by_spelling().get(_folded(text))
+    entry = _by_spelling().get(_folded(text)) if len(text) <= LONGEST else None
     if entry is None:
-        raise ValueError(_unknown(text))
+        raise ValueError(_unknown(" ".join(text.split())))
     if entry.kind == "mixture":
         raise ValueError(f"fluid '{text}' is a mixture whose vapour pressure depends on its composition: {GIVE_PV}")
     if entry.kind == "ambiguous":
@@ -99,15 +103,37 @@ def resolve_pure(text: str) -> str:
 
 
 def _unknown(text: str) -> str:
-    if "%" in text or re.search(r"\bsolution\b|\bmix(ture)?\b|\bblend\b|\boil\b", text, re.IGNORECASE):
+    if len(text) > LONGEST:
+        return f"fluid must be the name of a liquid, got a text of {len(text)} letters ('{text[:20]}...')"
+    if "%" in text or re.search(r"\b(solution|mix(ture)?|blend|oil)\b", text, re.IGNORECASE):
         return f"fluid '{text}' looks like a mixture, for which no vapour pressure is known: {GIVE_PV}"
     near = nearest(text)
     hint = f"; nearest: {', '.join(near)}" if near else ""
     return f"fluid must be a known liquid, got '{text}'{hint}. For another liquid {GIVE_PV}"
 
 
+@cache
+def _comparable() -> dict[str, tuple[Name, str]]:
+    """Every spelling that a slip could have been meant for, with the way that it stands in the table."""
+    return {
+        _folded(spelling): (entry, spelling)
+        for entry, aliases in _rows() if entry.kind in ("pure", "sea water", "mixture")
+        for spelling in (entry.name, *aliases)
+    }  # fmt: skip
+
+
 def nearest(text: str, most: int = 3) -> list[str]:
-    """The known liquids whose names or aliases are spelled most like a text."""
-    table = {spelling: entry.name for spelling, entry in _by_spelling().items() if entry.kind in ("pure", "sea water")}
-    close = difflib.get_close_matches(_folded(text), table, n=3 * most, cutoff=0.6)
-    return list(dict.fromkeys(table[spelling] for spelling in close))[:most]
+    """The liquids whose names or aliases are spelled most like a text, or begin with it; mixtures say so."""
+    spelled, table = _folded(text), _comparable()
+    close = difflib.get_close_matches(spelled, table, n=4 * most, cutoff=0.6) if spelled else []
+    begun = sorted((key for key in table if len(spelled) > 2 and key.startswith(spelled)), key=len)
+    found: dict[Name, str] = {}
+    for key in [*(key for key in close if _ratio(spelled, key) > 0.8), *begun, *close]:
+        entry, spelling = table[key]
+        shown = entry.name if spelling.isupper() else spelling
+        found.setdefault(entry, f"{shown} (a mixture)" if entry.kind == "mixture" else shown)
+    return list(found.values())[:most]
+
+
+def _ratio(one: str, other: str) -> float:
+    return difflib.SequenceMatcher(None, one, other).ratio()

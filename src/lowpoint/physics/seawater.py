@@ -13,7 +13,15 @@ from typing import Any
 
 from lowpoint.physics import fluids
 
-__all__ = ["density", "saturation_temperature", "sound_speed", "vapour_pressure", "viscosity", "water_activity"]
+__all__ = [
+    "density",
+    "is_liquid",
+    "saturation_temperature",
+    "sound_speed",
+    "vapour_pressure",
+    "viscosity",
+    "water_activity",
+]
 
 T_LOW, T_HIGH = 273.15, 393.15
 """K, the range of the correlations for density and viscosity."""
@@ -66,14 +74,21 @@ def vapour_pressure(t: float, salinity: float) -> float:
     return fluids.vapour_pressure("water", t) * water_activity(t, salinity)
 
 
+@lru_cache(fluids.MEMORY)
 def saturation_temperature(p: float, salinity: float) -> float:
     """Boiling temperature of sea water; the activity hardly moves with temperature, so a few steps settle it."""
-    t = fluids.saturation_temperature("water", p)
-    for _ in range(6):
-        if not T_LOW <= t <= T_HIGH + 5.0:
-            return math.nan
+    t = 320.0
+    for _ in range(5):
         t = fluids.saturation_temperature("water", p / water_activity(t, salinity))
-    return t if T_LOW <= t <= T_HIGH else math.nan
+        if not T_LOW - 1.0 <= t <= T_HIGH + 1.0:
+            return math.nan
+    # The ends themselves belong to the range, whatever the last digit of their pressure.
+    return min(max(t, T_LOW), T_HIGH) if T_LOW - 1e-6 <= t <= T_HIGH + 1e-6 else math.nan
+
+
+def is_liquid(t: float, p: float | None, salinity: float) -> bool:
+    """Is sea water above its boiling pressure at this temperature?"""
+    return p is None or p >= vapour_pressure(t, salinity) * (1.0 - fluids.SATURATED)
 
 
 def _solution() -> Any:
@@ -100,11 +115,6 @@ def _of_solution(t: float, salinity: float, read: Callable[[Any], float]) -> flo
         return math.nan
 
 
-def _lowest(p: float | None, t: float, salinity: float) -> bool:
-    """Is sea water liquid at this pressure?"""
-    return p is None or p >= vapour_pressure(t, salinity) * (1.0 - fluids.SATURATED)
-
-
 @lru_cache(fluids.MEMORY)
 def density(t: float, p: float | None, salinity: float) -> float:
     """Density of sea water, kg/m3: the correlation at low pressure, compressed as much as water is.
@@ -112,7 +122,7 @@ def density(t: float, p: float | None, salinity: float) -> float:
     Source: Sharqawy et al. (2010), as in CoolProp (MITSW), 0 to 120 C; compressibility of water by IAPWS-95, which
     overstates that of sea water by a tenth (0.02 % of the density at 60 bar).
     """
-    if not _lowest(p, t, salinity):
+    if not is_liquid(t, p, salinity):
         return math.nan
     low = _of_solution(t, salinity, lambda solution: solution.rhomass())
     if p is None:
@@ -128,7 +138,7 @@ def viscosity(t: float, p: float | None, salinity: float) -> float:
 
     Source: Sharqawy et al. (2010), as in CoolProp (MITSW), 0 to 120 C.
     """
-    if not _lowest(p, t, salinity):
+    if not is_liquid(t, p, salinity):
         return math.nan
     return _of_solution(t, salinity, lambda solution: solution.viscosity())
 
@@ -139,7 +149,7 @@ def sound_speed(t: float, p: float | None, salinity: float = 0.035) -> float:
     Source: K. V. Mackenzie, J. Acoust. Soc. Am. 70 (1981) 807-812, nine terms, 2 to 30 C, 25 to 40 g/kg (from memory).
     """
     c, s = t - 273.15, 1000.0 * salinity - 35.0
-    if not 2.0 <= c <= 30.0 or not -10.0 <= s <= 5.0:
+    if not (2.0 <= c <= 30.0 and -10.0 <= s <= 5.0 and is_liquid(t, p, salinity)):
         return math.nan
     depth = 0.0 if p is None else max(p - 101325.0, 0.0) / (1025.0 * 9.80665)
     return (

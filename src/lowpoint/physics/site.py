@@ -6,13 +6,13 @@ import numpy as np
 
 from lowpoint import quantities as q
 from lowpoint.declare import NoAnswer, function
+from lowpoint.units import GRAVITY
 
 __all__ = ["barometric_pressure", "pressure_after_rise"]
 
 EARTH = 6356766.0
 """Nominal radius of the earth of the standard atmosphere, m."""
 SEA_LEVEL = 101325.0
-GRAVITY = 9.80665
 
 
 @function(
@@ -34,7 +34,8 @@ def barometric_pressure(elevation: q.Elevation) -> q.Pressure:
     "COLUMN", group="liquids", gives="pressure after a change of elevation, liquid at rest", source_key="hydrostatics",
     equation="p - density g rise",
     no_answer=(NoAnswer("the column is higher than the pressure can carry: the liquid would part, no absolute "
-                        "pressure is left"),),
+                        "pressure is left", lambda rise: rise > 0.0),
+               NoAnswer("the pressure is larger than a number can be")),
 )  # fmt: skip
 def pressure_after_rise(p: q.P, rise: q.Rise, density: q.Density) -> q.Pressure:
     """Pressure at another elevation, ``p - density g rise``; upward lowers it.
@@ -43,4 +44,4 @@ def pressure_after_rise(p: q.P, rise: q.Rise, density: q.Density) -> q.Pressure:
     Source: hydrostatics.
     """
     after = p - density * GRAVITY * rise
-    return np.where(after > 0.0, after, np.nan)
+    return np.where((after > 0.0) & np.isfinite(after), after, np.nan)

@@ -138,7 +138,7 @@ def _not_negative(a: float, b: float, c: Any) -> tuple[Any, Any]:
     first = -2.0 * c / (b + root) if b > 0.0 else np.where(root >= 0.0, 0.0, np.nan)
     if a >= 0.0:
         return first, np.inf
-    return first, (b + root) / (-2.0 * a) if b >= 0.0 else 2.0 * c / (root - b)
+    return first, (b + root) / (-2.0 * a)
 
 
 def _impossible_fl(fls: Floats) -> bool:

@@ -326,7 +326,7 @@ class Checked:
         for caution in self.declaration.cautions:
             mask = self._looked_at(caution.when, arguments, len(outcome.good))
             for row in outcome.good[np.asarray(mask, np.bool_)]:
-                said[row].append(f"caution: {caution.text}")
+                said[row].append(f"{caution.label}: {caution.text}")
         if self.declaration.basis or self.declaration.basis_text:
             basis = messages.basis(self.declaration)
             for words in said:

@@ -64,6 +64,8 @@ class Caution:
 
     text: str
     when: Callable[..., Any]
+    label: str = "caution"
+    """The word before the text: another one where it only tells something, such as the rule that applied."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -116,7 +116,8 @@ def as_data(function: Function) -> dict[str, Any]:
         "source_mark": declaration.source.mark,
         "basis": declaration.basis,
         "no_answer": [n.text for n in declaration.no_answer],
-        "cautions": [c.text for c in declaration.cautions],
+        "cautions": [c.text for c in declaration.cautions if c.label == "caution"],
+        "told": [f"{c.label}: {c.text}" for c in declaration.cautions if c.label != "caution"],
         "twin": _twin(function),
         "notes": inspect.cleandoc(declaration.kernel.__doc__ or ""),
     }
@@ -160,7 +161,7 @@ def as_text(function: Function) -> str:
         if data.get(key):
             lines.append(f"{title}: {data[key]}")
     lines += [f"no answer where: {text}" for text in data.get("no_answer", ())]
-    lines += [f"caution: {text}" for text in data.get("cautions", ())]
+    lines += [*data.get("told", ()), *(f"caution: {text}" for text in data.get("cautions", ()))]
     return "\n".join(lines)
 
 
@@ -178,6 +179,7 @@ def _page_entry(function: Function) -> list[str]:
         if data.get(key):
             lines.append(f"{title}: {data[key]}.  ")
     lines += [f"- No answer: {text}" for text in data.get("no_answer", ())]
+    lines += [f"- {text[:1].upper()}{text[1:]}" for text in data.get("told", ())]
     lines += [f"- Caution: {text}" for text in data.get("cautions", ())]
     return [*lines, ""]
 

@@ -44,12 +44,13 @@ SOURCES: dict[str, Source] = {
                "(2010) 354-380, thermophysical properties of seawater", "L"),
         Source("ISO 2533", "ISO 2533:1975, standard atmosphere", "L"),
         Source("hydrostatics", "Pressure of a column of liquid at rest, with standard gravity 9.80665 m/s2", "C"),
-        Source("ISO 5167-2", "ISO 5167-2:2003, orifice plates, with the Reader-Harris/Gallagher equation as in the library "
-               "fluids; outside its range I. E. Idelchik, Handbook of Hydraulic Resistance, diagrams 4-14 and 4-15", "L"),
+        Source("ISO 5167-2", "ISO 5167-2:2003, orifice plates, with the Reader-Harris/Gallagher equation as in the "
+               "library fluids; outside its range I. E. Idelchik, Handbook of Hydraulic Resistance, diagrams 4-14 and "
+               "4-15", "L"),
         Source("vena contracta", "Derived: Bernoulli to the vena contracta, momentum after it; for a thin plate the "
                "loss ratio of ISO 5167-2", "C"),
-        Source("Kuroda 1978", "Kuroda, Fukuda and Cho, Trans. JSIDRE 1978 (78) 57-64, read in its abstract: the form of "
-               "the index is not stated there and is taken as downstream; size exponent from memory", "S"),
+        Source("Kuroda 1978", "Kuroda, Fukuda and Cho, Trans. JSIDRE 1978 (78) 57-64, read in its abstract: the form "
+               "of the index is not stated there and is taken as downstream; size exponent from memory", "S"),
         Source("annular plate", "Thin elastic plate with a hole under even pressure (Timoshenko and Woinowsky-Krieger, "
                "Theory of Plates and Shells), solved anew, Poisson's ratio 0.3", "C"),
         Source("SI brochure", "Exact unit definitions of the SI and of the international yard and pound; flow "

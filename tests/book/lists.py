@@ -1,4 +1,4 @@
-"""Small valve lists with LP_ formulas for the tests of recalculation: written by openpyxl, XlsxWriter, or as bare XML."""
+"""Small valve lists with LP_ formulas for the tests of recalculation: by openpyxl, XlsxWriter, or as bare XML."""
 
 from __future__ import annotations
 
@@ -162,9 +162,13 @@ def valves() -> dict[str, Any]:
     return places
 
 
-def bare(path: Path, cells_by_place: Mapping[str, str], *, parts: Mapping[str, bytes] | None = None, **more: Any) -> Path:
+def bare(
+    path: Path, cells_by_place: Mapping[str, str], *, parts: Mapping[str, bytes] | None = None, **more: Any
+) -> Path:
     """A book from bare XML: ``{"B2": '<f>A2*2</f><v>1</v>'}``; text before ``>`` are attributes of the cell."""
-    return makers.pack(path, {**makers.parts(**more), "xl/worksheets/sheet1.xml": rows(cells_by_place), **(parts or {})})
+    return makers.pack(
+        path, {**makers.parts(**more), "xl/worksheets/sheet1.xml": rows(cells_by_place), **(parts or {})}
+    )
 
 
 def rows(cells_by_place: Mapping[str, str]) -> bytes:

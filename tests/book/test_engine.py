@@ -48,6 +48,17 @@ def test_values_go_in_and_come_out_as_cells() -> None:
     assert isinstance(engine.value("List", 1, 1), float)
 
 
+def test_columns_go_in_and_come_out_like_rectangles() -> None:
+    engine = Engine.empty("List")
+    for given in ([1.0, -0.0, 2.5], [1.0, "x", None, True], [math.inf, 1.0], [1e308, 1e308], [CellError.NA, 2.0]):
+        engine.set_column("List", 2, 3, given)
+        last = 1 + len(given)
+        found = engine.column("List", 3, 2, last)
+        assert found == [line[0] for line in engine.values("List", 2, 3, last, 3)]
+        assert found == [CellError.NUM if cell == math.inf else cell for cell in given]
+        assert "-0.0" not in map(repr, found)
+
+
 def test_what_is_no_number_becomes_num_and_minus_zero_becomes_zero() -> None:
     engine = Engine.empty("List")
     engine.set_values("List", 1, 1, [[math.nan, math.inf, -0.0]])

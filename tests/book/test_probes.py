@@ -108,6 +108,12 @@ def test_a_let_name_hides_nothing_of_the_cure() -> None:
     assert _answer(prepare("=LET(x,0.1+0.2,IF(x=0.3,x-0.3,9))").text, helpers=True) == pytest.approx(0.1 + 0.2 - 0.3)
 
 
+def test_a_formula_that_would_grow_beyond_bounds_is_blocked() -> None:
+    assert blocking("=" + "MATCH(" * 3 + "A1" + ",B1:B9)" * 3) is None
+    assert "too long" in (blocking("=" + "MATCH(" * 60 + "A1" + ",B1:B9)" * 60) or "")
+    assert "too long" in (blocking("=" + "VALUE(" * 60 + "A1" + ")" * 60) or "")
+
+
 def test_an_error_goes_through_a_comparison_a_difference_and_a_text() -> None:
     for formula in ("=1/0=2", "=1/0-2", '=1/0&"x"', "=LEN(1/0)", "=UPPER(1/0)"):
         assert _answer(prepare(formula).text, helpers=True) == "#DIV/0!", formula

@@ -32,7 +32,9 @@ cell = st.one_of(
     st.sampled_from(["<v>1</v>", "<v>0</v>", 't="b"|<v>1</v>', 't="e"|<v>#N/A</v>', 't="e"|<v>#DIV/0!</v>', ""]),
     st.sampled_from(['t="inlineStr"|<is><t>n/a</t></is>', 't="inlineStr"|<is><t>xf</t></is>', 't="str"|<v></v>']),
 )
-literal = st.one_of(st.floats(0.1, 30).map(lambda x: repr(round(x, 2))), st.sampled_from(["-1", "5%", "0", "TRUE", '"x"', "#N/A"]))
+literal = st.one_of(
+    st.floats(0.1, 30).map(lambda x: repr(round(x, 2))), st.sampled_from(["-1", "5%", "0", "TRUE", '"x"', "#N/A"])
+)
 
 
 def _column_letters(place: int) -> tuple[str, ...]:
@@ -86,11 +88,21 @@ def rare(draw: st.DrawFn, place: int) -> str:
     """Formulas whose references the text does not tell, arrays, and names of nothing."""
     a, c = draw(expression(place, 1)), draw(call(place, 1))
     return draw(
-        st.sampled_from([
-            f'LP_MARGIN(INDIRECT("A{{r}}"),{a})', f"OFFSET(A$2,1,1)+{c}", "NOSUCH(A2)", f"{c}+NOSUCH(1)",
-            "LP_SIGMA(A$2:A$5,B$2:B$5,C$2:C$5)", f"SUM(LP_MARGIN(A$2:A$5,{a}))", f'IFERROR(INDIRECT("B{{r}}"),{c})',
-            'LP_WHY("LP_SIGMA",A{r},B{r},C{r})', f"LP_MARGIN({a},1)-{c}", "MAX(E$2:E$5)", "E{below}+1",
-        ])  # fmt: skip
+        st.sampled_from(
+            [
+                f'LP_MARGIN(INDIRECT("A{{r}}"),{a})',
+                f"OFFSET(A$2,1,1)+{c}",
+                "NOSUCH(A2)",
+                f"{c}+NOSUCH(1)",
+                "LP_SIGMA(A$2:A$5,B$2:B$5,C$2:C$5)",
+                f"SUM(LP_MARGIN(A$2:A$5,{a}))",
+                f'IFERROR(INDIRECT("B{{r}}"),{c})',
+                'LP_WHY("LP_SIGMA",A{r},B{r},C{r})',
+                f"LP_MARGIN({a},1)-{c}",
+                "MAX(E$2:E$5)",
+                "E{below}+1",
+            ]
+        )  # fmt: skip
     )
 
 

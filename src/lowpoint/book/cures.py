@@ -31,7 +31,7 @@ from .expression import (
     is_range,
     parse,
 )
-from .formulas import lp_name
+from .formulas import LONGEST, lp_name
 from .helpers import HELPERS, PREFIX
 from .kinds import kind_of, makes_array, scalar_places
 from .rules_text import ruled
@@ -173,7 +173,12 @@ class Writer:
 
     def call(self, call: Call) -> Piece:
         """A call, its arguments first; a rule of its name may write it anew."""
-        name = bare_name(call.name)
+        piece = self._call(call, bare_name(call.name))
+        if len(piece.text) > LONGEST:  # what is written twice at every level grows beyond all bounds
+            raise BlockedError("unreadable", "grows too long when it is made ready for the recalculator's engine")
+        return piece
+
+    def _call(self, call: Call, name: str) -> Piece:
         if name == "LET":
             return self._let(call)
         if name == "LAMBDA":

@@ -240,6 +240,12 @@ class Engine:
         """Set a rectangle of cells from its upper left corner."""
         self._book.set_values_batch(sheet, row, column, [[_from_cell(cell) for cell in line] for line in grid])
 
+    def set_column(self, sheet: str, row: int, column: int, cells: Sequence[Any]) -> None:
+        """Set cells of one column from a row downwards."""
+        plain = _all_plain(cells)
+        grid = [[cell] for cell in cells] if plain else [[_from_cell(cell)] for cell in cells]
+        self._book.set_values_batch(sheet, row, column, grid)
+
     def set_formulas(self, sheet: str, row: int, column: int, grid: Sequence[Sequence[str]]) -> None:
         """Set a rectangle of formulas, each with its ``=``."""
         self._book.set_formulas_batch(sheet, row, column, [list(line) for line in grid])
@@ -248,6 +254,13 @@ class Engine:
         """The values of a rectangle, corners included."""
         area = fz.RangeAddress(sheet, row1, column1, row2, column2)
         return [[_to_cell(cell) for cell in line] for line in self._book.sheet(sheet).get_values(area)]
+
+    def column(self, sheet: str, column: int, first: int, last: int) -> list[Any]:
+        """The values of one column, from the first row to the last."""
+        area = fz.RangeAddress(sheet, first, column, last, column)
+        cells = [line[0] for line in self._book.sheet(sheet).get_values(area)]
+        # Adding 0.0 makes 0 of -0, as everywhere here.
+        return [cell + 0.0 for cell in cells] if _all_plain(cells) else [_to_cell(cell) for cell in cells]
 
     def value(self, sheet: str, row: int, column: int) -> Any:
         """The value of one cell."""
@@ -306,6 +319,11 @@ class Engine:
                 "the workbook", f"must be evaluated within {self._seconds:g} s", "more", "Raise the limit or split it."
             )
         return BookError("the workbook", "must be evaluated by the engine", _short(trouble), "Please report it.")
+
+
+def _all_plain(cells: Sequence[Any]) -> bool:
+    """Whether all cells are finite numbers, which pass the border of the engine as they are."""
+    return set(map(type, cells)) == {float} and math.isfinite(sum(cells))
 
 
 def _config(seconds: float, date1904: bool) -> fz.WorkbookConfig:

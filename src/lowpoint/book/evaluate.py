@@ -20,6 +20,7 @@ if TYPE_CHECKING:
 __all__ = ["Run"]
 
 MOST_PASSES = 20
+_PLAIN = {float, str, bool, type(None)}
 
 Call = tuple[Entry, Site]
 
@@ -62,7 +63,7 @@ class Run:
             return self.results[own.number]
         rows = group.rows
         first = min(rows)
-        column = [row[0] for row in self.engine.values(group.sheet, first, group.column, max(rows), group.column)]
+        column = self.engine.column(group.sheet, group.column, first, max(rows))
         return column if len(column) == len(rows) and rows[0] == first else [column[r - first] for r in rows]
 
     def made(self, site: Site, row: int) -> bool:
@@ -160,7 +161,9 @@ class Run:
         if len(own) == 1 and own[0].group.rows == list(range(first, last + 1)):
             values = self.results[own[0].own.number] if own[0].own else []
         else:
-            values = [_vouched(row[0]) for row in self.engine.values(title, first, column, last, column)]
+            values = self.engine.column(title, column, first, last)
+            if not set(map(type, values)) <= _PLAIN:
+                values = [_vouched(value) for value in values]
             for entry in own:
                 _overlay(values, first, entry.group.rows, self.results[entry.own.number] if entry.own else [])
         self._columns[key] = values
@@ -174,7 +177,7 @@ class Run:
         elif not entry.needed:
             return
         for first, part in _runs(entry.group.rows, values):
-            self.engine.set_values(sheet, first, column, [[v] for v in part])
+            self.engine.set_column(sheet, first, column, part)
 
     def _note_failures(self, entry: Entry, site: Site, part: list[Any], columns: list[Any], begin: int) -> None:
         for i, (row, value) in enumerate(zip(entry.group.rows, part, strict=True)):
@@ -220,6 +223,8 @@ def _fixed(arg: Cells) -> bool:
 
 def _runs(rows: Sequence[int], values: Sequence[Any]) -> list[tuple[int, list[Any]]]:
     """Values in unbroken runs of rows: first row and values of each."""
+    if len(rows) == len(values) and list(rows) == list(range(rows[0], rows[0] + len(rows))):
+        return [(rows[0], list(values))]
     pairs = sorted(zip(rows, values, strict=True), key=lambda pair: pair[0])
     numbered = enumerate(pairs)
     parts = [[pair for _, pair in part] for _, part in groupby(numbered, key=lambda item: item[1][0] - item[0])]

@@ -8,7 +8,10 @@ from typing import Any
 
 from lowpoint.problems import CellError
 
-from .helping import WRONG, Grid, cells_of, collated, flipped, fold, grid_of, helper
+from .helping import WRONG, Grid, cells_of, collated, flipped, fold, grid_of, helper, number_of
+
+_MOST_ROWS = 1_048_576  # the rows of a worksheet
+_MOST_CELLS = 10_000_000
 
 
 def _matrix(value: Any) -> Any:
@@ -67,29 +70,45 @@ def _minverse(value: Any) -> Any:
     return (solved[1] or CellError.NUM) if isinstance(solved, tuple) else solved
 
 
+def _count(value: Any, default: int) -> int | CellError | Any:
+    """A number of rows or columns, or the error that it is; beyond a worksheet's rows is #NUM!."""
+    if isinstance(value, WRONG):
+        return value
+    number = None if isinstance(value, list) else number_of(value)
+    if number is None:
+        return CellError.VALUE
+    return int(number) or default if abs(number) <= _MOST_ROWS else CellError.NUM
+
+
 @helper
 def _expand(array: Any, rows: Any, columns: Any, pad: Any = CellError.NA) -> Any:
     grid = grid_of(array)
-    high, wide = int(rows or len(grid)), int(columns or len(grid[0]))
-    if high < len(grid) or wide < len(grid[0]):
-        return CellError.VALUE
+    high, wide = _count(rows, len(grid)), _count(columns, len(grid[0]))
+    for size in (high, wide):
+        if not isinstance(size, int):
+            return size
+    if high < len(grid) or wide < len(grid[0]) or high * wide > _MOST_CELLS:
+        return CellError.NUM if high * wide > _MOST_CELLS else CellError.VALUE
     lines = [line + [pad] * (wide - len(line)) for line in grid]
     return lines + [[pad] * wide for _ in range(high - len(grid))]
 
 
 @helper
 def _wraprows(vector: Any, count: Any, pad: Any = CellError.NA) -> Any:
-    cells, size = list(cells_of(vector)), int(count)
+    cells, size = list(cells_of(vector)), _count(count, 0)
+    if not isinstance(size, int):
+        return size
     if size < 1 or min(len(grid_of(vector)), len(grid_of(vector)[0])) > 1:
         return CellError.NUM if size < 1 else CellError.VALUE
-    cells += [pad] * (-len(cells) % size)
+    if size < len(cells):  # a single line is not filled up
+        cells += [pad] * (-len(cells) % size)
     return [cells[i : i + size] for i in range(0, len(cells), size)]
 
 
 @helper
 def _wrapcols(vector: Any, count: Any, pad: Any = CellError.NA) -> Any:
     lines = _wraprows(vector, count, pad)
-    return lines if isinstance(lines, CellError) else flipped(lines)
+    return flipped(lines) if isinstance(lines, list) else lines
 
 
 @helper

@@ -8,46 +8,78 @@ Source of the broadcasting: ISO/IEC 29500-1, 18.17; OASIS ODF 1.3 part 4 (array 
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from typing import Any
 
 from lowpoint.problems import CellError
 
-from .cures import prepare
+from .curing import cure, instance
 from .engine import Engine
-from .helping import HELPERS, PREFIX, WRONG, broadcast, cells_of
+from .formulas import Unreadable
+from .helpers import HELPERS, PREFIX, broadcast
+from .helping import WRONG, Grid, cells_of, grid_of
 from .kinds import scalar_places
 from .refs import column_letters
 
 __all__ = ["error_if", "lift", "register"]
 
 
+_KNOWN: dict[tuple[str, str], Grid] = {}  # results of late: the rows of a list often ask for the same
+_MOST = 32
+
+
 def lift(function: Any, *arguments: Any) -> Any:
     """The function for every combination of its single values; ranges elsewhere are passed whole."""
+    key = (function, repr(arguments))
+    if key not in _KNOWN:
+        if len(_KNOWN) >= _MOST:
+            _KNOWN.clear()
+        _KNOWN[key] = _lifted(function, arguments)
+    return _KNOWN[key]
+
+
+def _lifted(function: str, arguments: tuple[Any, ...]) -> Grid:
     places, _ = scalar_places(function, len(arguments))
     singles = broadcast([arguments[place] for place in places])
-    sheets = [f"R{place}" for place in range(len(arguments)) if place not in places]
-    engine = Engine.empty("A", *sheets)
-    texts = {}
-    for place, argument in enumerate(arguments):
-        if place not in places:
-            grid = argument if isinstance(argument, list) else [[argument]]
-            engine.set_values(f"R{place}", 1, 1, grid)
-            texts[place] = f"R{place}!$A$1:${column_letters(len(grid[0]))}${len(grid)}"
-    rows = [cells for line in singles for cells in line]
+    kinds = [[tuple((type(cell), cell) for cell in cells) for cells in line] for line in singles]
+    distinct = {
+        kind: cells for line, row in zip(kinds, singles, strict=True) for kind, cells in zip(line, row, strict=True)
+    }
+    found = dict(zip(distinct, _evaluated(function, arguments, places, list(distinct.values())), strict=True))
+    return [[found[kind] for kind in line] for line in kinds]
+
+
+def _evaluated(
+    function: str, arguments: tuple[Any, ...], places: Sequence[int], rows: list[tuple[Any, ...]]
+) -> list[Any]:
+    """The plain function of each row of single values, in a scratch book."""
+    wholes = {place: grid_of(given) for place, given in enumerate(arguments) if place not in places}
+    engine = Engine.empty("A", *(f"R{place}" for place in wholes))
+    for place, grid in wholes.items():
+        engine.set_values(f"R{place}", 1, 1, grid)
     engine.set_values("A", 1, 2, [list(cells) for cells in rows])
-    letters = {place: column_letters(2 + i) for i, place in enumerate(places)}
-    formulas = []
-    for row in range(1, len(rows) + 1):
-        written = ",".join(texts.get(place) or f"{letters[place]}{row}" for place in range(len(arguments)))
-        formulas.append([prepare(f"={function}({written})").text])
-    if any(PREFIX in formula for (formula,) in formulas):
+    written: list[str | int] = [f"{function}("]
+    for place in range(len(arguments)):
+        if place in wholes:
+            wide, high = len(wholes[place][0]), len(wholes[place])
+            written += [f"R{place}!$A$1:${column_letters(wide)}${high}", ","]
+        else:
+            written += [column_letters(2 + places.index(place)), 0, ","]
+    parts = _fit([*written[:-1], ")"], len(rows))
+    if any(PREFIX in part for part in parts if isinstance(part, str)):
         register(engine)
-    engine.set_formulas("A", 1, 1, formulas)
+    engine.set_formulas("A", 1, 1, [[f"={instance(parts, row)}"] for row in range(1, len(rows) + 1)])
     engine.evaluate()
-    found = [line[0] for line in engine.values("A", 1, 1, len(rows), 1)]
-    found = [CellError.VALUE if isinstance(cell, list) else cell for cell in found]
-    wide = len(singles[0])
-    return [found[i : i + wide] for i in range(0, len(found), wide)]
+    results = (line[0] for line in engine.values("A", 1, 1, len(rows), 1))
+    return [CellError.VALUE if isinstance(cell, list) else cell for cell in results]
+
+
+def _fit(parts: list[str | int], rows: int) -> list[str | int]:
+    """The formula of all rows, made fit for the engine where it needs to be; whether it may be was asked before."""
+    try:
+        return cure(parts, range(1, rows + 1)).parts
+    except Unreadable:
+        return parts
 
 
 def error_if(cells: Any, *pairs: Any) -> Any:

@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import Any
 
-from .refs import address
+from .refs import Area, address, column_letters
 from .report import Change
 from .sheet import Group, SheetPart, attribute
 from .spills import Spill, spill_edits
@@ -27,6 +27,10 @@ class Patched:
     unfed: list[Change] = field(default_factory=list)
     untouched: int = 0
 
+    def note(self, change: Change, fed: bool) -> None:
+        """Enter a changed cell where it belongs."""
+        (self.changed if fed or change.old is None else self.unfed).append(change)
+
 
 def patch_sheet(
     sheet: SheetPart,
@@ -38,62 +42,122 @@ def patch_sheet(
 ) -> Patched:
     """Put results into a sheet. ``values`` by group, in the order of its rows; ``kept`` cells (row, column) stay."""
     result = Patched()
-    edits: list[Edit] = []
-    running: dict[Group, Iterator[Any]] = {group: iter(found) for group, found in values.items()}
-    ranges = {(spill.row, spill.column): spill for spill in spills}
-    feeding = {group: fed(group) for group in values}
-    for i, group in enumerate(sheet.groups):
-        if group not in running:
-            continue
-        new, row, column = next(running[group]), sheet.rows[i], sheet.columns[i]
-        if kept and (row, column) in kept:
-            continue
-        cell = sheet.found.formula_cell.match(sheet.scanned, sheet.starts[i])
-        if cell is None:
-            raise AssertionError("a formula cell is not where it was found")
-        spill = ranges.get((row, column)) if ranges else None
-        if spill is not None and spill.old != spill.new:
-            edits.append(_new_range(cell, spill))
-        kind = attribute(cell[3], b"t") if b"t=" in cell[3] else b""
-        old = old_value(kind, cell[7], cell[8], strings)
-        if same(old, new, exact=feeding[group]):
-            result.untouched += 1
-            continue
-        edits += _value_edits(sheet, cell, kind, new)
-        change = Change(sheet.title, address(row, column), old, new)
-        (result.changed if feeding[group] or old is None else result.unfed).append(change)
-    if spills:
-        found, changes = spill_edits(sheet, spills, strings)
-        edits += found
-        for spill, change in changes:
-            (result.changed if spill.fed or change.old is None else result.unfed).append(change)
-    if edits:
-        result.data = sheet.encoded(_applied(sheet.data, edits))
+    found, spilled = spill_edits(sheet, spills, strings) if spills else ([], [])
+    out = _Output(sheet.data, sorted(found))
+    for edit in _formula_cells(sheet, values, fed, kept, spills, strings, result):
+        out.put(*edit)
+    if spilled:
+        for spill, change in spilled:
+            result.note(change, spill.fed)
+        for changes in (result.changed, result.unfed):
+            changes.sort(key=_by_row)
+    data = out.finished()
+    result.data = sheet.encoded(data) if data is not None else None
     return result
 
 
-def _new_range(cell: re.Match[bytes], spill: Spill) -> Edit:
-    a = spill.new
-    name = address(a.r1, a.c1) + ("" if (a.r1, a.c1) == (a.r2, a.c2) else f":{address(a.r2, a.c2)}")
-    return cell.start(4), cell.end(4), _RANGE.sub(lambda m: m[1] + name.encode(), cell[4], count=1)
+class _Output:
+    """The sheet's bytes while they are written anew: edits come in order, those known ``ahead`` are slipped in."""
+
+    def __init__(self, data: bytes, ahead: Sequence[Edit]) -> None:
+        self._data, self._view, self._ahead = data, memoryview(data), list(reversed(ahead))
+        self._out = bytearray()
+        self._begin = 0
+        self._any = bool(ahead)
+
+    def put(self, start: int, end: int, new: bytes) -> None:
+        """Replace the bytes from ``start`` to ``end``."""
+        while self._ahead and self._ahead[-1][0] <= start:
+            self._write(*self._ahead.pop())
+        self._write(start, end, new)
+
+    def _write(self, start: int, end: int, new: bytes) -> None:
+        self._any = True
+        self._out += self._view[self._begin : start]
+        self._out += new
+        self._begin = end
+
+    def finished(self) -> bytes | None:
+        """All bytes; None when there was no edit."""
+        while self._ahead:
+            self._write(*self._ahead.pop())
+        if not self._any:
+            return None
+        self._out += self._view[self._begin :]
+        return bytes(self._out)
 
 
-def _value_edits(sheet: SheetPart, cell: re.Match[bytes], kind: bytes, new: Any) -> Iterable[Edit]:
+def _formula_cells(
+    sheet: SheetPart,
+    values: Mapping[Group, Sequence[Any]],
+    fed: Callable[[Group], bool],
+    kept: set[tuple[int, int]],
+    spills: Sequence[Spill],
+    strings: Sequence[str],
+    result: Patched,
+) -> Iterator[Edit]:
+    """The edits of formula cells in file order; the changes into ``result``."""
+    ranges = {(spill.row, spill.column): spill.new for spill in spills if spill.old != spill.new}
+    running = {
+        group: (iter(found), fed(group), column_letters(group.column)) for group, found in values.items()
+    }  # fmt: skip
+    match, scanned, title = sheet.found.formula_cell.match, sheet.scanned, sheet.title
+    for start, row, column, group in zip(sheet.starts, sheet.rows, sheet.columns, sheet.groups, strict=True):
+        if group not in running:
+            continue
+        coming, feeding, letters = running[group]
+        new = next(coming)
+        if kept and (row, column) in kept:
+            continue
+        cell = match(scanned, start)
+        if cell is None:
+            raise AssertionError("a formula cell is not where it was found")
+        kind = attribute(cell[3], b"t") if b"t=" in cell[3] else b""
+        old = old_value(kind, cell[7], cell[8], strings)
+        area = ranges.get((row, column)) if ranges else None
+        if same(old, new, exact=feeding):
+            result.untouched += 1
+            if area is not None:
+                yield (*cell.span(4), _new_range(cell[4], area))
+            continue
+        result.note(Change(title, f"{letters}{row}", old, new), feeding)
+        yield _with_new_value(sheet, cell, kind, new, area)
+
+
+def _new_range(attributes: bytes, area: Area) -> bytes:
+    """A formula element's attributes with another range."""
+    name = address(area.r1, area.c1)
+    if (area.r1, area.c1) != (area.r2, area.c2):
+        name += f":{address(area.r2, area.c2)}"
+    return _RANGE.sub(lambda m: m[1] + name.encode(), attributes, count=1)
+
+
+def _with_new_value(sheet: SheetPart, cell: re.Match[bytes], kind: bytes, new: Any, area: Area | None) -> Edit:
+    """One edit that gives a formula cell its value, its type, and its array's range."""
+    data, (start, end) = sheet.data, cell.span()
     if b"<" in cell[8]:  # something stands after the value: an inline text that goes, an extension that stays
-        return [(cell.start(), cell.end(), with_value(sheet.data[cell.start() : cell.end()], sheet.prefix, new))]
+        whole = data[start:end]
+        if area is not None:
+            first, last = (place - start for place in cell.span(4))
+            whole = whole[:first] + _new_range(cell[4], area) + whole[last:]
+        return start, end, with_value(whole, sheet.prefix, new)
     wanted, element = value_element(sheet.prefix, new)
-    place = cell.span(6) if cell[6] is not None else (cell.start(8), cell.start(8))
-    edits = [(*place, element)]
+    first, last = cell.span(6) if cell[6] is not None else (cell.start(8), cell.start(8))
+    begin, place = first, first
+    parts: list[bytes] = []
     if wanted != kind or b"vm" in cell[3]:
-        edits.append((*cell.span(3), new_attributes(cell[3], wanted)))
-    return edits
+        begin, place = cell.span(3)
+        parts.append(new_attributes(cell[3], wanted))
+    if area is not None:
+        begin = min(begin, cell.start(4))
+        parts += (data[place : cell.start(4)] if parts else b"", _new_range(cell[4], area))
+        place = cell.end(4)
+    if parts:
+        parts += (data[place:first], element)
+        return begin, last, b"".join(parts)
+    return first, last, element
 
 
-def _applied(data: bytes, edits: list[Edit]) -> bytes:
-    edits.sort(key=lambda edit: edit[:2])
-    out: list[bytes] = []
-    begin = 0
-    for start, end, new in edits:
-        out += (data[begin:start], new)
-        begin = end
-    return b"".join((*out, data[begin:]))
+def _by_row(change: Change) -> tuple[int, int, str]:
+    letters = change.cell.rstrip("0123456789")
+    return int(change.cell[len(letters) :]), len(letters), letters

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import os
+import re
 import time
 from collections.abc import Iterator
 from functools import partial
@@ -25,6 +26,9 @@ from .stored import strings_of
 from .tables import tables_of
 
 __all__ = ["output_path", "recalculate"]
+
+_FORMULA = re.compile(rb"<(?:[\w.-]+:)?f[\s>]")
+_OURS = re.compile(r"(?<![A-Za-z0-9_])LPU?[_.][A-Za-z]|ORG\.LOWPOINT\.", re.IGNORECASE)
 
 PathLike = str | os.PathLike[str]
 
@@ -56,7 +60,7 @@ def recalculate(
     book = Book(package)
     outcome = _evaluated(book, report, per_cell)
     changed = _patched(book, outcome, report)
-    _warn(package, report, values, bool(changed))
+    _warn(book, report, values, bool(changed))
     if values:
         from .values import write_values_copy
 
@@ -180,8 +184,9 @@ def _all_values(outcome: Outcome) -> Iterator[tuple[tuple[str, int, int], Any]]:
             yield from (((sheet, row, column), spill.value(row, column)) for row, column in spill.cells())
 
 
-def _warn(package: Package, report: Report, values: bool, changed: bool) -> None:
+def _warn(book: Book, report: Report, values: bool, changed: bool) -> None:
     """What the reader of the report should know about the file."""
+    package = book.package
     if package.full_calc_on_load and not values:
         report.warnings.append(
             "the workbook tells programs to calculate everything anew when it is opened (fullCalcOnLoad): one without "
@@ -192,5 +197,8 @@ def _warn(package: Package, report: Report, values: bool, changed: bool) -> None
         report.warnings.append("the digital signature of the workbook does not survive the new values: sign it anew")
     if package.iterates:
         report.warnings.append("the workbook asks for iteration over circular references; such cells keep their values")
-    if not report.calls:
+    for sheet in package.sheets:
+        if sheet.kind in ("dialogsheet", "macrosheet") and _FORMULA.search(package.read(sheet.path)):
+            report.warnings.append(f"the sheet {sheet.title!r} is a {sheet.kind}, which is not recalculated")
+    if not report.calls and not any(_OURS.search(group.text) for group in book.groups):
         report.warnings.append("there is no LP_ function in this workbook")

@@ -93,7 +93,8 @@ class SheetPart:
         self.data, self.codec = _as_utf8(raw)
         self._check(book)
         # Comments and instructions are blanked in the copy that is scanned: every place stays where it is.
-        self.scanned = _COMMENT.sub(lambda m: b" " * len(m[0]), self.data)
+        noted = b"<!--" in self.data or self.data.rfind(b"<?") > 0
+        self.scanned = _COMMENT.sub(lambda m: b" " * len(m[0]), self.data) if noted else self.data
         root = _ROOT.search(self.scanned)
         self.prefix = root[1] + b":" if root and root[1] else b""
         self.found = cell_pattern(self.prefix)

@@ -11,18 +11,21 @@ _INCH, _FOOT, _YARD, _MILE, _NAUTICAL = 0.0254, 0.3048, 0.9144, 1609.344, 1852.0
 _POUND, _GRAVITY, _LITRE, _GALLON = 0.45359237, 9.80665, 1e-3, 3.785411784e-3
 _LENGTH = {"m": 1.0, "mi": _MILE, "Nmi": _NAUTICAL, "in": _INCH, "ft": _FOOT, "yd": _YARD, "ang": 1e-10}
 _LENGTH |= {"Pica": _INCH / 72, "Picapt": _INCH / 72, "pica": _INCH / 6, "ell": 45 * _INCH}
+_LENGTH |= {"survey_mi": 5280 * 1200 / 3937, "ly": 9460730472580800.0, "pc": 3.0856775814913673e16}
+_LENGTH |= {"parsec": _LENGTH["pc"]}
 _FAMILIES: dict[str, dict[str, float]] = {
     "length": _LENGTH,
     "mass": {
         "g": 1e-3, "lbm": _POUND, "ozm": _POUND / 16, "grain": _POUND / 7000, "stone": 14 * _POUND,
         "cwt": 100 * _POUND, "uk_cwt": 112 * _POUND, "ton": 2000 * _POUND, "uk_ton": 2240 * _POUND,
-        "sg": _POUND * _GRAVITY / _FOOT,
+        "sg": _POUND * _GRAVITY / _FOOT, "shweight": 100 * _POUND, "lcwt": 112 * _POUND, "hweight": 112 * _POUND,
+        "LTON": 2240 * _POUND, "brton": 2240 * _POUND, "u": 1.66053906660e-27,
     },
     "time": {
         "yr": 31557600.0, "day": 86400.0, "d": 86400.0, "hr": 3600.0, "mn": 60.0, "min": 60.0, "s": 1.0, "sec": 1.0,
     },
     "pressure": {
-        "Pa": 1.0, "p": 1.0, "atm": 101325.0, "at": 101325.0, "mmHg": 133.322, "Torr": 101325.0 / 760,
+        "Pa": 1.0, "p": 1.0, "atm": 101325.0, "at": 101325.0, "mmHg": 133.322387415, "Torr": 101325.0 / 760,
         "psi": _POUND * _GRAVITY / _INCH**2,
     },
     "force": {"N": 1.0, "dyn": 1e-5, "dy": 1e-5, "lbf": _POUND * _GRAVITY, "pond": _GRAVITY * 1e-3},
@@ -39,11 +42,15 @@ _FAMILIES: dict[str, dict[str, float]] = {
         "l": _LITRE, "L": _LITRE, "lt": _LITRE, "gal": _GALLON, "qt": _GALLON / 4, "pt": _GALLON / 8,
         "us_pt": _GALLON / 8, "cup": _GALLON / 16, "oz": _GALLON / 128, "tbs": _GALLON / 256, "tsp": _GALLON / 768,
         "tspm": 5e-6, "uk_gal": 4.54609e-3, "uk_qt": 4.54609e-3 / 4, "uk_pt": 4.54609e-3 / 8, "barrel": 42 * _GALLON,
+        "bushel": 2150.42 * _INCH**3, "regton": 100 * _FOOT**3, "GRT": 100 * _FOOT**3, "MTON": 40 * _FOOT**3,
     },
-    "area": {"ha": 1e4, "uk_acre": 4840 * _YARD**2, "us_acre": 4046.872609874252, "ar": 100.0},
+    "area": {"ha": 1e4, "uk_acre": 4840 * _YARD**2, "us_acre": 4046.872609874252, "ar": 100.0, "Morgen": 2500.0},
     "speed": {
         "m/s": 1.0, "m/sec": 1.0, "m/h": 1 / 3600, "m/hr": 1 / 3600, "mph": _MILE / 3600, "kn": _NAUTICAL / 3600,
+        "admkn": 6080 * _FOOT / 3600,
     },
+    "induction": {"T": 1.0, "ga": 1e-4},
+    "information": {"bit": 1.0, "byte": 8.0},
 }  # fmt: skip
 for _family, _power in (("area", 2), ("volume", 3)):
     for _unit in ("m", "mi", "Nmi", "in", "ft", "yd", "ang"):
@@ -55,7 +62,8 @@ _TEMPERATURES = {  # factor and offset to kelvin
     "C": (1.0, 273.15), "cel": (1.0, 273.15), "K": (1.0, 0.0), "kel": (1.0, 0.0), "F": (5 / 9, 459.67 * 5 / 9),
     "fah": (5 / 9, 459.67 * 5 / 9), "Rank": (5 / 9, 0.0), "Reau": (1.25, 273.15),
 }  # fmt: skip
-_METRICS = "m g s sec Pa p N J e c cal eV ev Wh wh W w PS l L lt m2 m^2 m3 m^3 m/s m/sec m/h m/hr ang dyn dy pond ar"
+_METRICS = "m g s sec Pa p N J e c cal eV ev Wh wh W w PS l L lt m2 m^2 m3 m^3 m/s m/sec m/h m/hr ang dyn dy pond ar "
+_METRICS += "T ga bit byte u pc ly"
 _METRIC = frozenset(_METRICS.split())
 _PREFIXES = {"Y": 24, "Z": 21, "E": 18, "P": 15, "T": 12, "G": 9, "M": 6, "k": 3, "h": 2, "e": 1, "da": 1, "d": -1}
 _PREFIXES |= {"c": -2, "m": -3, "u": -6, "n": -9, "p": -12, "f": -15, "a": -18, "z": -21, "y": -24}

@@ -3,36 +3,81 @@
 from __future__ import annotations
 
 import argparse
+import tempfile
 from pathlib import Path
 
 from lowpoint.errors import LowpointError
 
 __all__ = ["fill", "run"]
 
-KINDS = {"sheet": "a valve list with LP_ formulas, a few example rows and room for your own"}
+KINDS = {
+    "sheet": "a valve list with LP_ formulas: items, operating cases, limits, verdicts, summary, chart",
+    "list": "a plain list (not made by this version yet)",
+    "datasheet": "a vendor's data sheet (not made by this version yet)",
+}
+MADE = ("sheet",)
+NAMES = {False: "valves.xlsx", True: "valves-us.xlsx"}
+"""The default name, without and with --us."""
 
 
 def fill(parser: argparse.ArgumentParser) -> None:
-    parser.add_argument("kind", choices=KINDS, metavar="KIND", help="; ".join(f"{k}: {v}" for k, v in KINDS.items()))
-    parser.add_argument("-o", "--out", type=Path, metavar="OUT", help="the file to write (default: <KIND>.xlsx here)")
-    parser.add_argument("--us", action="store_true", help="US customary units (LPU_ functions)")
-    parser.add_argument("--json", action="store_true", help="one JSON value on standard output")
-    parser.epilog = "example: lowpoint starter sheet -o valves.xlsx"
+    add = parser.add_argument
+    add("kind", choices=KINDS, metavar="KIND", help="; ".join(f"{kind}: {what}" for kind, what in KINDS.items()))
+    add("-o", "--out", type=Path, metavar="OUT", help=f"the file to write, or its folder (default: {NAMES[False]})")
+    add("--us", action="store_true", help=f"US customary units, LPU_ functions (default name: {NAMES[True]})")
+    add("--overwrite", action="store_true", help="replace a file of that name")
+    add("--json", action="store_true", help="one JSON value on standard output")
+    parser.epilog = (
+        "example: lowpoint starter sheet -o valves.xlsx\n\n"
+        "The book is filled with the valves of an invented utility, some rows with planted mistakes; its sheet\n"
+        "'Read me' says how to make it your own."
+    )
 
 
 def run(options: argparse.Namespace) -> int:
-    from lowpoint.starter import write_sheet
-
-    out: Path = options.out or Path(f"{options.kind}.xlsx")
-    if out.exists():
-        raise LowpointError(str(out), "must not be there yet", "a file of that name", "Choose another name with -o.")
-    if not out.parent.is_dir():
-        raise LowpointError(str(out.parent), "must be a folder", "none", "Make it first.")
-    write_sheet(out, us=options.us)
+    if options.kind not in MADE:
+        raise LowpointError(
+            f"starter {options.kind}", f"is not made by this version yet; what there is: {', '.join(MADE)}",
+            remedy="Nothing was written.",
+        )  # fmt: skip
+    out = _target(options.out, us=options.us, overwrite=options.overwrite)
+    items, cases = _write(out, us=options.us)
     if options.json:
         import json
 
-        print(json.dumps({"out": str(out)}))
+        print(json.dumps({"out": str(out), "items": items, "cases": cases}))
     else:
-        print(f"wrote {out}; 'lowpoint recalc {out}' computes it without a spreadsheet program")
+        print(f"Written: {out}, {items} items with {cases} cases, computed. 'lowpoint recalc {out}' computes it anew.")
     return 0
+
+
+def _target(given: Path | None, *, us: bool, overwrite: bool) -> Path:
+    """Where the book goes; LowpointError where that is no place for it."""
+    out = given or Path(NAMES[us])
+    if out.is_dir():
+        out = out / NAMES[us]
+    if out.suffix.lower() != ".xlsx":
+        raise LowpointError(str(out), "the book must be named .xlsx", out.suffix or "no ending")
+    if not out.parent.is_dir():
+        raise LowpointError(str(out.parent), "must be a folder", "none of that name", "Make it first.")
+    if out.exists() and not overwrite:
+        must = "is there already and was left as it is"
+        raise LowpointError(str(out), must, remedy="Choose another name with -o, or ask for --overwrite.")
+    return out
+
+
+def _write(out: Path, *, us: bool) -> tuple[int, int]:
+    """Write the book with its values; how many items and cases it has. Nothing is left behind where that fails."""
+    from lowpoint.book.package import locked
+    from lowpoint.book.recalc import recalculate
+    from lowpoint.starter import sample, write_sheet
+
+    owner = locked(out)
+    if owner is not None:
+        raise LowpointError(str(out), f"is open: {owner} has it", remedy="Close it there, or choose another name.")
+    with tempfile.TemporaryDirectory(prefix="lowpoint-") as folder:
+        plain = Path(folder, out.name)
+        write_sheet(plain, us=us)
+        recalculate(plain, out)
+    items = sample(us=us).items
+    return len(items), sum(len(item.cases) for item in items)

@@ -195,6 +195,8 @@ def sound_speed(fluid: str, t: float, p: float | None) -> float:
 
 
 def _enthalpy(fluid: str, t: float, p: float) -> float:
+    if not is_liquid(fluid, t, p):
+        return math.nan
     # A saturated inlet is the commonest condensate case: there the enthalpy is that of the boiling liquid.
     saturated = p <= vapour_pressure(fluid, t) * (1.0 + SATURATED)
     return _of_liquid(fluid, t, None if saturated else p, lambda state: state.hmass())

@@ -17,7 +17,8 @@ POISSON = 0.3
 def _clamped(b: Any) -> Any:
     """``k`` of a plate with a clamped rim: the larger of the bending stresses at rim and bore; radii over the rim's.
 
-    From ``w' = q (r^3 - 2 b^2 (2 r ln r + r))/16D + C2/r + 2 C3 r`` with ``w'(1) = 0`` and no radial moment at the bore.
+    From ``w' = q (r^3 - 2 b^2 (2 r ln r + r))/16D + C2/r + 2 C3 r`` with ``w'(1) = 0`` and no radial moment at the
+    bore.
     """
     nu, b2 = POISSON, b * b
     load, slope = 1.0 / 16.0, -b2 / 8.0
@@ -57,8 +58,8 @@ def stress_factor(bore_ratio: Any, support: Any) -> Any:
                 lambda support: np.asarray(support == "clamped")),
         Caution("the plate is thicker than a quarter of its support's radius, where thin-plate theory overstates it",
                 lambda result, support_diameter: result > 0.125 * support_diameter),
-        Caution("for one hole in the middle; with many holes divide the stress by their ligament efficiency; the drop is "
-                "the largest of any case, blockage and start-up included; local codes rule",
+        Caution("for one hole in the middle; with many holes multiply the allowable stress by their ligament "
+                "efficiency; the drop is the largest of any case, blockage and start-up included; local codes rule",
                 lambda bore: np.ones(len(bore), np.bool_)),
     ),
 )  # fmt: skip
@@ -68,8 +69,8 @@ def plate_thickness(
 ) -> q.Thickness:  # fmt: skip
     """Thickness, ``t = a sqrt(k drop/stress) + allowance``, a half the support diameter (gasket mean).
 
-    Arrays of one length, SI. ``k`` for a simply supported or clamped rim and a free bore, Poisson's ratio 0.3. NaN where
-    the bore is not below the support, or the plate would be thicker than its support's radius.
+    Arrays of one length, SI. ``k`` for a simply supported or clamped rim and a free bore, Poisson's ratio 0.3. NaN
+    where the bore is not below the support, or the plate would be thicker than its support's radius.
     Source: theory of thin plates, solved anew.
     """
     ratio = np.where(bore < support_diameter, bore / support_diameter, np.nan)

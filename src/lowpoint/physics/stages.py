@@ -22,12 +22,15 @@ TOO_MANY = Caution(
     "more than 12 stages are needed: consider a valve with staged trim, or a higher back-pressure",
     lambda result: result > MOST,
 )
+_SPACING = "plates closer than 6 pipe diameters interact: their losses do not add up (common practice)"
 
 
 @function(
-    "STAGES", group="orifices", gives="least whole number of stages that keeps every stage at or above the target index",
-    source_key="definition", equation="ceil(ln((p1-pv)/(p2-pv))/ln(target/(target-1)))", any_unit=True,
-    must=(OUTLET, LIQUID), no_answer=(NoAnswer(f"the target {ABOVE_ONE}", lambda target, form: no_limit(target, form)),), cautions=(TOO_MANY,),
+    "STAGES", group="orifices", source_key="definition", any_unit=True,
+    gives="least whole number of stages that keeps every stage at or above the target index",
+    equation="ceil(ln((p1-pv)/(p2-pv))/ln(target/(target-1)))", must=(OUTLET, LIQUID),
+    no_answer=(NoAnswer(f"the target {ABOVE_ONE}", lambda target, form: no_limit(target, form)),),
+    cautions=(TOO_MANY, Caution(_SPACING, lambda result: result > 1.0)),
 )  # fmt: skip
 def stage_count(p1: q.P1, p2: q.P2, pv: q.PV, target: q.Target, form: q.Form = "upstream") -> q.Ratio:
     """Number of stages of equal index, ``n = ln((p1-pv)/(p2-pv))/ln(target/(target-1))`` rounded up.
@@ -37,7 +40,8 @@ def stage_count(p1: q.P1, p2: q.P2, pv: q.PV, target: q.Target, form: q.Form = "
     Source: identity of the definition: equal indices share the ratio of the pressures above pv.
     """
     sigma = upstream_limit(target, form)
-    return np.maximum(np.ceil(np.log((p1 - pv) / (p2 - pv)) / np.log(sigma / (sigma - 1.0)) - ROUNDING), 1.0)
+    # log1p: a high target needs many stages of nearly one pressure, and their number exactly.
+    return np.maximum(np.ceil(np.log((p1 - pv) / (p2 - pv)) / -np.log1p(-1.0 / sigma) - ROUNDING), 1.0)
 
 
 def _not_whole(stages: Any) -> Any:
@@ -50,7 +54,8 @@ def _not_whole(stages: Any) -> Any:
     equation="index p_i - pv = r (p_(i-1) - pv), r = ((p2-pv)/(p1-pv))^(1/n); drop p_i = p1 - i (p1-p2)/n",
     must=(OUTLET, LIQUID), no_answer=(NoAnswer("stages must be a whole number", _not_whole),),
     cautions=(Caution("equal drops leave the last stage with the lowest index: equal index is the better split",
-                      lambda stages, rule: np.asarray(rule == "drop") & (stages > 1)),),
+                      lambda stages, rule: np.asarray(rule == "drop") & (stages > 1.0)),
+              Caution(_SPACING, lambda stages: stages > 1.0)),
 )  # fmt: skip
 def stage_pressures(p1: q.P1, p2: q.P2, pv: q.PV, stages: q.Stages, rule: q.StageRule = "index") -> q.PressureColumn:
     """Pressures between stages, ``p_i - pv = (p1 - pv) ((p2-pv)/(p1-pv))^(i/n)`` for equal index.

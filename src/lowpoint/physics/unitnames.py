@@ -164,7 +164,7 @@ LISTED = (
 """The commonest units; any product or quotient of known words will do."""
 
 _REFERENCE = re.compile(
-    r"(?P<unit>.*[A-Za-z0-9])[ _.*-]?(?:[(\[] ?)?(?P<what>absolute|abs|a|gauge|ga|g)(?: ?[)\]])?\.?", re.IGNORECASE
+    r"(?P<unit>.*?[A-Za-z0-9])[ _.*-]?(?:[(\[] ?)?(?P<what>absolute|abs|a|gauge|ga|g)(?: ?[)\]])?\.?", re.IGNORECASE
 )
 _GAS = re.compile(r"[NS] ?m3\b.*|m+?scf.*|scf.*", re.IGNORECASE)
 _SPELLINGS = (

@@ -56,8 +56,9 @@ def put_headings(sheet: Any, row: int, heads: Sequence[Head], column: int = 1) -
     for place, head in enumerate(heads, start=column):
         cell = sheet.cell(row, place, head.text)
         style.heading(cell)
-        dimension = sheet.column_dimensions[get_column_letter(place)]
-        dimension.width = max(head.width, dimension.width if dimension.customWidth else 0.0)
+        letter = get_column_letter(place)
+        before = sheet.column_dimensions[letter].width if letter in sheet.column_dimensions else 0.0
+        sheet.column_dimensions[letter].width = max(head.width, before)
 
 
 def put_table(
@@ -75,4 +76,6 @@ def put_table(
             if place in typed:
                 cell.fill = style.fill("sand")
             cell.border = style.Border(bottom=style.THIN)
+            if head.fmt in ("text", "tag", "verdict"):
+                cell.alignment = style.INDENTED
     return row + 1

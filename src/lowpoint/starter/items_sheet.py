@@ -57,7 +57,7 @@ _NOTES = {
     "that verdict. incomplete: another case has no answer. no answer: no case has one.",
     "worst": "The case with the least margin.",
     "margin": "Index over the limit to keep, less one; at or below 0 it is crossed.",
-    "order": "The least margin of the item, with the place of its row in the 13th digit; empty where there is none.",
+    "order": "The least margin of the item, with a trace of its row number; empty where there is none.",
 }
 
 

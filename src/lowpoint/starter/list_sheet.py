@@ -118,7 +118,7 @@ def _write_cell(cell: Any, column: Column, value: Any, system: str) -> None:
     if column.is_input:
         cell.fill = style.fill("sand")
     if column.fmt in ("text", "tag", "verdict"):
-        cell.alignment = style.LEFT
+        cell.alignment = style.INDENTED
 
 
 def _mark(sheet: Any, last: int) -> None:

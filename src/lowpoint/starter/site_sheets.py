@@ -19,7 +19,7 @@ __all__ = ["write_site", "write_valves", "write_words"]
 
 _FIRST_AREA = 6
 _SPARE_AREAS = 5
-"""Rows below the last area that the names reach already."""
+"""Rows below the last area, ready for more."""
 
 
 def write_site(book: Any, plant: Plant) -> None:
@@ -34,9 +34,10 @@ def write_site(book: Any, plant: Plant) -> None:
     heads = [Head("Area", 24), Head(f"Elevation above sea level\n{size}", 15, "one"),
              Head(f"Atmosphere, absolute\n{bar}", 15, "fine")]  # fmt: skip
     last = _FIRST_AREA + len(plant.areas) - 1
+    named = [(area.name, area.elevation) for area in plant.areas] + [(None, None)] * _SPARE_AREAS
     rows = [
-        (area.name, area.elevation, spelled(f"=IF(ISBLANK(B{row}),NA(),LP_ATMOSPHERE(B{row}))", {}, plant.system))
-        for row, area in enumerate(plant.areas, start=_FIRST_AREA)
+        (*area, spelled(f'=IF(ISBLANK(A{row}),"",IF(ISBLANK(B{row}),NA(),LP_ATMOSPHERE(B{row})))', {}, plant.system))
+        for row, area in enumerate(named, start=_FIRST_AREA)
     ]
     put_table(sheet, _FIRST_AREA - 1, heads, rows, formats, typed=(0, 1))
     for column, name in ((1, "Site_area"), (3, "Site_atmosphere")):

@@ -7,13 +7,16 @@ from __future__ import annotations
 
 from typing import Any
 
+from openpyxl.chart.text import RichText, Text
+from openpyxl.chart.title import Title
+from openpyxl.drawing.text import CharacterProperties, Paragraph, ParagraphProperties, RegularTextRun
 from openpyxl.formatting.rule import FormulaRule
 from openpyxl.styles import Alignment, Border, Font, PatternFill, Side
 from openpyxl.styles.differential import DifferentialStyle
 from openpyxl.worksheet.page import PageMargins
 
-__all__ = ["BAND", "COLOURS", "FORMATS", "HEAD", "INPUT", "LEFT", "NOTE", "PLAIN", "SUBTITLE", "TITLE", "WRAP",
-           "fill", "font", "heading", "mark_errors", "mark_verdicts", "mark_word", "print_setup", "rule", "title"]  # fmt: skip
+__all__ = ["BAND", "COLOURS", "FORMATS", "HEAD", "INDENTED", "INPUT", "LEFT", "NOTE", "PLAIN", "SUBTITLE", "TITLE", "TOP", "WRAP",
+           "chart_title", "fill", "font", "heading", "mark_errors", "mark_verdicts", "mark_word", "print_setup", "rule", "title"]  # fmt: skip
 
 COLOURS = {
     "ink": "1D2B36",
@@ -48,7 +51,8 @@ PLAIN, INPUT = font(), font("typed")
 TITLE, SUBTITLE, NOTE = font("deep", 15, bold=True), font("mid", 10), font("quiet", 8, italic=True)
 HEAD, BAND = font("white", 9, bold=True), font("deep", 9, bold=True)
 LEFT = Alignment(horizontal="left", vertical="center")
-WRAP = Alignment(wrap_text=True, vertical="top")
+INDENTED = Alignment(horizontal="left", vertical="center", indent=1)
+WRAP, TOP = Alignment(wrap_text=True, vertical="top"), Alignment(vertical="top")
 CENTRE = Alignment(horizontal="center", vertical="center", wrap_text=True)
 THIN = Side(style="thin", color=COLOURS["line"])
 
@@ -73,6 +77,13 @@ def title(sheet: Any, text: str, subtitle: str) -> None:
     sheet["A1"].font, sheet["A2"].font = TITLE, SUBTITLE
     sheet.row_dimensions[1].height = 24
     sheet.sheet_view.showGridLines = False
+
+
+def chart_title(text: str) -> Any:
+    """A chart's title in the size of the book's headings."""
+    run = RegularTextRun(rPr=CharacterProperties(sz=1100, b=True, solidFill=COLOURS["deep"]), t=text)
+    paragraph = Paragraph(pPr=ParagraphProperties(defRPr=CharacterProperties(sz=1100, b=True)), r=[run])
+    return Title(tx=Text(rich=RichText(p=[paragraph])), overlay=False)
 
 
 def heading(cell: Any) -> None:

@@ -45,6 +45,7 @@ _VERDICT = (
     ("{regime}", 'LP_WHY("LP_REGIME",{sigma},{incipient},{constant},{damage},,{choked})'),
     ("{margin}", 'IF(ISERROR({limit}),"the limit to keep must be one of incipient, constant, damage, choked",'
      'LP_WHY("LP_MARGIN",{sigma},{limit}))'),
+    ("{allowed_drop}", 'LP_WHY("LP_ALLOWED_DROP",{p1},{pv},{limit})'),
     ("{vapour}", 'LP_WHY("LP_FLASH",{fluid},{t},{p1},{p2})'),
 )  # fmt: skip
 

@@ -1,0 +1,108 @@
+"""The way from a method of the add-in to its function: in the office's own Python, or through a helper process."""
+
+from __future__ import annotations
+
+import sys
+import threading
+import time
+from collections.abc import Callable
+from pathlib import Path
+from typing import Any
+
+from .helper import Helper, HelperError
+from .journal import Journal
+from .settings import FILE, LOG, REMEDY, Settings, SettingsError
+from .values import CRASHED
+
+__all__ = ["Link"]
+
+PAUSE = 10.0
+"""Seconds until something that cannot work (no settings, no package) is tried again."""
+
+Call = Callable[[tuple[Any, ...]], Any]
+
+
+class Link:
+    """Made once in the office; ``folder`` holds settings and log, ``version`` and ``fingerprint`` are the add-in's."""
+
+    def __init__(self, folder: Path, version: str, fingerprint: str) -> None:
+        self.journal = Journal(folder / LOG)
+        self.calls: dict[str, Call] = {}
+        self._folder = folder
+        self._made_for = (version, fingerprint)
+        self._problem = ""
+        self._retry = 0.0
+        self._lock = threading.Lock()
+
+    def call(self, name: str, arguments: tuple[Any, ...]) -> Any:
+        """One call: never raises. A crash is #VALUE! here and a sentence in the log."""
+        try:
+            answer = self.calls.get(name) or self._connect(name)
+            if answer is None:
+                return self._refusal(name)
+            return answer(arguments)
+        except HelperError as died:
+            self.journal.write(str(died))
+            if died.lasting:
+                self._give_up(str(died))
+        except Exception as bug:
+            self.journal.write(f"{name}: {type(bug).__name__}: {bug}")
+        return CRASHED
+
+    def _refusal(self, name: str) -> Any:
+        """Nothing is computed with the wrong package, or none: the cell shows #VALUE!, LP_WHY the reason."""
+        return self._problem if name == "LP_WHY" else CRASHED
+
+    def _give_up(self, sentence: str) -> None:
+        self.calls.clear()
+        self._problem, self._retry = sentence, time.monotonic() + PAUSE
+        self.journal.write(sentence)
+
+    def _connect(self, name: str) -> Call | None:
+        """Find the functions, at the first call and a while after a failure."""
+        with self._lock:
+            if name not in self.calls and time.monotonic() >= self._retry:
+                try:
+                    self._open(Settings.read(self._folder / FILE))
+                except (SettingsError, HelperError) as problem:
+                    self._give_up(str(problem))
+            return self.calls.get(name)
+
+    def _open(self, settings: Settings) -> None:
+        if settings.mode == "auto" and settings.release == sys.version_info[:2]:
+            try:
+                return self._open_here(settings)
+            except ImportError as missing:
+                self.journal.write(f"Lowpoint cannot be loaded into the office ({missing}); a helper process is used.")
+        helper = Helper(settings)
+        helper.start()
+        self._check(helper.greeting, settings)
+        self.calls = {name: _through(helper, name, self._lock) for name in helper.greeting["names"]}
+
+    def _open_here(self, settings: Settings) -> None:
+        # At the end: the office's own modules stay the first to be found.
+        sys.path += [path for path in settings.paths if path not in sys.path]
+        from lowpoint.faces.calc_addin import answers
+
+        self._check(answers.greeting(), settings)
+        self.calls = answers.calls()
+
+    def _check(self, greeting: dict[str, Any], settings: Settings) -> None:
+        """The add-in and the package must be of one making: arguments could have changed their places."""
+        version, fingerprint = self._made_for
+        if (greeting["version"], greeting["fingerprint"]) == self._made_for:
+            return
+        other = greeting["version"] if greeting["version"] != version else f"another {version}"
+        raise HelperError(
+            f"The add-in was made by Lowpoint {version}, but the package of {settings.python} is {other}; "
+            f"nothing is computed. {REMEDY}",
+            lasting=True,
+        )
+
+
+def _through(helper: Helper, name: str, lock: threading.Lock) -> Call:
+    def call(arguments: tuple[Any, ...]) -> Any:
+        with lock:
+            return helper.call(name, arguments)
+
+    return call

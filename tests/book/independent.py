@@ -32,7 +32,12 @@ def water(t: float, p: float) -> tuple[float, float]:
 
 
 def sea_water(t: float, p: float, salinity: float) -> tuple[float, float]:
-    """Vapour pressure (bar), by the osmotic coefficient, and density of sea water of a salinity in g/kg, IAPWS-08."""
+    """Vapour pressure (bar), by the osmotic coefficient, and density of sea water of a salinity in g/kg, IAPWS-08.
+
+    ValueError above 80 C, where those equations end.
+    """
+    if t > 79.8:
+        raise ValueError(f"{t} C is beyond IAPWS-08")
     share = salinity / 1000.0
     state = SeaWater(T=t + 273.15, P=p / 10.0, S=share)
     molality = share / (1.0 - share) / SALT
@@ -71,8 +76,8 @@ def flow(c: float, row: Mapping[str, float]) -> float:
 
 
 def coefficient(row: Mapping[str, float]) -> float:
-    """The Kv at which the flow equation gives the flow wanted; the flow rises with Kv."""
-    return bisect(lambda c: flow(c, row) - row["flow"], 1e-4, 1e6)
+    """The Kv at which the flow equation gives the flow wanted; the flow rises with Kv, here up to Kv/d^2 = 0.06."""
+    return bisect(lambda c: flow(c, row) - row["flow"], 1e-4, 0.06 * row["d"] ** 2)
 
 
 def scaled(limit: float, row: Mapping[str, float]) -> float:

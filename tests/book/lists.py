@@ -182,7 +182,7 @@ def cells_xml(cells_by_place: Mapping[str, str]) -> str:
     for place, inside in cells_by_place.items():
         found = area(place)
         assert found
-        head, mark, body = inside.rpartition("|")
+        head, mark, body = ("", "", inside) if inside.startswith("<") else inside.partition("|")
         name = f"{column_letters(found.c1)}{found.r1}"
         cell = f'<c r="{name}"{" " + head if mark else ""}>{body}</c>'
         by_row.setdefault(found.r1, []).append((found.c1, cell))

@@ -2,15 +2,18 @@
 
 from __future__ import annotations
 
+import inspect
 import math
+import random
 from typing import Any
 
 import pytest
 
+from lowpoint.book.cures import prepare
 from lowpoint.book.curing import Blocked, cure, instance
-from lowpoint.book.engine import Unrefreshable
+from lowpoint.book.engine import Engine, Unrefreshable
 from lowpoint.book.helpers import HELPERS, broadcast
-from lowpoint.book.lifting import error_if, lift
+from lowpoint.book.lifting import error_if, lift, register
 from lowpoint.book.unitwords import convert
 from lowpoint.problems import CellError
 
@@ -173,3 +176,47 @@ def test_a_cure_serves_all_rows_and_says_what_it_meets() -> None:
     with pytest.raises(Blocked, match="LAMBDA") as stop:
         cure(["LAMBDA(x,x)(A", 0, ")"], [5, 6])
     assert stop.value.met == ("lambda",)
+
+
+_JUNK: list[Any] = [0.0, 1.0, -1.0, 2.5, 1e300, -1e300, 1e9, "", "x", "TRUE", "12", "1,234", "13:45", True, False, None]
+_JUNK += [CellError.NA, _MARK, "é"]
+# How many arguments a helper takes; those that only get what the rules write (a literal number) are not tried.
+_COUNTS = {"SORTBY": (2, 5), "TEXTBEFORE": (2, 6), "TEXTAFTER": (2, 6)}
+_WRITTEN = {"SCIENTIFIC", "AGGREGATE"}
+
+
+def _cells(value: Any) -> list[Any]:
+    return [cell for line in value for cell in line] if isinstance(value, list) else [value]
+
+
+@pytest.mark.parametrize("name", sorted(set(HELPERS) - _WRITTEN))
+def test_no_argument_makes_a_helper_fail(name: str) -> None:
+    rolls = random.Random(name)
+    parameters = inspect.signature(HELPERS[name]).parameters.values()
+    needed = sum(p.default is p.empty and p.kind is not p.VAR_POSITIONAL for p in parameters)
+    least, most = _COUNTS.get(name, (max(1, needed), len(parameters) + 2 * (needed < len(parameters) == 1)))
+
+    def argument() -> Any:
+        if rolls.random() < 0.6:
+            return rolls.choice(_JUNK)
+        wide = rolls.randint(1, 3)
+        return [[rolls.choice(_JUNK) for _ in range(wide)] for _ in range(rolls.randint(1, 3))]
+
+    for _ in range(300):
+        given = [argument() for _ in range(rolls.randint(least, most))]
+        for cell in _cells(_call(name, *given)):
+            assert cell is None or isinstance(cell, (float, str, bool, Unrefreshable)), (given, cell)
+
+
+def test_a_helper_that_fails_costs_only_its_own_cell(monkeypatch: pytest.MonkeyPatch) -> None:
+    def broken(value: Any) -> Any:
+        raise ValueError(value)
+
+    monkeypatch.setitem(HELPERS, "TRIM", broken)
+    engine = Engine.empty("List")
+    register(engine)
+    engine.set_formulas("List", 1, 1, [[prepare("=TRIM(5)").text, "=1+1"]])
+    engine.evaluate()
+    failed, fine = engine.values("List", 1, 1, 1, 2)[0]
+    assert isinstance(failed, Unrefreshable)
+    assert fine == 2.0

@@ -42,6 +42,7 @@ NO_ANSWER: list[tuple[str, list[Any], str]] = [
     ("LP_SOUND_SPEED", ["water", 120.0, 1.5], "boils at this temperature and pressure"),
     ("LP_SOUND_SPEED", ["sea water", 20.0, 0.01], "boils at this temperature and pressure"),
     ("LP_SOUND_SPEED", ["sea water", 31.0], "from 2 to 30 C"),
+    ("LP_SOUND_SPEED", ["sea water", 50.0, 0.1225], "from 2 to 30 C"),  # water would boil here, sea water does not
     ("LP_SOUND_SPEED", ["sea water", 1.0, 5.0], "from 2 to 30 C"),
     ("LP_SATURATION_TEMPERATURE", ["water", 0.006], "below the vapour pressure at the freezing point"),
     ("LP_SATURATION_TEMPERATURE", ["water", 221.0], "above the critical pressure"),
@@ -137,7 +138,11 @@ def test_salt_lowers_the_vapour_pressure_and_a_blank_is_35() -> None:
     given = [call("LP_VAPOUR_PRESSURE", ["sea water", 20.0, s]) for s in (0.0, 10.0, 35.0, 120.0)]
     assert given == sorted(given, reverse=True)
     assert given[0] == call("LP_VAPOUR_PRESSURE", ["water", 20.0])
-    assert given[2] == call("LP_VAPOUR_PRESSURE", ["sea water", 20.0, None]) == call("LP_VAPOUR_PRESSURE", ["sea water", 20.0])
+    assert (
+        given[2]
+        == call("LP_VAPOUR_PRESSURE", ["sea water", 20.0, None])
+        == call("LP_VAPOUR_PRESSURE", ["sea water", 20.0])
+    )
 
 
 @pytest.mark.parametrize("fluid", ["water", "sea water"])
@@ -161,11 +166,20 @@ def test_the_critical_point_itself() -> None:
 
 def test_close_to_saturation_the_liquid_is_found() -> None:
     """Just above and, within 0.01 %, just below the vapour pressure."""
-    for fluid, t in (("water", 20.0), ("water", 180.0), ("propane", 40.0), ("ammonia", 0.0), ("pure propylene glycol", -30.0)):
+    for fluid, t in (
+        ("water", 20.0),
+        ("water", 180.0),
+        ("propane", 40.0),
+        ("ammonia", 0.0),
+        ("pure propylene glycol", -30.0),
+    ):
         pv = functions["LP_VAPOUR_PRESSURE"](fluid, t)
         saturated = functions["LP_DENSITY"](fluid, t)
         for off in (-9e-5, -1e-6, 0.0, 1e-9, 1e-7, 1e-6, 3e-6, 1e-5, 1e-4):
-            assert functions["LP_DENSITY"](fluid, t, pv * (1.0 + off)) == pytest.approx(saturated, rel=1e-5), (fluid, off)
+            assert functions["LP_DENSITY"](fluid, t, pv * (1.0 + off)) == pytest.approx(saturated, rel=1e-5), (
+                fluid,
+                off,
+            )
         assert np.isnan(functions["LP_DENSITY"](fluid, t, pv * (1.0 - 2e-4)))
 
 

@@ -84,8 +84,9 @@ def test_the_table_is_whole() -> None:
 
 ALIASES = {
     # Common practice: what the lists of a plant call these liquids.
-    "water": ["steam condensate", "Boiler feed water", "BFW", "demin water", "Demineralised  Water", "DEMINERALIZED WATER",
-              "cooling-water", "H2O", "H\N{SUBSCRIPT TWO}O", "district heating water", "condensate", "potable water"],
+    "water": ["steam condensate", "Boiler feed water", "BFW", "demin water", "Demineralised  Water",
+              "DEMINERALIZED WATER", "cooling-water", "H2O", "H\N{SUBSCRIPT TWO}O", "district heating water",
+              "condensate", "potable water", "  water" + 80 * " "],
     "sea water": ["seawater", "Sea-Water", "SEA WATER", "salt water"],
     "brine": ["reject brine", "desalination brine"],
     "propane": ["Propane", "R290", "C3H8", "R-290", "n-propane", "liquid propane"],
@@ -159,8 +160,10 @@ def test_a_pure_liquid_without_an_equation_is_asked_for_pv(fluid: str) -> None:
     assert "give pv" in said
 
 
-@pytest.mark.parametrize(("word", "pure"), [("propylene glycol", "pure propylene glycol"), ("PG", "pure propylene glycol"),
-                                            ("HCl", "pure HCl")])  # fmt: skip
+@pytest.mark.parametrize(
+    ("word", "pure"),
+    [("propylene glycol", "pure propylene glycol"), ("PG", "pure propylene glycol"), ("HCl", "pure HCl")],
+)
 def test_a_name_for_both_a_substance_and_its_solution(word: str, pure: str) -> None:
     assert call("LP_VAPOUR_PRESSURE", [word, 20.0]) is CellError.VALUE
     assert f"'{pure}'" in reason("LP_VAPOUR_PRESSURE", [word, 20.0])

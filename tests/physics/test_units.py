@@ -74,7 +74,8 @@ def test_what_is_unclear_is_refused_with_the_reason(unit: str, words: str) -> No
 HOSTILE = [
     "9**9**9**9", "10**10**10**10", "m**99999999", "m^9^9^9", "__import__('os').system('x')", "1e400", "lambda: 0",
     "(" * 40, "m" + "(" * 30, "a*" * 19 + "a", "/" * 40, "m/" * 20, " " * 40, "\x00", "\n", "bar\x00g", "%s%s%s", "{0}",
-    "=1+1", "m" * 100_000, "m*" * 100_000, "\N{GREEK CAPITAL LETTER OMEGA}", "\u202ebar", "0", "1", "-", "g g", "10 bar",
+    "=1+1", "m" * 100_000, "m*" * 100_000, "\N{GREEK CAPITAL LETTER OMEGA}", "\u202ebar", "0", "1", "-", "g g",
+    "10 bar",
     "bar/", "/bar", "bar//s", "m3/h g", "m0", "m9", "Nm3" * 13, "degree_Celsius", "delta_degC", "dB", "pH", "rad",
     "coulomb", "bar+g", "bar;g", "'bar'",
 ]  # fmt: skip

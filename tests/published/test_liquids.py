@@ -106,7 +106,9 @@ def _atmosphere(row: Row) -> float:
 CHECKS: dict[str, Callable[[Row], float]] = {
     "IF97 region 4 psat": lambda row: _psat(_celsius(row)) / 1e6,
     # At the boiling temperature of the table the vapour pressure is the table's pressure.
-    "IF97 region 4 Tsat": lambda row: functions["LP_SATURATION_TEMPERATURE"]("water", row.inputs["P_MPa"] * 10) + KELVIN,
+    "IF97 region 4 Tsat": lambda row: (
+        functions["LP_SATURATION_TEMPERATURE"]("water", row.inputs["P_MPa"] * 10) + KELVIN
+    ),
     "IAPWS-95 psat": lambda row: _psat(_celsius(row)) / 1e6,
     "IAPWS-95 rho liquid sat": lambda row: functions["LP_DENSITY"]("water", _celsius(row)),
     "IAPWS-95 rho vapour sat": lambda row: _vapour_density(_celsius(row)),
@@ -168,7 +170,13 @@ def test_known_values() -> None:
     assert functions["LP_VISCOSITY"]("water", 20.0, 1.01325) == pytest.approx(1.0016, rel=1e-4)
     assert functions["LP_SOUND_SPEED"]("water", 20.0, 1.01325) == pytest.approx(1482.34, rel=1e-4)
     # From memory: boiling points at 1 atm: propane -42.1, n-hexane 68.7, ammonia -33.3, methanol 64.7 C.
-    for fluid, boils in (("propane", -42.1), ("n-hexane", 68.7), ("ammonia", -33.3), ("methanol", 64.5), ("water", 100.0)):
+    for fluid, boils in (
+        ("propane", -42.1),
+        ("n-hexane", 68.7),
+        ("ammonia", -33.3),
+        ("methanol", 64.5),
+        ("water", 100.0),
+    ):
         assert functions["LP_SATURATION_TEMPERATURE"](fluid, 1.01325) == pytest.approx(boils, abs=0.15), fluid
     # From memory: critical pressure of water 220.64 bar (IAPWS), of ammonia 113.3, of propane 42.5.
     for fluid, critical in (("water", 220.64), ("ammonia", 113.3), ("propane", 42.5)):

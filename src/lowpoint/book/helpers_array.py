@@ -70,23 +70,28 @@ def _minverse(value: Any) -> Any:
     return (solved[1] or CellError.NUM) if isinstance(solved, tuple) else solved
 
 
-def _count(value: Any, default: int) -> int | CellError | Any:
-    """A number of rows or columns, or the error that it is; beyond a worksheet's rows is #NUM!."""
-    if isinstance(value, WRONG):
-        return value
-    number = None if isinstance(value, list) else number_of(value)
-    if number is None:
-        return CellError.VALUE
-    return int(number) or default if abs(number) <= _MOST_ROWS else CellError.NUM
+def _wrong_count(*values: Any) -> Any:
+    """The error that a number of rows or columns is; beyond a worksheet's rows is #NUM!, None where all are right."""
+    for value in values:
+        if isinstance(value, WRONG):
+            return value
+        number = None if isinstance(value, list) else number_of(value)
+        if number is None or abs(number) > _MOST_ROWS:
+            return CellError.VALUE if number is None else CellError.NUM
+    return None
+
+
+def _count(value: Any) -> int:
+    return int(number_of(value) or 0.0)
 
 
 @helper
 def _expand(array: Any, rows: Any, columns: Any, pad: Any = CellError.NA) -> Any:
     grid = grid_of(array)
-    high, wide = _count(rows, len(grid)), _count(columns, len(grid[0]))
-    for size in (high, wide):
-        if not isinstance(size, int):
-            return size
+    wrong = _wrong_count(rows, columns)
+    if wrong is not None or isinstance(pad, list):
+        return wrong or CellError.VALUE
+    high, wide = _count(rows) or len(grid), _count(columns) or len(grid[0])
     if high < len(grid) or wide < len(grid[0]) or high * wide > _MOST_CELLS:
         return CellError.NUM if high * wide > _MOST_CELLS else CellError.VALUE
     lines = [line + [pad] * (wide - len(line)) for line in grid]
@@ -95,9 +100,10 @@ def _expand(array: Any, rows: Any, columns: Any, pad: Any = CellError.NA) -> Any
 
 @helper
 def _wraprows(vector: Any, count: Any, pad: Any = CellError.NA) -> Any:
-    cells, size = list(cells_of(vector)), _count(count, 0)
-    if not isinstance(size, int):
-        return size
+    wrong, cells = _wrong_count(count), list(cells_of(vector))
+    if wrong is not None or isinstance(pad, list):
+        return wrong or CellError.VALUE
+    size = _count(count)
     if size < 1 or min(len(grid_of(vector)), len(grid_of(vector)[0])) > 1:
         return CellError.NUM if size < 1 else CellError.VALUE
     if size < len(cells):  # a single line is not filled up

@@ -6,14 +6,17 @@ from typing import Any
 
 from lowpoint.problems import CellError
 
-from .helping import WRONG, cells_of, collated, fold, grid_of, helper
+from .helping import WRONG, Grid, cells_of, collated, flipped, fold, grid_of, helper, number_of
 
 
 @helper
 def _xlookup(wanted: Any, keys: Any, results: Any, missing: Any, mode: Any, search: Any = 1.0) -> Any:
     """XLOOKUP with the next smaller (-1) or next larger (1) key; the keys need no order."""
-    if isinstance(wanted, WRONG):
-        return wanted
+    wrong = next((given for given in (wanted, mode, search) if isinstance(given, WRONG)), None)
+    if wrong is not None:
+        return wrong
+    if mode not in (-1.0, 0.0, 1.0) or search not in (-2.0, -1.0, 1.0, 2.0) or isinstance(wanted, list):
+        return CellError.VALUE
     cells = list(cells_of(keys))
     order = range(len(cells)) if search > 0 else range(len(cells) - 1, -1, -1)
     place = next((i for i in order if fold(cells[i]) == fold(wanted)), None)
@@ -24,7 +27,12 @@ def _xlookup(wanted: Any, keys: Any, results: Any, missing: Any, mode: Any, sear
     if place is None:
         return missing
     grid = grid_of(results)
-    line = grid[place : place + 1] if len(grid_of(keys)) > 1 or len(grid) == len(cells) else [[r[place]] for r in grid]
+    if len(cells) not in (len(grid), len(grid[0])):
+        return CellError.VALUE
+    down = len(grid_of(keys)) > 1 or len(grid) == len(cells)
+    if down and place >= len(grid):
+        return CellError.VALUE
+    line = [grid[place]] if down else [[row[place]] for row in grid]
     return line[0][0] if len(line) == 1 and len(line[0]) == 1 else line
 
 
@@ -56,8 +64,8 @@ def _halved(wanted: Any, cells: list[Any]) -> int | None:
 
 def _nearest(wanted: Any, cells: list[Any]) -> Any:
     """The place of an approximate match, counted from 1, or the error."""
-    if isinstance(wanted, WRONG):
-        return wanted
+    if isinstance(wanted, (list, *WRONG)):
+        return CellError.VALUE if isinstance(wanted, list) else wanted
     place = _halved(0.0 if wanted is None else wanted, cells)
     return CellError.NA if place is None else float(place + 1)
 
@@ -71,26 +79,34 @@ def _match(wanted: Any, keys: Any) -> Any:
 def _lookup(wanted: Any, keys: Any, results: Any = None) -> Any:
     """LOOKUP: in a vector, or in the first row or column of a table (the longer side) with the answer in the last."""
     grid = grid_of(keys)
-    across = len(grid[0]) > len(grid)
     if results is None and min(len(grid), len(grid[0])) > 1:
-        keys = grid[0] if across else [line[0] for line in grid]
-        results = [grid[-1] if across else [line[-1] for line in grid]]
-    place = _nearest(wanted, list(cells_of(keys if isinstance(keys, list) and isinstance(keys[0], list) else [keys])))
+        lines = flipped(grid) if len(grid[0]) > len(grid) else grid
+        searched, found = [line[0] for line in lines], [line[-1] for line in lines]
+    else:
+        searched = list(cells_of(keys))
+        found = searched if results is None else list(cells_of(results))
+    place = _nearest(wanted, searched)
     if not isinstance(place, float):
         return place
-    found = list(cells_of(keys if results is None else results))
     return found[int(place) - 1] if place <= len(found) else CellError.NA
 
 
 @helper
 def _vlookup(wanted: Any, table: Any, column: Any) -> Any:
-    grid = grid_of(table)
-    place = _nearest(wanted, [line[0] for line in grid])
-    return grid[int(place) - 1][int(column) - 1] if isinstance(place, float) else place
+    return _beside(wanted, flipped(grid_of(table)), column)
 
 
 @helper
 def _hlookup(wanted: Any, table: Any, row: Any) -> Any:
-    grid = grid_of(table)
-    place = _nearest(wanted, grid[0])
-    return grid[int(row) - 1][int(place) - 1] if isinstance(place, float) else place
+    return _beside(wanted, grid_of(table), row)
+
+
+def _beside(wanted: Any, lines: Grid, which: Any) -> Any:
+    """What stands in the asked-for line where the first line has the nearest key."""
+    number = None if isinstance(which, (list, *WRONG)) else number_of(which)
+    place = _nearest(wanted, lines[0])
+    if number is None or not isinstance(place, float):
+        return which if isinstance(which, WRONG) else CellError.VALUE if number is None else place
+    if not 1 <= number < len(lines) + 1:
+        return CellError.VALUE if number < 1 else CellError.REF
+    return lines[int(number) - 1][int(place) - 1]

@@ -13,6 +13,8 @@ from .engine import Unrefreshable
 from .helping import WRONG, cells_of, each, grid_of, helper, number_of, text_of
 from .unitwords import convert
 
+_MOST_ROWS = 1_048_576
+
 
 @each
 def _int(value: Any) -> Any:
@@ -95,7 +97,7 @@ def _whole(arguments: tuple[Any, ...], combine: Callable[..., int]) -> Any:
         number = None if isinstance(cell, bool) else number_of(cell)
         if number is None:
             return CellError.VALUE
-        if number < 0:
+        if not 0 <= number < 2**53:
             return CellError.NUM
         if cell is not None:
             numbers.append(int(number))
@@ -162,8 +164,8 @@ def _aggregate(function: Any, option: Any, array: Any, place: Any) -> Any:
     numbers = _sorted_numbers(array, option == 6.0)
     wrong = next((cell for cell in (numbers, place) if isinstance(cell, WRONG)), None)
     at = None if wrong is not None else number_of(place)
-    if at is None:
-        return wrong or CellError.VALUE
+    if at is None or abs(at) > _MOST_ROWS:
+        return wrong or (CellError.VALUE if at is None else CellError.NUM)
     if function not in (14.0, 15.0):
         return _quantile(numbers, at if function in (16.0, 18.0) else int(at) / 4.0, function < 18.0)
     rank = math.ceil(at)

@@ -133,9 +133,10 @@ def _cut(
 ) -> Any:
     """The text and where the delimiter that TEXTBEFORE and TEXTAFTER mean stands in it, or their other answer."""
     wrong = next((cell for cell in (text, *cells_of(marks), which, folded, ends) if isinstance(cell, WRONG)), None)
-    if wrong is not None or not which:
+    number = None if wrong is not None or isinstance(which, list) else number_of(which)
+    if number is None or abs(number) < 1 or isinstance(text, list):
         return wrong or CellError.VALUE
-    whole, place = text_of(text), int(which)
+    whole, place = text_of(text), int(number)
     cuts = _cuts(whole, marks, folded)
     if place < 0:
         cuts.reverse()

@@ -8,13 +8,13 @@ Source of the broadcasting: ISO/IEC 29500-1, 18.17; OASIS ODF 1.3 part 4 (array 
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from typing import Any
 
 from lowpoint.problems import CellError
 
 from .curing import cure, instance
-from .engine import Engine
+from .engine import Engine, Unrefreshable
 from .formulas import Unreadable
 from .helpers import HELPERS, PREFIX, broadcast
 from .helping import WRONG, Grid, cells_of, grid_of
@@ -102,7 +102,17 @@ def error_if(cells: Any, *pairs: Any) -> Any:
 
 def register(engine: Engine) -> None:
     """Make every helper a function of the book; prepared formulas call them as ``LOWPOINT.NAME``."""
-    for name, function in HELPERS.items():
-        engine.register(PREFIX + name, function)
-    engine.register(PREFIX + "LIFT", lift)
-    engine.register(PREFIX + "ERRORIF", error_if)
+    for name, function in {**HELPERS, "LIFT": lift, "ERRORIF": error_if}.items():
+        engine.register(PREFIX + name, _guarded(function))
+
+
+def _guarded(function: Callable[..., Any]) -> Callable[..., Any]:
+    """A helper that fails costs its own cell the refreshing, not the whole recalculation."""
+
+    def guarded(*arguments: Any) -> Any:
+        try:
+            return function(*arguments)
+        except (ArithmeticError, LookupError, TypeError, ValueError, MemoryError) as trouble:
+            return Unrefreshable(f"could not be worked out ({type(trouble).__name__}); please report it", "missing")
+
+    return guarded

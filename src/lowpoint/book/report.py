@@ -116,7 +116,9 @@ class Report:
             yield f"{_many(len(self.kept), 'cell')} could not be refreshed and kept the old value:"
             yield from _cut([f"{_at(k.sheet, k.cell)}  {k.reason}" for k in self.kept], limit)
         if self.unfed:
-            yield f"{_many(len(self.unfed), 'cell')} changed although no LP_ call feeds them (look at these):"
+            one = len(self.unfed) == 1
+            them, these = ("it", "this") if one else ("them", "these")
+            yield f"{_many(len(self.unfed), 'cell')} changed although no LP_ call feeds {them} (look at {these}):"
             yield from _cut([f"{_at(c.sheet, c.cell)}  {_said(c.old)} -> {_said(c.new)}" for c in self.unfed], limit)
         for warning in self.warnings:
             yield f"Note: {warning}"

@@ -111,7 +111,7 @@ class SheetPart:
         return list(dict.fromkeys(self.groups))
 
     def _check(self, book: str) -> None:
-        parser = expat.ParserCreate()
+        parser = expat.ParserCreate("utf-8")  # what was in another encoding has been put into this one
         try:
             parser.Parse(self.data, True)
         except expat.ExpatError as problem:

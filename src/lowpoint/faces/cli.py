@@ -20,6 +20,7 @@ COMMANDS = {
     "recalc": "recompute the LP_ functions of workbooks, and all that depends on them, without a spreadsheet program",
     "starter": "write a book to begin with",
     "functions": "the reference of the worksheet functions",
+    "calc": "the add-in that puts the LP_ functions into the cells of LibreOffice Calc",
 }
 """Each command with its one line of help; its module in this package has ``fill(parser)`` and ``run(options)``."""
 

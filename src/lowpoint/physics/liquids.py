@@ -29,9 +29,8 @@ WATER_LIKE = "water"
 
 
 def _names(fluid: Any, rows: int) -> Iterable[str]:
-    return (
-        repeat(fluid, rows) if isinstance(fluid, str) else repeat(fluid[0], rows) if len(fluid) == 1 else fluid.tolist()
-    )
+    names = [fluid] if isinstance(fluid, str) else fluid.tolist()
+    return repeat(names[0], rows) if len(names) == 1 else names
 
 
 def _numbers(x: Any, rows: int) -> Iterable[float | None]:

@@ -76,9 +76,10 @@ def is_salty(name: str) -> bool:
 
 def resolve(text: str) -> str:
     """The canonical name of a liquid whose properties are known; ValueError with the sentence for any other."""
+    text = " ".join(text.split())
     entry = _by_spelling().get(_folded(text)) if len(text) <= LONGEST else None
     if entry is None:
-        raise ValueError(_unknown(" ".join(text.split())))
+        raise ValueError(_unknown(text))
     if entry.kind == "mixture":
         raise ValueError(f"fluid '{text}' is a mixture whose vapour pressure depends on its composition: {GIVE_PV}")
     if entry.kind == "ambiguous":

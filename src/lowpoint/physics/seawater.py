@@ -21,7 +21,7 @@ __all__ = [
 ]
 
 T_LOW, T_HIGH = 273.15, 393.15
-"""K, the range of the correlations for density and viscosity."""
+"""K, the range of use: what density and viscosity would do to 180 C, the vapour pressure does to 120 C."""
 
 _R = 8.314472
 _M_WATER = 18.015268e-3

@@ -37,7 +37,7 @@ def write(book: Any, plant: Plant) -> None:
              Head("Place in the list (working)", 13, "whole")]  # fmt: skip
     put_table(sheet, _HEAD, heads, [_line(place) for place in range(1, CASES + 1)], formats)
     sheet.row_dimensions[_HEAD].height = 40
-    note = "#N/A: no such limit is given, or there are fewer cases; the chart leaves it out."
+    note = "A limit that is not given shows #N/A, and so do lines for which there is no case: the chart leaves them out."
     sheet.cell(FIRST_ROW + CASES, 1, note).font = style.NOTE
     area = f"A{FIRST_ROW}:J{FIRST_ROW + CASES - 1}"
     sheet.conditional_formatting.add(area, style.rule(f"ISERROR(A{FIRST_ROW})", ink="quiet"))

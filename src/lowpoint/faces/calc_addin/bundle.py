@@ -21,12 +21,14 @@ _LONG_AGO = (1980, 1, 1, 0, 0, 0)
 
 
 def bundle() -> bytes:
-    """The bytes of the extension; equal registries of one version give equal bytes."""
+    """The bytes of the extension; equal registries of one version give equal bytes.
+
+    Nothing is compressed: what a compressor gives depends on its version.
+    """
     sink = io.BytesIO()
-    with zipfile.ZipFile(sink, "w", zipfile.ZIP_DEFLATED) as archive:
+    with zipfile.ZipFile(sink, "w", zipfile.ZIP_STORED) as archive:
         for name, content in sorted(_parts().items(), key=lambda item: (item[0] != "META-INF/manifest.xml", item[0])):
             member = zipfile.ZipInfo(name, _LONG_AGO)
-            member.compress_type = zipfile.ZIP_DEFLATED
             member.external_attr = 0o644 << 16
             member.create_system = 3  # the same on every system, so that the bytes are
             archive.writestr(member, content)

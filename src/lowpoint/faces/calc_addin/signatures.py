@@ -42,8 +42,8 @@ class Signature:
 
 
 def signatures() -> list[Signature]:
-    """Every function of the registry, in its order."""
-    return [_signature(function) for function in functions.values()]
+    """Every function of the registry, by name: its own order depends on which module was imported first."""
+    return [_signature(functions[name]) for name in sorted(functions)]
 
 
 def methods() -> list[Method]:
@@ -53,7 +53,7 @@ def methods() -> list[Method]:
 
 def fingerprint() -> str:
     """Names and argument orders in one word: two sets of functions with one word are called alike."""
-    calls = "\n".join(f"{f.name}({', '.join(p.name for p in f.parameters)})" for f in functions.values())
+    calls = "\n".join(sorted(f"{f.name}({', '.join(p.name for p in f.parameters)})" for f in functions.values()))
     return hashlib.sha256(calls.encode()).hexdigest()[:16]
 
 

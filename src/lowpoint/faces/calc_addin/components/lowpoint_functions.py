@@ -2,26 +2,27 @@
 
 from __future__ import annotations
 
-from pathlib import Path
+from functools import lru_cache
 from typing import Any
 
 import uno
 import unohelper
 from com.sun.star.lang import XServiceInfo
-from lowpoint_office.generated import FINGERPRINT, METHODS, VERSION
-from lowpoint_office.link import Link
-from lowpoint_office.settings import FOLDER
+from com.sun.star.sheet import ResultEvent, XVolatileResult
+from lowpoint_office.generated import METHODS
+from lowpoint_office.link import shared_link
 from org.lowpoint import XFunctions  # found through the extension's own type library
 
 IMPLEMENTATION = "org.lowpoint.FunctionsImplementation"
 SERVICE = "org.lowpoint.Functions"
+KEPT = 1024
 
 
 class Functions(unohelper.Base, XServiceInfo, XFunctions):
     """One object serves every cell; its methods are added below, from the list made with the add-in."""
 
     def __init__(self, context: Any, *arguments: Any) -> None:
-        self.link = Link(_folder(context), VERSION, FINGERPRINT)
+        self.link = shared_link(context)
 
     def getImplementationName(self) -> str:  # noqa: N802
         return IMPLEMENTATION
@@ -33,15 +34,32 @@ class Functions(unohelper.Base, XServiceInfo, XFunctions):
         return (SERVICE,)
 
 
-def _folder(context: Any) -> Path:
-    """Where this profile keeps the add-in's settings and log."""
-    paths = context.ServiceManager.createInstanceWithContext("com.sun.star.util.PathSubstitution", context)
-    return Path(uno.fileUrlToSystemPath(paths.substituteVariables("$(user)", True))) / FOLDER
+class Rows(unohelper.Base, XVolatileResult):
+    """An answer of several cells. Left to itself the bridge makes a sequence of sequences of rows, which Calc does
+    not take; the event of a volatile result may say the type that it does take. This result never changes."""
+
+    def __init__(self, rows: tuple[tuple[Any, ...], ...]) -> None:
+        self.event = ResultEvent()
+        self.event.Source = self
+        self.event.Value = uno.Any("[][]any", rows)
+
+    def addResultListener(self, listener: Any) -> None:  # noqa: N802
+        listener.modified(self.event)
+
+    def removeResultListener(self, listener: Any) -> None:  # noqa: N802
+        """Nothing is kept of a listener."""
+
+
+@lru_cache(KEPT)
+def _rows(rows: tuple[tuple[Any, ...], ...]) -> Rows:
+    """Equal answers share one result: Calc keeps a listener for each that it ever saw."""
+    return Rows(rows)
 
 
 def _method(name: str) -> Any:
     def method(self: Functions, *arguments: Any) -> Any:
-        return self.link.call(name, arguments)
+        answer = self.link.call(name, arguments)
+        return _rows(answer) if type(answer) is tuple else answer
 
     return method
 

@@ -8,6 +8,7 @@ import subprocess
 import tempfile
 import threading
 import time
+from collections.abc import Callable
 from contextlib import suppress
 from typing import Any
 
@@ -19,6 +20,8 @@ __all__ = ["Helper", "HelperError"]
 MODULE = "lowpoint.faces.calc_addin.serve"
 STARTING, ANSWERING = 60.0, 30.0
 """Seconds that a helper may take to start, and for one call; then it is ended."""
+MOST_DEATHS = 3
+"""After so many in a row without an answer between them nothing is started for a while."""
 
 
 class HelperError(Exception):
@@ -30,10 +33,15 @@ class HelperError(Exception):
 
 
 class Helper:
-    """One process, started with the first call and again after it died; lines of JSON go over its pipes."""
+    """One process, started with the first call and again after it died; lines of JSON go over its pipes.
 
-    def __init__(self, settings: Settings) -> None:
+    ``check`` looks at what each new process says of itself, and raises HelperError where that will not do.
+    """
+
+    def __init__(self, settings: Settings, check: Callable[[dict[str, Any]], None]) -> None:
         self._settings = settings
+        self._check = check
+        self._deaths = 0
         self._process: subprocess.Popen[bytes] | None = None
         self._complaints: Any = None
         self._until = 0.0
@@ -62,6 +70,11 @@ class Helper:
             sentence = f"The Python at {self._settings.python} cannot load Lowpoint ({said}). {REMEDY}"
             self.stop()
             raise HelperError(sentence, True) from None
+        try:
+            self._check(self.greeting)
+        except HelperError:
+            self.stop()
+            raise
 
     def call(self, name: str, arguments: tuple[Any, ...]) -> Any:
         """The answer to one call, as the office takes it."""
@@ -72,10 +85,9 @@ class Helper:
             self._process.stdin.write(json.dumps([name, arguments]).encode() + b"\n")
             self._process.stdin.flush()
             answer = self._receive(ANSWERING)
-        except OSError:
+        except (OSError, HelperError):
             raise self._died(name) from None
-        except HelperError:
-            raise self._died(name) from None
+        self._deaths = 0
         if "bug" in answer:
             raise HelperError(f"{name}: {answer['bug']}")
         return from_line(answer["value"])
@@ -123,7 +135,12 @@ class Helper:
     def _died(self, name: str) -> HelperError:
         said = self._last_complaint()
         self.stop()
-        return HelperError(f"The helper process ended during a call of {name} ({said}); the next call starts another.")
+        self._deaths += 1
+        what = f"The helper process ended during a call of {name} ({said})"
+        if self._deaths < MOST_DEATHS:
+            return HelperError(f"{what}; the next call starts another.")
+        self._deaths = 0
+        return HelperError(f"{what}, as others before it; nothing is computed for some seconds.", True)
 
     def _last_complaint(self) -> str:
         """The last line the process wrote to its standard error, or how it ended."""

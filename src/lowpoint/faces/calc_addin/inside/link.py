@@ -11,10 +11,13 @@ from typing import Any
 
 from .helper import Helper, HelperError
 from .journal import Journal
-from .settings import FILE, LOG, REMEDY, Settings, SettingsError
+from .settings import FILE, FOLDER, LOG, REMEDY, Settings, SettingsError
 from .values import CRASHED
 
-__all__ = ["Link"]
+__all__ = ["PLAIN_NAMES", "Link", "shared_link"]
+
+PLAIN_NAMES = "plain names"
+"""Called like a function, with the path of a saved book."""
 
 PAUSE = 10.0
 """Seconds until something that cannot work (no settings, no package) is tried again."""
@@ -45,6 +48,7 @@ class Link:
             self.journal.write(str(died))
             if died.lasting:
                 self._give_up(str(died))
+                return self._refusal(name)
         except Exception as bug:
             self.journal.write(f"{name}: {type(bug).__name__}: {bug}")
         return CRASHED
@@ -74,9 +78,8 @@ class Link:
                 return self._open_here(settings)
             except ImportError as missing:
                 self.journal.write(f"Lowpoint cannot be loaded into the office ({missing}); a helper process is used.")
-        helper = Helper(settings)
+        helper = Helper(settings, lambda greeting: self._check(greeting, settings))
         helper.start()
-        self._check(helper.greeting, settings)
         self.calls = {name: _through(helper, name, self._lock) for name in helper.greeting["names"]}
 
     def _open_here(self, settings: Settings) -> None:
@@ -98,6 +101,22 @@ class Link:
             f"nothing is computed. {REMEDY}",
             lasting=True,
         )
+
+
+_shared: list[Link] = []
+
+
+def shared_link(context: Any) -> Link:
+    """The one link of this office, which its components share; settings and log are in its profile."""
+    import uno
+
+    from .generated import FINGERPRINT, VERSION
+
+    if not _shared:
+        paths = context.ServiceManager.createInstanceWithContext("com.sun.star.util.PathSubstitution", context)
+        user = uno.fileUrlToSystemPath(paths.substituteVariables("$(user)", True))
+        _shared.append(Link(Path(user) / FOLDER, VERSION, FINGERPRINT))
+    return _shared[0]
 
 
 def _through(helper: Helper, name: str, lock: threading.Lock) -> Call:

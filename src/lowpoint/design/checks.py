@@ -1,0 +1,137 @@
+"""Inputs that check themselves: each field is annotated with its quantity, whose bounds, unit and remedy are used."""
+
+from __future__ import annotations
+
+import typing
+from functools import cache
+from typing import Any, ClassVar, Self
+
+import numpy as np
+
+from lowpoint.errors import LowpointError
+from lowpoint.quantities import Quantity
+from lowpoint.units import SYSTEMS, Unit, dimension
+
+__all__ = ["Inputs", "told"]
+
+
+@cache
+def _kinds(cls: type) -> dict[str, tuple[Quantity, bool]]:
+    """Each number field with its quantity, and whether it may be left out."""
+    found = {}
+    for name, hint in typing.get_type_hints(cls, include_extras=True).items():
+        for option in (hint, *typing.get_args(hint)):
+            for extra in getattr(option, "__metadata__", ()):
+                if isinstance(extra, Quantity):
+                    found[name] = (extra, option is not hint)
+    return found
+
+
+def told(value: float, kind: str, system: str = "metric") -> str:
+    """An SI value in the user's unit of its dimension, six significant digits."""
+    unit = dimension(kind).unit(system)
+    return f"{unit.from_si(float(value)):.6g} {unit.label}".rstrip()
+
+
+class Inputs:
+    """A frozen dataclass whose fields are numbers (floats) or columns of them (arrays of one length), in SI.
+
+    ``system`` is the set of units, ``metric`` or ``us``, that messages are told in. Every fault raises
+    :class:`~lowpoint.errors.LowpointError` with what must be, what came, and a remedy.
+    """
+
+    columns: ClassVar[bool] = False
+    """Do the fields hold a number a case, instead of one?"""
+    subject: ClassVar[str] = "input"
+    system: str
+
+    @classmethod
+    def in_units(cls, system: str = "metric", **values: Any) -> Self:
+        """The same inputs from user units: bar, m3/h, mm, mPa.s, Kv, MPa, or those of the set ``us``."""
+        kinds = _kinds(cls)
+        for name, value in values.items():
+            if name in kinds and value is not None:
+                unit = dimension(kinds[name][0].dimension).unit(_known(cls.subject, system))
+                values[name] = unit.to_si(_numbers(cls.subject, name, value, unit))  # type: ignore[arg-type]
+        return cls(system=system, **values)
+
+    def __post_init__(self) -> None:
+        _known(self.subject, self.system)
+        for name, (kind, optional) in _kinds(type(self)).items():
+            value = getattr(self, name)
+            if value is None and optional:
+                continue
+            self._set(name, self._checked(name, value, kind))
+
+    def _set(self, name: str, value: Any) -> None:
+        object.__setattr__(self, name, value)
+
+    def _where(self, row: int) -> str:
+        """The subject of a complaint about one row."""
+        return f"{self.subject}, case {row + 1}" if self.columns else self.subject
+
+    def _checked(self, name: str, value: Any, kind: Quantity) -> Any:
+        unit = dimension(kind.dimension).unit(self.system)
+        if value is None:
+            raise LowpointError(self.subject, f"{name} ({kind.meaning}) must be given", "nothing", kind.remedy)
+        numbers = np.atleast_1d(_numbers(self.subject, name, value, unit))
+        if numbers.ndim > 1 or not (self.columns or numbers.size == 1) or not numbers.size:
+            shape = "one number or a list of them" if self.columns else "one number"
+            raise LowpointError(self.subject, f"{name} must be {shape}", f"{numbers.size} numbers")
+        relation, bad = _beyond(numbers, kind, self.system)
+        if bad.any():
+            row = int(np.argmax(bad))
+            got = f"{unit.from_si(float(numbers[row])):.6g} {unit.label}".rstrip()
+            raise LowpointError(self._where(row), f"{name} must be {relation}", got, kind.remedy)
+        return numbers if self.columns else float(numbers[0])
+
+    def _spread(self, name: str, count: int) -> Any:
+        value = getattr(self, name)
+        if len(value) not in (1, count):
+            must = f"{name} must have one value, or one for each of the {count} cases"
+            raise LowpointError(self.subject, must, f"{len(value)} values")
+        return np.broadcast_to(value, (count,)).copy()
+
+    def _word(self, name: str, words: tuple[str, ...]) -> None:
+        if getattr(self, name) not in words:
+            raise LowpointError(self.subject, f"{name} must be one of {', '.join(words)}", repr(getattr(self, name)))
+
+    def _below(self, low: str, small: Any, high: str, large: Any, kind: str, remedy: str) -> None:
+        """One value must lie below another, row by row."""
+        for row, (a, b) in enumerate(zip(*np.broadcast_arrays(small, large), strict=True)):
+            if not a < b:
+                words = f"{low} must be below {high} = {told(b, kind, self.system)}"
+                raise LowpointError(self._where(row), words, told(a, kind, self.system), remedy)
+
+
+def _known(subject: str, system: str) -> str:
+    if system not in SYSTEMS:
+        raise LowpointError(subject, f"the set of units must be one of {', '.join(SYSTEMS)}", repr(system))
+    return system
+
+
+def _numbers(subject: str, name: str, value: Any, unit: Unit) -> Any:
+    try:
+        return np.asarray(value, np.float64)
+    except (TypeError, ValueError):
+        must = f"{name} must be a number" + (f" in {unit.label}" if unit.label else "")
+        raise LowpointError(subject, must, repr(value)) from None
+
+
+def _beyond(numbers: Any, kind: Quantity, system: str) -> tuple[str, Any]:
+    """The bound that is broken, in words, and where it is; the first kind of fault found."""
+    metric, mine = dimension(kind.dimension).metric, dimension(kind.dimension).unit(system)
+    us = system == "us" and kind.us_low is not None
+    low_unit, low = (mine, float(kind.us_low)) if us else (metric, kind.low)  # type: ignore[arg-type]
+    bounds = []
+    for unit, limit, closed, side in (
+        (low_unit, low, kind.closed_low, -1.0), (metric, kind.high, kind.closed_high, 1.0)
+    ):  # fmt: skip
+        if np.isfinite(limit):
+            words = {(-1.0, True): "at least", (-1.0, False): "above", (1.0, True): "at most", (1.0, False): "below"}
+            si = unit.to_si(limit)
+            past = side * (numbers - si)
+            shown = f"{words[side, closed]} {mine.from_si(si):.6g} {mine.label}".rstrip()
+            bounds.append((shown, past > 0.0 if closed else past >= 0.0))
+    bounds.append(("a finite number", ~np.isfinite(numbers)))
+    return next(((words, bad) for words, bad in reversed(bounds) if bad.any()), ("", np.zeros(1, np.bool_)))

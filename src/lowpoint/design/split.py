@@ -1,0 +1,161 @@
+"""The split of a drop over plates so that every plate has the same margin to its own limit.
+
+Plates later in a set have larger bores and so higher limits: equal indices would leave the last with the least margin.
+With the drop of a plate ``dp(bore) = K x`` and its limit ``L(bore)`` the conditions for one margin m are::
+
+    head_(i-1) = (1 + m) L(bore_i) dp(bore_i)      head_i = head_(i-1) - dp(bore_i)      head_n = p2 - base
+
+with ``head = p - pv`` for the incipient and constant limits; for choking ``head = p - FF pv`` and ``L = 1/FL^2``, which
+is the same condition. A root search in the logarithms of the n bores and of 1 + m, from the split of equal index.
+Source: derived from the definition of the index.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+
+from lowpoint.design.cases import Cases
+from lowpoint.errors import LowpointError
+from lowpoint.physics.orifices import NARROWEST, WIDEST, orifice_limit
+from lowpoint.physics.plate_loss import losses
+
+__all__ = ["Duty", "Split", "equal_margin", "fewest"]
+
+MOST_STEPS = 60
+NUDGE = 1e-6
+"""Step of the logarithm of a bore in which slopes are taken."""
+LONGEST_STEP = 0.5
+"""Of the logarithm of a bore in one step of the search."""
+CLOSED, OPEN = math.log(NARROWEST), math.log(WIDEST)
+"""Logarithms of the root of the open share between which a bore is looked for."""
+
+
+@dataclass(frozen=True)
+class Duty:
+    """What one case asks of a set: the governing case in a pipe, with plates of ``holes`` holes, and a limit."""
+
+    pipe: float
+    holes: float
+    kind: str
+    dynamic: float
+    """``rho v^2/2`` in the pipe, Pa."""
+    reynolds: float | None
+    p1: float
+    p2: float
+    base: float
+    """Pressure from which heads count: pv, or FF pv for choking."""
+
+    @classmethod
+    def of(cls, cases: Cases, case: int, pipe: float, holes: float, kind: str) -> Duty:
+        reynolds = cases.reynolds(cases.flow, pipe)
+        base = cases.critical_floor if kind == "choked" else cases.liquid.pv
+        return cls(
+            pipe, holes, kind, float(cases.dynamic(pipe)[case]), None if reynolds is None else float(reynolds[case]),
+            float(cases.p1[case]), float(cases.p2[case]), float(base[case]),
+        )  # fmt: skip
+
+    def bore(self, log_share: Any) -> Any:
+        """Bore from the logarithm of the root of the open share."""
+        return self.pipe / math.sqrt(self.holes) * np.exp(log_share)
+
+    def curves(self, bore: Any, bore_length: Any) -> tuple[Any, Any]:
+        """Drop (Pa) and limit of plates with these bores."""
+        pipe, holes = np.full(len(bore), self.pipe), np.full(len(bore), self.holes)
+        loss = losses(bore, pipe, bore_length, holes, self.reynolds)
+        if self.kind == "choked":
+            return loss.k * self.dynamic, 1.0 / loss.recovery2
+        return loss.k * self.dynamic, orifice_limit(self.kind, bore, pipe, bore_length, holes)
+
+
+@dataclass(frozen=True)
+class Split:
+    """A drop over plates: ``bores`` (m), ``pressures`` (Pa, one more), ``limits``, ``drops`` (Pa), common ``margin``."""
+
+    bores: Any
+    pressures: Any
+    drops: Any
+    limits: Any
+    margin: float
+
+
+def _start(duty: Duty, bore_length: Any, count: int) -> Any:
+    """Logarithms of the open shares of the split of equal index, read off a table."""
+    shares = np.linspace(CLOSED, OPEN, 80)
+    drops, _ = duty.curves(duty.bore(shares), np.full(80, float(np.mean(bore_length))))
+    heads = (duty.p1 - duty.base) * ((duty.p2 - duty.base) / (duty.p1 - duty.base)) ** (np.arange(count + 1) / count)
+    return np.interp(-np.log(-np.diff(heads)), -np.log(drops), shares)
+
+
+def _residual(duty: Duty, drops: Any, limits: Any, log_margin: float) -> Any | None:
+    """How far the conditions are off, as logarithms; None where the plates take more than there is."""
+    heads = duty.p1 - duty.base - np.concatenate([[0.0], np.cumsum(drops)])
+    if not heads[-1] > 0.0:
+        return None
+    each = np.log(heads[:-1] / (limits * drops)) - log_margin
+    return np.append(each, math.log(heads[-1] / (duty.p2 - duty.base)))
+
+
+def _jacobian(duty: Duty, drops: Any, slopes: Any, slopes_both: Any) -> Any:
+    count = len(drops)
+    heads = duty.p1 - duty.base - np.concatenate([[0.0], np.cumsum(drops)])
+    jacobian = np.zeros((count + 1, count + 1))
+    # A head falls by the drops of all plates before it.
+    jacobian[:, :count] = np.tril(np.ones((count + 1, count)), -1) * -(drops * slopes) / heads[:, None]
+    jacobian[np.arange(count), np.arange(count)] = -slopes_both
+    jacobian[:count, count] = -1.0
+    return jacobian
+
+
+def equal_margin(duty: Duty, bore_length: Any, start: Any = None) -> Split:
+    """The split of equal margin over as many plates as there are bore lengths (m; 0: sharp edge).
+
+    ``start``: bores to begin with. LowpointError where no bores take the drop.
+    """
+    bore_length = np.asarray(bore_length, np.float64)
+    each = duty.pipe / math.sqrt(duty.holes)
+    u = _start(duty, bore_length, len(bore_length)) if start is None else np.log(np.asarray(start) / each)
+    log_margin, count, lengths = 0.0, len(u), np.tile(bore_length, 2)
+    drops, limits = np.zeros(count), np.zeros(count)
+    for step in range(MOST_STEPS):
+        both = duty.curves(duty.bore(np.concatenate([u, u + NUDGE])), lengths)
+        (drops, near), (limits, near_limits) = (np.split(x, 2) for x in both)
+        if step == 0:
+            log_margin = float(np.median(np.log((duty.p1 - duty.base) / (limits * drops))))
+        off = _residual(duty, drops, limits, log_margin)
+        if off is None:  # the plates take more than there is: open them all
+            u = np.minimum(u + 0.1, OPEN)
+            continue
+        if np.abs(off).max() < 1e-12:
+            break
+        slopes = np.log(near / drops) / NUDGE
+        slopes_both = slopes + np.log(near_limits / limits) / NUDGE
+        move = np.linalg.solve(_jacobian(duty, drops, slopes, slopes_both), -off)
+        move *= min(1.0, LONGEST_STEP / float(np.abs(move[:-1]).max()))
+        u, log_margin = np.clip(u + move[:-1], CLOSED, OPEN - NUDGE), log_margin + float(move[-1])
+    else:
+        raise LowpointError("plate set", f"{count} plates must share the drop at equal margin", "no bores that do",
+                            "Choose another pipe size, or another number of plates.")  # fmt: skip
+    pressures = duty.p1 - np.concatenate([[0.0], np.cumsum(drops)])
+    return Split(duty.bore(u), pressures, drops, limits, math.expm1(log_margin))
+
+
+def fewest(duty: Duty, bore_length: float, margin: float, most: int) -> tuple[int, float]:
+    """About how many plates keep the margin, and the pressure after ``most`` of them where that is not enough.
+
+    A march from the inlet in which every plate takes the largest drop that keeps the margin; read off a table, so the
+    number may be one off. ``most + 1`` stands for any larger number.
+    """
+    shares = np.linspace(CLOSED, OPEN, 200)
+    drops, limits = duty.curves(duty.bore(shares), np.full(200, bore_length))
+    needed = -np.log((1.0 + margin) * limits * drops)  # rises with the bore
+    head, last = duty.p1 - duty.base, duty.p2 - duty.base
+    for count in range(1, most + 1):
+        drop = math.exp(np.interp(-math.log(head), needed, np.log(drops)))
+        head = max(head - drop, 0.0)
+        if head <= last * (1.0 + 1e-9):
+            return count, duty.p2
+    return most + 1, duty.base + head

@@ -119,7 +119,9 @@ def test_every_name_points_into_the_book(system: str) -> None:
         assert re.fullmatch(r"\$[A-Z]+\$\d+(:\$[A-Z]+\$\d+)?", area), name
     used = set()
     for _, _, formula in formulas(book):
-        used |= {t.value for t in Tokenizer(formula).items if t.type == "OPERAND" and "_" in t.value and '"' not in t.value}
+        used |= {
+            t.value for t in Tokenizer(formula).items if t.type == "OPERAND" and "_" in t.value and '"' not in t.value
+        }
     assert used <= names, used - names
     for validation in book["List"].data_validations.dataValidation:
         assert validation.formula1 in names
@@ -268,7 +270,9 @@ def test_each_planted_mistake_shows_its_error_and_its_reason(system: str) -> Non
 
 @both
 def test_the_remarks_name_all_that_is_planted_and_nothing_else(system: str) -> None:
-    marked = {(item.tag, case.name) for _, item, case in made(system).rows() if (case.remark or "").startswith("planted")}
+    marked = {
+        (item.tag, case.name) for _, item, case in made(system).rows() if (case.remark or "").startswith("planted")
+    }
     assert marked == set(MISTAKES[system])
 
 

@@ -53,8 +53,8 @@ def test_the_root_is_that_of_bisection(name: str, c: list[float]) -> None:
     curve = CURVES[name]
     found, asked = _found(curve, np.array(c))
     plain = [_bisected(curve, x, 0.05, 8.0) for x in c]
-    # Near a flat root every x has no excess left: (x-c)^9 is nothing below 1e-36.
-    assert found == pytest.approx(plain, rel=1e-12, abs=1e-15) or name in ("flat", "cubic")
+    # Beside a flat root and a difference of near cubes the curve itself has a width of rounding.
+    assert found == pytest.approx(plain, rel=1e-9 if name in ("flat", "cubic") else 1e-12)
     assert found == pytest.approx(c, rel=1e-9)
     assert asked <= 106
 

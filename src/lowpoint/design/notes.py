@@ -17,10 +17,8 @@ from lowpoint.physics.plate_cautions import LARGEST_DROP, PLATE_CAUTIONS, SLOW_T
 if TYPE_CHECKING:
     from lowpoint.design.rating import Rating
 
-__all__ = ["PLUGGING", "Note", "notes", "rules"]
+__all__ = ["Note", "notes", "rules"]
 
-PLUGGING = 3e-3
-"""m, bores below it are easily plugged (common practice)."""
 ATMOSPHERE = 101325.0
 GAS_SHARE = 0.7
 """Share of the pressure at which a liquid took up its gas below which the gas comes out notably (common practice)."""
@@ -65,9 +63,9 @@ def rules(rating: Rating) -> tuple[str, ...]:
     )  # fmt: skip
 
 
-def notes(rating: Rating, plugging: float) -> tuple[Note, ...]:
+def notes(rating: Rating) -> tuple[Note, ...]:
     """Every caution of a rating: each plate's, then the set's."""
-    return (*_each(rating, plugging), *_whole(rating))
+    return (*_each(rating), *_whole(rating))
 
 
 _TOPICS = {"outside ISO": "ISO", "attach": "reattachment", "bore is long": "thick", "plugged": "plugging"}
@@ -77,9 +75,9 @@ def _topic(text: str) -> str:
     return next((topic for word, topic in _TOPICS.items() if word in text), "plate")
 
 
-def _each(rating: Rating, plugging: float) -> Iterator[Note]:
+def _each(rating: Rating) -> Iterator[Note]:
     values = _of_geometry(rating)
-    system = rating.cases.system
+    plugging, system = rating.criteria.plugging, rating.cases.system
     of_plates = [(_topic(c.text), c.text, _holds(c, values)) for c in PLATE_CAUTIONS if c.label != "rule"]
     of_plates = [entry for entry in of_plates if entry[0] != "plugging"]
     outside = (rating.beta < FIT[0] * (1.0 - 1e-9)) | (rating.beta > FIT[1] * (1.0 + 1e-9))

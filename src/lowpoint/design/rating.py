@@ -2,23 +2,22 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from functools import cached_property
 from typing import Any
 
 import numpy as np
 
 from lowpoint.design.cases import Cases
+from lowpoint.design.criteria import Criteria
 from lowpoint.design.march import Geometry, march
-from lowpoint.design.notes import PLUGGING, Note, notes, rules
+from lowpoint.design.notes import Note, notes, rules
 from lowpoint.design.plates import PlateSet
-from lowpoint.errors import LowpointError
 from lowpoint.physics.orifices import orifice_drop, orifice_limit
 from lowpoint.physics.regime import regime_word
 
-__all__ = ["KINDS", "Rating", "State", "rate"]
+__all__ = ["Rating", "State", "rate"]
 
-KINDS = ("incipient", "constant", "choked")
 BASIS = "published, form assumed (Kuroda, Fukuda and Cho 1978, thin plates); choked derived"
 
 
@@ -49,12 +48,12 @@ class Rating:
     """What plates do in each case. Arrays of (plates, cases) unless said; SI; indices and limits in upstream form.
 
     ``net_drop`` is the permanent drop, ``tap_drop`` what an instrument between the taps shows: never the same thing.
-    ``margin`` is ``sigma/limit - 1`` to the limit of ``kind``, 0 and below crossed.
+    ``margin`` is ``sigma/limit - 1`` to the limit that the criteria name, 0 and below crossed.
     """
 
     plates: PlateSet
     cases: Cases
-    kind: str
+    criteria: Criteria
     flow: Any
     """m3/s (cases): the wanted flow, or the one that the plates pass where that rules."""
     passed: Any
@@ -71,8 +70,6 @@ class Rating:
     regime: Any
     tap_drop: Any
     """Pa; NaN where a plate has no tap drop (several holes, a long bore, outside ISO 5167-2)."""
-    taps: str
-    plugging: float = field(repr=False)
 
     @property
     def net_drop(self) -> Any:
@@ -80,8 +77,9 @@ class Rating:
 
     @property
     def limit(self) -> Any:
-        """Each plate's own limit of ``kind``."""
-        return self.choked_limit if self.kind == "choked" else getattr(self, self.kind)
+        """Each plate's own limit, of the kind that the criteria name."""
+        kind = self.criteria.kind
+        return self.choked_limit if kind == "choked" else getattr(self, kind)
 
     @property
     def margin(self) -> Any:
@@ -121,7 +119,7 @@ class Rating:
     @cached_property
     def notes(self) -> tuple[Note, ...]:
         """The cautions."""
-        return notes(self, self.plugging)
+        return notes(self)
 
     def at(self, plate: int, case: int | str = 0) -> State:
         """One plate (from 0) in one case (from 0, or its name) as plain numbers."""
@@ -135,17 +133,12 @@ class Rating:
         )  # fmt: skip
 
 
-def rate(
-    plates: PlateSet, cases: Cases, kind: str = "constant", worn: float = 0.0, taps: str = "flange",
-    plugging: float = PLUGGING,
-) -> Rating:  # fmt: skip
+def rate(plates: PlateSet, cases: Cases, criteria: Criteria | None = None, worn: float = 0.0) -> Rating:
     """Every case through plates as they stand, or with every bore ``worn`` by a share (0.03 for 3 %).
 
-    Margins are to the limit of ``kind`` (incipient, constant, choked); ``taps`` (corner, flange, radius) for the tap
-    drop; bores below ``plugging`` (m) get a caution. Flashing and choking are findings, not errors.
+    Flashing and choking are findings, not errors.
     """
-    if kind not in KINDS:
-        raise LowpointError("limit", f"kind must be one of {', '.join(KINDS)}", repr(kind))
+    criteria = criteria or Criteria()
     plates = plates.worn(worn) if worn else plates
     geometry = Geometry.of(plates)
     gone = march(geometry, cases)
@@ -162,17 +155,15 @@ def rate(
     # A choked plate is at its limit, on whichever side of it the last bit fell.
     judged = np.where(gone.choked, np.minimum(sigma, choking), sigma)
     return Rating(
-        plates=plates, cases=cases, kind=kind, flow=gone.flow, passed=gone.passed, pressures=gone.pressures,
+        plates=plates, cases=cases, criteria=criteria, flow=gone.flow, passed=gone.passed, pressures=gone.pressures,
         k=np.broadcast_to(gone.loss.k, shape), fl=np.broadcast_to(np.sqrt(gone.loss.recovery2), shape), sigma=sigma,
         incipient=incipient, constant=constant, choked_limit=choking, choked=gone.choked,
         regime=regime_word(judged, incipient, constant, choked=choking),
-        tap_drop=_tap_drop(geometry, cases, gone.flow, taps), taps=taps, plugging=plugging,
+        tap_drop=_tap_drop(geometry, cases, gone.flow, criteria.taps),
     )  # fmt: skip
 
 
 def _tap_drop(geometry: Geometry, cases: Cases, flow: Any, taps: str) -> Any:
-    if taps not in ("corner", "flange", "radius"):
-        raise LowpointError("taps", "must be one of corner, flange, radius", repr(taps))
     liquid = cases.liquid
     return orifice_drop(
         flow, geometry.bore, np.full(geometry.bore.shape, geometry.pipe), liquid.density, liquid.viscosity,

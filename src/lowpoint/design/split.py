@@ -23,7 +23,7 @@ from lowpoint.errors import LowpointError
 from lowpoint.physics.orifices import NARROWEST, WIDEST, orifice_limit
 from lowpoint.physics.plate_loss import losses
 
-__all__ = ["Duty", "Split", "equal_margin", "fewest"]
+__all__ = ["Duty", "Split", "equal_margin", "greedy"]
 
 MOST_STEPS = 60
 NUDGE = 1e-6
@@ -143,19 +143,17 @@ def equal_margin(duty: Duty, bore_length: Any, start: Any = None) -> Split:
     return Split(duty.bore(u), pressures, drops, limits, math.expm1(log_margin))
 
 
-def fewest(duty: Duty, bore_length: float, margin: float, most: int) -> tuple[int, float]:
-    """About how many plates keep the margin, and the pressure after ``most`` of them where that is not enough.
+def greedy(duty: Duty, bore_length: float, margin: float, most: int = 100) -> Any:
+    """Pressures after plates that each take the largest drop that keeps the margin, until p2 or ``most`` are reached.
 
-    A march from the inlet in which every plate takes the largest drop that keeps the margin; read off a table, so the
-    number may be one off. ``most + 1`` stands for any larger number.
+    No set reaches p2 with fewer plates of that margin. Read off a table, so a number of plates may be one off.
     """
     shares = np.linspace(CLOSED, OPEN, 200)
     drops, limits = duty.curves(duty.bore(shares), np.full(200, bore_length))
-    needed = -np.log((1.0 + margin) * limits * drops)  # rises with the bore
+    needed, log_drops = -np.log((1.0 + margin) * limits * drops), np.log(drops)  # the first rises with the bore
     head, last = duty.p1 - duty.base, duty.p2 - duty.base
-    for count in range(1, most + 1):
-        drop = math.exp(np.interp(-math.log(head), needed, np.log(drops)))
-        head = max(head - drop, 0.0)
-        if head <= last * (1.0 + 1e-9):
-            return count, duty.p2
-    return most + 1, duty.base + head
+    pressures = []
+    while head > last * (1.0 + 1e-9) and len(pressures) < most:
+        head -= math.exp(np.interp(-math.log(head), needed, log_drops))
+        pressures.append(duty.base + head)
+    return np.array(pressures)

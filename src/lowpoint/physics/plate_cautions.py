@@ -48,12 +48,17 @@ def slow(reynolds: Any, bore: Any, pipe: Any) -> Any:
     return False if reynolds is None else reynolds < np.maximum(LEAST_REYNOLDS, 16000.0 * beta * beta)
 
 
+def _outside_iso(bore: Any, pipe: Any, holes: Any) -> Any:
+    """Where Idelchik alone gives the loss; a rounding at the end of the transition is outside."""
+    return iso_weight(bore, pipe, holes) < 1e-9
+
+
 def _beyond_iso(bore: Any, pipe: Any, holes: Any) -> Any:
-    return (iso_weight(bore, pipe, holes) > 0.0) & ((bore < LEAST_BORE) | (pipe > WIDEST_PIPE))
+    return ~_outside_iso(bore, pipe, holes) & ((bore < LEAST_BORE) | (pipe > WIDEST_PIPE))
 
 
 def _between(bore: Any, pipe: Any, holes: Any) -> Any:
-    return (iso_weight(bore, pipe, holes) > 0.0) & ~in_iso(bore, pipe, holes)
+    return ~_outside_iso(bore, pipe, holes) & ~in_iso(bore, pipe, holes)
 
 
 _RANGE = "(one hole, bore over pipe 0.1 to 0.75, pipe from 50 mm)"
@@ -67,7 +72,7 @@ BY_ISO = Caution(
 )  # fmt: skip
 BY_IDELCHIK = Caution(
     f"the loss of the thin plate is Idelchik's, since the plate is outside ISO 5167-2 {_RANGE}",
-    lambda bore, pipe, holes: iso_weight(bore, pipe, holes) == 0.0, label="rule",
+    _outside_iso, label="rule",
 )  # fmt: skip
 BY_BOTH = Caution(
     f"the loss of the thin plate lies between ISO 5167-2 and Idelchik's, since the plate is just outside ISO 5167-2 "

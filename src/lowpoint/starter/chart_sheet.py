@@ -37,7 +37,9 @@ def write(book: Any, plant: Plant) -> None:
              Head("Place in the list (working)", 13, "whole")]  # fmt: skip
     put_table(sheet, _HEAD, heads, [_line(place) for place in range(1, CASES + 1)], formats)
     sheet.row_dimensions[_HEAD].height = 40
-    note = "A limit that is not given shows #N/A, and so do lines for which there is no case: the chart leaves them out."
+    note = (
+        "A limit that is not given shows #N/A, and so do lines for which there is no case: the chart leaves them out."
+    )
     sheet.cell(FIRST_ROW + CASES, 1, note).font = style.NOTE
     area = f"A{FIRST_ROW}:J{FIRST_ROW + CASES - 1}"
     sheet.conditional_formatting.add(area, style.rule(f"ISERROR(A{FIRST_ROW})", ink="quiet"))
@@ -51,7 +53,7 @@ def write(book: Any, plant: Plant) -> None:
 def _line(place: int) -> list[Any]:
     row = FIRST_ROW + place - 1
     at = f"$J{row}"
-    limits = [f'=IF(ISNUMBER(INDEX(List_{key},{at})),INDEX(List_{key},{at}),NA())' for key, *_ in _MARKS]
+    limits = [f"=IF(ISNUMBER(INDEX(List_{key},{at})),INDEX(List_{key},{at}),NA())" for key, *_ in _MARKS]
     return [
         f'=INDEX(List_tag,{at})&" "&INDEX(List_case,{at})', f"=INDEX(List_sigma,{at})", *limits,
         f"=INDEX(List_margin,{at})", f"=INDEX(List_keep,{at})", place,
@@ -85,8 +87,9 @@ def _axes(chart: Any) -> None:
     chart.title = style.chart_title("Cavitation index sigma = (p1-pv)/(p1-p2) and its limits, case by case")
     chart.y_axis.title = chart.x_axis.title = None
     chart.y_axis.scaling.min = 0
-    chart.y_axis.number_format, chart.y_axis.majorGridlines.spPr = "0.0", GraphicalProperties(
-        ln=LineProperties(solidFill=style.COLOURS["line"])
+    chart.y_axis.number_format, chart.y_axis.majorGridlines.spPr = (
+        "0.0",
+        GraphicalProperties(ln=LineProperties(solidFill=style.COLOURS["line"])),
     )
     chart.x_axis.delete = chart.y_axis.delete = False
     chart.legend.position = "t"

@@ -66,12 +66,12 @@ def _or_given(given: str, formula: str) -> str:
 def _scaled(limit: str) -> str:
     """A limit that is not given is left out with an empty text, which LP_ functions take for a blank cell."""
     call = "LP_SIGMA_SCALED({%s_ref},{valve_size},{size_ref},{p1}-{pv},{head_ref},{size_exponent},{head_exponent},Scale_method)"
-    return "=IF(ISBLANK({%s_ref}),\"\"," % limit + call % limit + ")"
+    return '=IF(ISBLANK({%s_ref}),"",' % limit + call % limit + ")"
 
 
 def _installed(limit: str) -> str:
     call = "LP_LIMIT_INSTALLED({%s_scaled},{coefficient},{valve_size},{pipe_in},{pipe_out})"
-    return "=IF(ISBLANK({%s_ref}),\"\"," % limit + call % limit + ")"
+    return '=IF(ISBLANK({%s_ref}),"",' % limit + call % limit + ")"
 
 
 _GIVEN = "Type a value where the liquid is not one that Lowpoint knows; it goes before the computed one."

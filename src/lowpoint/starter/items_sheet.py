@@ -80,7 +80,9 @@ def write(book: Any, plant: Plant) -> None:
         name_column(book, f"Items_{key}", "Items", place, ITEMS_LAST)
         if key in _NOTES:
             text = _NOTES[key]
-            sheet.cell(HEADINGS, place).comment = Comment(text, AUTHOR, width=320, height=30 + 17 * (len(text) // 45 + 1))
+            sheet.cell(HEADINGS, place).comment = Comment(
+                text, AUTHOR, width=320, height=30 + 17 * (len(text) // 45 + 1)
+            )
     _mark(sheet, letters, last)
     sheet.freeze_panes = f"B{FIRST}"
     sheet.auto_filter.ref = f"A{HEADINGS}:{letters['order']}{last}"

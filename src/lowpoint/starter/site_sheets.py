@@ -57,7 +57,9 @@ def _method(book: Any, sheet: Any, row: int) -> int:
     cell = sheet.cell(row, 3, "isa")
     cell.font, cell.fill = style.INPUT, style.fill("sand")
     book.defined_names["Scale_method"] = DefinedName("Scale_method", attr_text=f"Site!$C${row}")
-    sheet.cell(row + 1, 1, "isa, upstream or tullis: the exponents of the list belong to this method.").font = style.NOTE
+    sheet.cell(
+        row + 1, 1, "isa, upstream or tullis: the exponents of the list belong to this method."
+    ).font = style.NOTE
     choice = DataValidation(type="list", formula1="Words_methods", showErrorMessage=True,
                             error="The method must be isa, upstream or tullis.")  # fmt: skip
     sheet.add_data_validation(choice)

@@ -92,7 +92,9 @@ def heading(cell: Any) -> None:
     cell.border = Border(left=Side(style="thin", color=COLOURS["mid"]))
 
 
-def rule(formula: str, colour: str | None = None, *, ink: str | None = None, bold: bool = False, last: bool = True) -> Any:
+def rule(
+    formula: str, colour: str | None = None, *, ink: str | None = None, bold: bool = False, last: bool = True
+) -> Any:
     """A conditional format: the cells where the formula is true."""
     look = DifferentialStyle(
         font=Font(color=COLOURS[ink], bold=bold) if ink else None,
@@ -128,7 +130,9 @@ def _holds(cell: str, words: tuple[str, ...]) -> str:
     return f"OR({tests})"
 
 
-def print_setup(sheet: Any, *, wide: int = 1, rows: str | None = None, columns: str | None = None, paper: int = 9) -> None:
+def print_setup(
+    sheet: Any, *, wide: int = 1, rows: str | None = None, columns: str | None = None, paper: int = 9
+) -> None:
     """Landscape, so many pages wide, with title rows and columns; paper 9 is A4, 8 A3, 1 letter, 3 tabloid."""
     sheet.page_setup.orientation, sheet.page_setup.paperSize = "landscape", paper
     sheet.page_setup.fitToWidth, sheet.page_setup.fitToHeight = wide, 0

@@ -145,8 +145,7 @@ def _unanswered(sheet: Any, row: int, formats: dict[str, str]) -> None:
     rows = []
     for place, at in enumerate(range(first, first + UNANSWERED), start=1):
         service, tag, case, why = (
-            f'=IF($C{at}="","",INDEX({LIST}!${LETTERS[key]}$1:${LETTERS[key]}${LAST},'
-            f"SMALL(List_unanswered,$C{at})))"
+            f'=IF($C{at}="","",INDEX({LIST}!${LETTERS[key]}$1:${LETTERS[key]}${LAST},SMALL(List_unanswered,$C{at})))'
             for key in ("service", "tag", "case", "why")
         )
         number = f'=IF(COUNT(List_unanswered)<{place},"",{place})'

@@ -58,7 +58,7 @@ def chain(opening: tuple[tuple[str, str], ...], table: str = "") -> str:
     """
     steps = [*_READINGS, *_LIQUID, *opening, *_SCALED, *_VERDICT]
     text = "".join(f"IF(ISERROR({cell}),{reason.replace('{table}', table)}," for cell, reason in steps)
-    blank = 'AND(ISBLANK({t}),OR(ISBLANK({pv_given}),ISBLANK({density_given})))'
+    blank = "AND(ISBLANK({t}),OR(ISBLANK({pv_given}),ISBLANK({density_given})))"
     return (
         f'=IF(ISERROR({{atmosphere}}),"the area must be one of sheet Site",IF({blank},"the temperature is blank: type '
         f'it",{text}{_COEFFICIENT}{")" * (len(steps) + 2)}'

@@ -1,0 +1,101 @@
+"""Sizes of the plates of a set for its governing case: bores with strength, and their rounding to drills."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+
+from lowpoint.design.checks import told
+from lowpoint.design.criteria import Criteria
+from lowpoint.design.drills import series
+from lowpoint.design.plates import Construction
+from lowpoint.design.split import Duty, Split, equal_margin
+from lowpoint.errors import LowpointError
+
+__all__ = ["Sized", "drilled", "size"]
+
+MOST_ROUNDS = 40
+AGREED = 1e-11
+"""Share of the pipe by which two rounds may differ in a bore length."""
+
+
+@dataclass(frozen=True)
+class Sized:
+    """Bores of equal margin that agree with the thickness which strength asks of them, before any rounding."""
+
+    split: Split
+    thickness: Any
+    """m; NaN where none was asked for."""
+    bore_length: Any
+    rounds: int
+    """Splits made until bores and thickness agreed."""
+
+    @property
+    def margin(self) -> float:
+        return self.split.margin
+
+
+def size(duty: Duty, construction: Construction, load: float, count: int) -> Sized:
+    """Split the drop with sharp edges; find the thickness; split again with it; until the two agree.
+
+    A thickness never falls from round to round, so that its rounding cannot make it swing; what comes out is always a
+    thickness that is enough and a loss that belongs to it.
+    """
+    thickness = np.full(count, np.nan)
+    start = None
+    for rounds in range(1, MOST_ROUNDS + 1):
+        lengths = construction.bore_length(thickness, duty.pipe)
+        split = equal_margin(duty, lengths, start)
+        thickness, start = np.fmax(thickness, construction.thickness_for(split.bores, load)), split.bores
+        if np.abs(construction.bore_length(thickness, duty.pipe) - lengths).max() <= AGREED * duty.pipe:
+            return Sized(split, thickness, lengths, rounds)
+    raise LowpointError("plate set", "bores and thickness must agree", f"none that do in {MOST_ROUNDS} rounds",
+                        "Give the thickness, or bevel the plates.")  # fmt: skip
+
+
+def drill_choices(bores: Any, duty: Duty, criteria: Criteria) -> Any:
+    """(2, plates): the next smaller and the next larger drill; one of them twice where only one can be used."""
+    low, high = series(criteria.drills).around(bores)
+    widest = duty.pipe / np.sqrt(duty.holes)
+    high = np.where(high < widest, high, np.nan)
+    choices = np.array([np.where(np.isnan(low), high, low), np.where(np.isnan(high), low, high)])
+    if np.isnan(choices).any():
+        size_ = told(float(bores[np.isnan(choices).any(axis=0)][0]), "size", criteria.system)
+        raise LowpointError("drills", "there must be a drill near the bore that is below the pipe", size_,
+                            "Set rounding to none, or choose a larger pipe.")  # fmt: skip
+    return choices
+
+
+def drilled(sized: Sized, duty: Duty, construction: Construction, load: float, criteria: Criteria) -> Any:
+    """Bores rounded to drills.
+
+    ``nearest``: of all combinations of the two drills around each bore, those whose every plate keeps the margin, and of
+    these the one whose flow is nearest to the wanted one. They are judged with nothing else in the line: the plates
+    share p1 - p2 as their losses do. If none keeps the margin, the one with the best least margin.
+    """
+    if criteria.rounding == "none":
+        return sized.split.bores
+    choices = drill_choices(sized.split.bores, duty, criteria)
+    if criteria.rounding == "down":
+        return choices[0]
+    count = choices.shape[1]
+    lengths = construction.bore_length(construction.thickness_for(choices, load), duty.pipe)
+    drops, limits = (x.reshape(2, count) for x in duty.curves(choices.ravel(), lengths.ravel()))
+    pick = (np.arange(2**count)[:, None] >> np.arange(count)) & 1
+    column = np.arange(count)
+    least, total = _least_margin(duty, drops[pick, column], limits[pick, column])
+    wanted = criteria.margin if sized.margin >= criteria.margin - 1e-9 else -np.inf
+    keeps = least >= wanted - 1e-9
+    away = np.abs(np.log(total / (duty.p1 - duty.p2)))
+    best = int(np.argmin(np.where(keeps, away, np.inf))) if keeps.any() else int(np.argmax(least))
+    return choices[pick[best], column]
+
+
+def _least_margin(duty: Duty, drops: Any, limits: Any) -> tuple[Any, Any]:
+    """Least margin of each combination with p1 and p2 held, and the whole drop it takes at the wanted flow."""
+    total = drops.sum(axis=1)
+    shares = drops * ((duty.p1 - duty.p2) / total)[:, None]
+    heads = duty.p1 - duty.base - (np.cumsum(shares, axis=1) - shares)
+    return (heads / (limits * shares)).min(axis=1) - 1.0, total

@@ -137,8 +137,8 @@ PROMISED = {
         "LP_ALLOWED_DROP": "p1, pv, limit, [form]",
         "LP_ALLOWED_OUTLET": "p1, pv, limit, [form]",
         "LP_ALLOWED_INLET": "p2, pv, limit, [form]",
-        "LP_NOISE": "flow, p1, p2, pv, density, sound_speed, coefficient, fl, fd, valve_size, pipe_bore, pipe_wall, [xfz], "
-        "[outlet_size]",
+        "LP_NOISE": "flow, p1, p2, pv, density, sound_speed, coefficient, fl, fd, valve_size, pipe_bore, pipe_wall, "
+        "[xfz], [outlet_size]",
         "LP_ORIFICE_LOSS": "bore, pipe, [bore_length], [holes], [reynolds]",
         "LP_ORIFICE_DROP": "flow, bore, pipe, density, [viscosity], [bore_length], [holes], [taps]",
         "LP_ORIFICE_FLOW": "p1, p2, bore, pipe, density, pv, pc, [viscosity], [bore_length], [holes]",

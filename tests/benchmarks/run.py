@@ -18,12 +18,14 @@ HERE = Path(__file__).parent
 sys.path.insert(0, str(HERE))
 
 import bench_kernels  # noqa: E402
+import bench_orifices  # noqa: E402
 import bench_recalc  # noqa: E402
 import bench_start  # noqa: E402
 from figures import Figure  # noqa: E402
 
 SUITES: dict[str, Callable[[bool], Iterator[Figure]]] = {
     "kernels": bench_kernels.figures,
+    "orifices": bench_orifices.figures,
     "recalc": bench_recalc.figures,
     "start": bench_start.figures,
 }

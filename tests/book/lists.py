@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+import warnings
 import zipfile
 from collections.abc import Mapping
 from dataclasses import dataclass
@@ -102,13 +103,14 @@ def outcome(report: Report) -> dict[str, Any]:
 
 def stored(path: Path) -> dict[str, Any]:
     """Every cached value of a book by place; numbers as floats, errors as errors."""
-    book = openpyxl.load_workbook(path, data_only=True)
+    with warnings.catch_warnings():
+        warnings.simplefilter("ignore")  # it says what of a book it does not know
+        book = openpyxl.load_workbook(path, data_only=True)
     found = {}
     for sheet in book.worksheets:
-        for row in sheet.iter_rows():
-            for cell in row:
-                if cell.value is not None:
-                    found[f"{sheet.title}!{cell.coordinate}"] = _plain(cell)
+        for cell in sheet._cells.values():
+            if cell.value is not None:
+                found[f"{sheet.title}!{cell.coordinate}"] = _plain(cell)
     return found
 
 

@@ -2,15 +2,14 @@
 
 from __future__ import annotations
 
-import re
 import zipfile
 from pathlib import Path
 from typing import Any
 
 import pytest
 
-from book.lists import Done, bare, both, cells_xml, expected, formula, number, recalculated
-from book.makers import MAIN, XLSX, corpus, pack, parts
+from book.lists import Done, bare, both, cells_xml, expected, formula, number
+from book.makers import MAIN, XLSX, pack, parts
 from lowpoint.book.package import Package
 from lowpoint.problems import CellError
 
@@ -191,34 +190,6 @@ def test_macros_templates_and_unknown_parts_stay(tmp_path: Path, suffix: str, ki
     assert report.parts == [SHEET]
     assert _others(tmp_path / f"out.{suffix}", SHEET) == _others(source, SHEET)
     assert source.read_bytes() == before
-
-
-def test_books_made_by_a_spreadsheet_program_keep_every_other_part(tmp_path: Path) -> None:
-    """A call put into a free cell of the first sheet comes out right; nothing else of the book is touched."""
-    tried = 0
-    for path in corpus():
-        package = Package.open(path)
-        sheet = next((s for s in package.sheets if s.kind == "worksheet"), None)
-        if sheet is None:
-            continue
-        source = tmp_path / path.name
-        source.write_bytes(package.packed({sheet.path: _with_call(package.read(sheet.path))}))
-        out = tmp_path / f"out-{path.name}"
-        report = recalculated_report(source, out)
-        tried += 1
-        worksheets = [s.path for s in package.sheets if s.kind == "worksheet"]
-        assert set(report.parts) <= set(worksheets), path.name
-        assert _others(out, *report.parts) == _others(source, *report.parts), path.name
-        assert b"<v>%b</v></c></row>" % SHOWN in Package.open(out).read(sheet.path), path.name
-        source.unlink()
-        out.unlink()
-    assert tried > 100
-
-
-def _with_call(sheet: bytes) -> bytes:
-    row = b'<row r="1000000"><c r="XFC1000000"><f>LP_SIGMA(10,4,0.03)</f></c></row>'
-    filled = re.sub(rb"<sheetData\s*/>", b"<sheetData></sheetData>", sheet)
-    return filled.replace(b"</sheetData>", row + b"</sheetData>")
 
 
 def test_errors_of_the_format_are_read_back(tmp_path: Path) -> None:

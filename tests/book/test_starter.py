@@ -60,7 +60,7 @@ def test_three_cases_an_item_one_row_each(system: str) -> None:
         assert (sample.value(row, "tag"), sample.value(row, "case")) == (item.tag, case.name)
     assert all(len({case.name for case in item.cases}) == 3 for item in sample.plant.items)
     listed = [cell.value for cell in sample.values["List"]["A"][FIRST - 1 :]]
-    assert Counter(listed) == {tag: 3 for tag in tags}
+    assert Counter(listed) == dict.fromkeys(tags, 3)
     assert [cell.value for cell in sample.values["Items"]["A"][FIRST - 1 :]] == tags
 
 

@@ -180,9 +180,12 @@ def worked_out_rows() -> dict[int, dict[str, float]]:
     return found
 
 
-@pytest.mark.parametrize("key", ["p1", "p2", "pv", "pc", "density", "fl", "coefficient", "travel", "velocity",
-                                 "choked_drop", "sigma", "choked", "incipient_scaled", "constant_scaled",
-                                 "damage_scaled", "incipient", "constant", "damage", "limit", "allowed_drop"])  # fmt: skip
+SECOND = ("p1", "p2", "pv", "pc", "density", "fl", "coefficient", "travel", "velocity", "choked_drop", "sigma",
+          "choked", "incipient_scaled", "constant_scaled", "damage_scaled", "incipient", "constant", "damage", "limit",
+          "allowed_drop")  # fmt: skip
+
+
+@pytest.mark.parametrize("key", SECOND)
 def test_rows_worked_out_a_second_way(key: str) -> None:
     """IEC 60534-2-1 by bisection, IAPWS by another library; everything from typed inputs (C: checks the coding)."""
     sample, compared = made("metric"), 0

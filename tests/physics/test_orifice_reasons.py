@@ -9,6 +9,7 @@ import pytest
 
 from lowpoint import functions
 from lowpoint.cells import CellError, call, reason
+from lowpoint.reference import as_data, as_page, as_text
 from physics.sentences import Case, arguments, check, untold
 
 MODULES = ("orifices", "stages", "plate_strength", "noise")
@@ -202,6 +203,14 @@ def test_the_notes_are_no_cautions() -> None:
     assert "basis: published (ISO 5167-2" in words
 
 
+def test_the_reference_tells_rules_apart_from_cautions() -> None:
+    data = as_data(functions["LP_ORIFICE_LOSS"])
+    assert [text.partition(":")[0] for text in data["told"]] == ["rule"] * 3
+    assert all("of the thin plate" not in text for text in data["cautions"])
+    assert "\nrule: the loss of the thin plate is that of ISO 5167-2" in as_text(functions["LPU_ORIFICE_LOSS"])
+    assert "\n- Rule: the loss of the thin plate is that of ISO 5167-2" in as_page()
+
+
 # --- what is wrong input and what is not ----------------------------------------------------------------------------
 
 
@@ -263,7 +272,9 @@ def test_free_discharge_names_the_share_that_its_flow_is() -> None:
 def test_a_row_without_an_answer_does_not_slow_or_change_its_neighbours() -> None:
     """An open plate in the column leaves the other rows' flow to the bit."""
     viscosity = np.array([1.0, 1.0, 50.0])
-    flows = functions["LP_ORIFICE_FLOW"](**_PRESSED, bore=np.array([50.0, 120.0, 50.0]), pipe=100.0, viscosity=viscosity)
+    flows = functions["LP_ORIFICE_FLOW"](
+        **_PRESSED, bore=np.array([50.0, 120.0, 50.0]), pipe=100.0, viscosity=viscosity
+    )
     assert np.isnan(flows).tolist() == [False, True, False]
     assert flows[0] == functions["LP_ORIFICE_FLOW"](**_FLOW, viscosity=1.0)
 

@@ -156,6 +156,19 @@ def test_net_and_tap_drop_of_iso(beta: float, pipe: float, reynolds: float) -> N
     assert net < flange
 
 
+@given(plates(), services())
+def test_taps_and_forms_row_by_row(plate: Plate, service: Service) -> None:
+    """A column of words gives each row what the word alone gives, blanks the default."""
+    case = {"flow": _flow(plate, service), **plate.cells(), **service.liquid()}
+    taps = np.array(["net", "corner", None, "radius", "flange"], object)
+    alone = [DROP(**case, taps=word) for word in taps]
+    assert DROP(**case, taps=taps) == pytest.approx(alone, rel=0, abs=0, nan_ok=True)
+    assert alone[0] == alone[2]
+    limits, forms = np.array(["incipient", "constant", "choked"] * 3, object), np.repeat(["upstream", "xf", None], 3)
+    alone = [LIMIT(limit=limit, **plate.cells(), form=form) for limit, form in zip(limits, forms, strict=True)]
+    assert LIMIT(limit=limits, **plate.cells(), form=forms) == pytest.approx(alone, rel=0, abs=0)
+
+
 # --- recovery, choking, limits --------------------------------------------------------------------------------------
 
 

@@ -7,7 +7,7 @@ from typing import Any
 
 import numpy as np
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from lowpoint.physics.roots import bracketed_root
@@ -70,6 +70,7 @@ def test_a_guess_changes_the_steps_and_not_the_root(name: str, c: list[float], o
 
 
 @given(c=roots)
+@settings(max_examples=20)
 def test_a_row_does_not_know_its_neighbours(c: list[float]) -> None:
     for curve in CURVES.values():
         together, _ = _found(curve, np.array(c))

@@ -56,7 +56,7 @@ def test_pressures_from_end_to_end(case: dict[str, float], n: int) -> None:
 
 @given(ends, st.integers(1, 60))
 def test_the_index_of_n_stages_as_target_gives_n(case: dict[str, float], n: int) -> None:
-    """Equal-index identity: sigma of each is 1/(1-r); asked for as the target, n stages meet it and no rounding adds one."""
+    """Equal-index identity: sigma of each is 1/(1-r); as the target it is met by n stages, and no rounding adds one."""
     r = ((case["p2"] - case["pv"]) / (case["p1"] - case["pv"])) ** (1.0 / n)
     assert STAGES(**case, target=1.0 / (1.0 - r)) == n
     assert STAGES(**case, target=r / (1.0 - r), form="downstream") == n

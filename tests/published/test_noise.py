@@ -74,8 +74,10 @@ def _source(i: dict[str, Any]) -> dict[str, float]:
             (1.0 - at) / (1.0 - xf)) * (xf / at) ** 5 * (xf - at) ** 1.5  # fmt: skip
     strouhal = 0.036 * i["FL"] ** 2 * i["Cv"] * i["Fd"] ** 0.75 / (1.17 * at**1.5 * i["d_m"] ** 2) * head**-0.57
     peak = strouhal * speed / jet
-    found = {"xF": xf, "xFz": xfz, "xFzp1": at, "Uvc": speed, "Dj": jet, "Wm": stream, "eta_turb": turbulent,
-             "eta_cav": cavitating, "Wa": (turbulent + cavitating) * stream, "Stp": strouhal, "fp_turb": peak}  # fmt: skip
+    found = {
+        "xF": xf, "xFz": xfz, "xFzp1": at, "Uvc": speed, "Dj": jet, "Wm": stream, "eta_turb": turbulent,
+        "eta_cav": cavitating, "Wa": (turbulent + cavitating) * stream, "Stp": strouhal, "fp_turb": peak,
+    }  # fmt: skip
     if cavitating:
         found["fp_cav"] = 6.0 * peak * ((1.0 - xf) / (1.0 - at)) ** 2 * (at / xf) ** 2.5
     return found
@@ -132,8 +134,9 @@ def test_level_follows_the_steps(more: dict[str, float]) -> None:
     i = {
         "m_kg_s": case["flow"] / 3600.0 * case["density"], "p1_Pa": case["p1"] * 1e5, "p2_Pa": case["p2"] * 1e5,
         "pv_Pa": case["pv"] * 1e5, "rho": case["density"], "c_L": case["sound_speed"], "FL": case["fl"],
-        "Cv": case["coefficient"] * CV_PER_KV, "Fd": case["fd"], "d_m": case.get("outlet_size", case["valve_size"]) / 1e3,
-        "Di_m": case["pipe_bore"] / 1e3, "tp_m": case["pipe_wall"] / 1e3, "xFz": case.get("xfz", "estimated"),
+        "Cv": case["coefficient"] * CV_PER_KV, "Fd": case["fd"],
+        "d_m": case.get("outlet_size", case["valve_size"]) / 1e3, "Di_m": case["pipe_bore"] / 1e3,
+        "tp_m": case["pipe_wall"] / 1e3, "xFz": case.get("xfz", "estimated"),
         "An": -4.6, "rho_air": 1.293, "c_air": 343.0, "rho_p": 7800.0, "c_p": 5000.0,
     }  # fmt: skip
     # The table of weights is rounded to 0.1 dB.

@@ -280,7 +280,7 @@ def test_row(row: Row) -> None:
 
 @pytest.mark.parametrize("row", parameters(ROWS[id_] for id_ in DISAGREE))
 def test_two_sources_and_their_gap(row: Row) -> None:
-    """Both are published; neither is wrong. The gap is stated so that nobody takes it for a fault, or a fault for it."""
+    """Both are published; neither is wrong. The gap is stated, so that nobody takes it for a fault."""
     stated = DISAGREE[row.id]
     assert _ours_beside(row) / row.value - 1.0 == pytest.approx(stated.gap, abs=0.0006), stated.between
 

@@ -135,7 +135,8 @@ def _bare(value: Any) -> Any:
 
 
 def _said(value: Any) -> str:
-    value = _bare(value)
+    if isinstance(value, Enum):
+        return str(value.value)
     return "nothing" if value is None else f'"{value}"' if isinstance(value, str) else str(value)
 
 

@@ -21,7 +21,7 @@ GasPressure = Annotated[
 HELD = ("inlet", "outlet", "both")
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Liquid(Inputs):
     """A liquid; each field one number, or one a case (their temperatures differ). SI.
 
@@ -48,15 +48,16 @@ class Liquid(Inputs):
 
     def over(self, count: int) -> Liquid:
         """The same liquid with every field as long as the cases."""
-        return Liquid(system=self.system, **{
+        spread: dict[str, Any] = {
             f.name: None if getattr(self, f.name) is None else self._spread(f.name, count)
             for f in fields(self) if f.name != "system"
-        })  # fmt: skip
+        }  # fmt: skip
+        return Liquid(system=self.system, **spread)
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Cases(Inputs):
-    """Operating cases: wanted ``flow`` (m3/s) and the pressures ``p1`` before and ``p2`` after everything (Pa absolute).
+    """Operating cases: wanted ``flow`` (m3/s), pressures ``p1`` before and ``p2`` after everything (Pa absolute).
 
     ``held`` says what rules a case whose flow the plates do not need the whole drop for: ``inlet`` (p1 and the flow are
     held, something after the plates takes the rest), ``outlet`` (p2 and the flow are held, something before them does)

@@ -12,11 +12,16 @@ from lowpoint.errors import LowpointError
 from lowpoint.quantities import Quantity
 from lowpoint.units import SYSTEMS, Unit, dimension
 
-__all__ = ["Inputs", "told"]
+__all__ = ["Inputs", "of", "told"]
+
+
+def of(annotation: Any) -> Quantity:
+    """The quantity of one of the annotations of :mod:`lowpoint.quantities`, to annotate a plain float with."""
+    return next(extra for extra in annotation.__metadata__ if isinstance(extra, Quantity))
 
 
 @cache
-def _kinds(cls: type) -> dict[str, tuple[Quantity, bool]]:
+def _kinds(cls: Any) -> dict[str, tuple[Quantity, bool]]:
     """Each number field with its quantity, and whether it may be left out."""
     found = {}
     for name, hint in typing.get_type_hints(cls, include_extras=True).items():
@@ -27,10 +32,13 @@ def _kinds(cls: type) -> dict[str, tuple[Quantity, bool]]:
     return found
 
 
-def told(value: float, kind: str, system: str = "metric") -> str:
+def told(value: Any, kind: str, system: str = "metric") -> str:
     """An SI value in the user's unit of its dimension, six significant digits."""
-    unit = dimension(kind).unit(system)
-    return f"{unit.from_si(float(value)):.6g} {unit.label}".rstrip()
+    return _shown(float(value), dimension(kind).unit(system))
+
+
+def _shown(value: float, unit: Unit) -> str:
+    return f"{unit.from_si(value):.6g} {unit.label}".rstrip()
 
 
 class Inputs:
@@ -48,22 +56,25 @@ class Inputs:
     @classmethod
     def in_units(cls, system: str = "metric", **values: Any) -> Self:
         """The same inputs from user units: bar, m3/h, mm, mPa.s, Kv, MPa, or those of the set ``us``."""
-        kinds = _kinds(cls)
-        for name, value in values.items():
-            if name in kinds and value is not None:
-                unit = dimension(kinds[name][0].dimension).unit(_known(cls.subject, system))
-                values[name] = unit.to_si(_numbers(cls.subject, name, value, unit))  # type: ignore[arg-type]
-        return cls(system=system, **values)
+        _known(cls.subject, system)
+        for name, (kind, _) in _kinds(cls).items():
+            if values.get(name) is not None:
+                unit = dimension(kind.dimension).unit(system)
+                values[name] = unit.to_si(_numbers(cls.subject, name, values[name], unit))
+        make: Any = cls
+        found: Self = make(system=system, **values)
+        return found
 
     def __post_init__(self) -> None:
         _known(self.subject, self.system)
         for name, (kind, optional) in _kinds(type(self)).items():
             value = getattr(self, name)
-            if value is None and optional:
-                continue
-            self._set(name, self._checked(name, value, kind))
+            if value is not None or not optional:
+                self._set(name, self._checked(name, value, kind))
 
     def _set(self, name: str, value: Any) -> None:
+        if isinstance(value, np.ndarray):
+            value.setflags(write=False)
         object.__setattr__(self, name, value)
 
     def _where(self, row: int) -> str:
@@ -78,14 +89,15 @@ class Inputs:
         if numbers.ndim > 1 or not (self.columns or numbers.size == 1) or not numbers.size:
             shape = "one number or a list of them" if self.columns else "one number"
             raise LowpointError(self.subject, f"{name} must be {shape}", f"{numbers.size} numbers")
-        relation, bad = _beyond(numbers, kind, self.system)
-        if bad.any():
-            row = int(np.argmax(bad))
-            got = f"{unit.from_si(float(numbers[row])):.6g} {unit.label}".rstrip()
-            raise LowpointError(self._where(row), f"{name} must be {relation}", got, kind.remedy)
+        for relation, bad in _beyond(numbers, kind, self.system):
+            if bad.any():
+                row = int(np.argmax(bad))
+                got = _shown(float(numbers[row]), unit)
+                raise LowpointError(self._where(row), f"{name} must be {relation}", got, kind.remedy)
         return numbers if self.columns else float(numbers[0])
 
     def _spread(self, name: str, count: int) -> Any:
+        """A column as long as the cases."""
         value = getattr(self, name)
         if len(value) not in (1, count):
             must = f"{name} must have one value, or one for each of the {count} cases"
@@ -104,34 +116,29 @@ class Inputs:
                 raise LowpointError(self._where(row), words, told(a, kind, self.system), remedy)
 
 
-def _known(subject: str, system: str) -> str:
+def _known(subject: str, system: str) -> None:
     if system not in SYSTEMS:
         raise LowpointError(subject, f"the set of units must be one of {', '.join(SYSTEMS)}", repr(system))
-    return system
 
 
 def _numbers(subject: str, name: str, value: Any, unit: Unit) -> Any:
     try:
-        return np.asarray(value, np.float64)
+        return np.array(value, np.float64)
     except (TypeError, ValueError):
         must = f"{name} must be a number" + (f" in {unit.label}" if unit.label else "")
         raise LowpointError(subject, must, repr(value)) from None
 
 
-def _beyond(numbers: Any, kind: Quantity, system: str) -> tuple[str, Any]:
-    """The bound that is broken, in words, and where it is; the first kind of fault found."""
+def _beyond(numbers: Any, kind: Quantity, system: str) -> list[tuple[str, Any]]:
+    """Each bound in words, and where it is broken."""
     metric, mine = dimension(kind.dimension).metric, dimension(kind.dimension).unit(system)
-    us = system == "us" and kind.us_low is not None
-    low_unit, low = (mine, float(kind.us_low)) if us else (metric, kind.low)  # type: ignore[arg-type]
-    bounds = []
-    for unit, limit, closed, side in (
-        (low_unit, low, kind.closed_low, -1.0), (metric, kind.high, kind.closed_high, 1.0)
-    ):  # fmt: skip
-        if np.isfinite(limit):
-            words = {(-1.0, True): "at least", (-1.0, False): "above", (1.0, True): "at most", (1.0, False): "below"}
-            si = unit.to_si(limit)
-            past = side * (numbers - si)
-            shown = f"{words[side, closed]} {mine.from_si(si):.6g} {mine.label}".rstrip()
-            bounds.append((shown, past > 0.0 if closed else past >= 0.0))
-    bounds.append(("a finite number", ~np.isfinite(numbers)))
-    return next(((words, bad) for words, bad in reversed(bounds) if bad.any()), ("", np.zeros(1, np.bool_)))
+    low, high = metric.to_si(kind.low), metric.to_si(kind.high)
+    if system == "us" and kind.us_low is not None:
+        low = mine.to_si(kind.us_low)
+    below = numbers < low if kind.closed_low else numbers <= low
+    above = numbers > high if kind.closed_high else numbers >= high
+    return [
+        ("a finite number", ~np.isfinite(numbers)),
+        (f"{'at least' if kind.closed_low else 'above'} {_shown(low, mine)}", below),
+        (f"{'at most' if kind.closed_high else 'below'} {_shown(high, mine)}", above),
+    ]

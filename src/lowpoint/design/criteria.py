@@ -16,11 +16,11 @@ ROUNDINGS = ("nearest", "down", "none")
 TAPS = ("corner", "flange", "radius")
 
 Margin = Annotated[
-    q.Floats,
+    float,
     q.Quantity("margin", "least sigma/limit - 1 of every plate", "ratio", low=0.0, closed_low=True, high=100.0,
                remedy="A margin of 0.1 keeps the index 10 % above the limit."),
 ]  # fmt: skip
-Plugging = Annotated[q.Floats, q.Quantity("plugging", "bore below which a hole is easily plugged", "size", low=0.0)]
+Plugging = Annotated[float, q.Quantity("plugging", "bore below which a hole is easily plugged", "size", low=0.0)]
 
 
 @dataclass(frozen=True)
@@ -35,11 +35,11 @@ class Criteria(Inputs):
     subject: ClassVar[str] = "criteria"
 
     kind: str = "constant"
-    margin: Margin = 0.0  # type: ignore[assignment]
+    margin: Margin = 0.0
     drills: str = "metric"
     rounding: str = "nearest"
     taps: str = "flange"
-    plugging: Plugging = 3e-3  # type: ignore[assignment]
+    plugging: Plugging = 3e-3
     system: str = "metric"
 
     def __post_init__(self) -> None:

@@ -23,6 +23,7 @@ import numpy as np
 
 from lowpoint.design.cases import Cases
 from lowpoint.design.plates import PlateSet
+from lowpoint.physics.orifices import orifice_limit
 from lowpoint.physics.plate_loss import Loss, losses
 
 __all__ = ["Geometry", "March", "backward", "march", "passed"]
@@ -30,7 +31,7 @@ __all__ = ["Geometry", "March", "backward", "march", "passed"]
 MOST_ROUNDS = 60
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Geometry:
     """The plates of a set as columns (plates, 1), for formulas over plates and cases."""
 
@@ -53,8 +54,12 @@ class Geometry:
         """What the plates do to a flow, (plates, cases)."""
         return losses(self.bore, np.full(self.bore.shape, self.pipe), self.bore_length, self.holes, reynolds)
 
+    def limit(self, kind: str) -> Any:
+        """Incipient or constant limit of the plates, (plates, 1), upstream form."""
+        return orifice_limit(kind, self.bore, np.full(self.bore.shape, self.pipe), self.bore_length, self.holes)
 
-@dataclass(frozen=True)
+
+@dataclass(frozen=True, eq=False)
 class March:
     """Where the flow went: ``flow`` and ``passed`` (cases), ``pressures`` (plates + 1, cases), ``choked``, ``loss``."""
 

@@ -141,18 +141,21 @@ def _named(rating: Rating, mask: Any) -> tuple[str, ...]:
 
 
 def _whole(rating: Rating) -> Iterator[Note]:
-    plates, cases, system = rating.plates, rating.cases, rating.cases.system
-    apart = plates.spacing
-    if plates.count > 1 and apart is not None and apart < CLEAR_OF_EACH_OTHER * plates.pipe * (1.0 - 1e-9):
+    plates, cases = rating.plates, rating.cases
+    apart = plates.line.apart
+    if plates.count > 1 and apart < CLEAR_OF_EACH_OTHER * plates.pipe * (1.0 - 1e-9):
         yield Note("spacing", f"the plates are {apart / plates.pipe:.3g} pipe diameters apart, less than 6: they "
                    "interact, and their losses do not add up")  # fmt: skip
     flashing = rating.pressures[-1] <= cases.liquid.pv
     if flashing.any():
         yield Note("flashing", "the liquid flashes after the last plate: no plate cures that; raise the back-pressure "
                    "or cool the liquid", 0, _named(rating, flashing))  # fmt: skip
-    if plates.free_discharge:
-        yield Note("free discharge", "the last plate discharges freely: nothing is recovered after it, so its drop is "
-                   f"that to the vena contracta and it passes only {rating.fl[-1].min():.3g} of the flow (FL)")
+    if plates.line.free_discharge:
+        yield Note(
+            "free discharge",
+            "the last plate discharges freely: nothing is recovered after it, so its drop is "
+            f"that to the vena contracta and it passes only {rating.fl[-1].min():.3g} of the flow (FL)",
+        )
     yield from _flow(rating)
 
 
@@ -163,8 +166,9 @@ def _flow(rating: Rating) -> Iterator[Note]:
     short, over = share < 1.0 - NOTABLE, share > 1.0 + NOTABLE
     if short.any():
         worst = int(np.argmin(share))
-        yield Note("flow", f"the plates do not pass the wanted flow, but {told(rating.passed[worst], 'flow', system)} "
-                   f"of {told(cases.flow[worst], 'flow', system)} in {cases.names[worst]}", 0, _named(rating, short))  # fmt: skip
+        passing, wanted = (told(x[worst], "flow", system) for x in (rating.passed, cases.flow))
+        text = f"the plates do not pass the wanted flow, but {passing} of {wanted} in {cases.names[worst]}"
+        yield Note("flow", text, 0, _named(rating, short))
     if over.any():
         worst = int(np.argmax(share))
         passing = f"the plates pass {told(rating.passed[worst], 'flow', system)} in {cases.names[worst]}"

@@ -6,7 +6,7 @@ RO brine let-down of Kestrel Bay: brine from the membranes at 57 bar to the outf
 >>> cases = Cases.in_units(flow=[60, 85, 95], p1=[51, 57, 60], p2=[3.4, 4.2, 5.0], liquid=brine,
 ...                        names=("start-up", "normal", "maximum"))
 >>> made = Construction.in_units(stress=110, support_diameter=140, bevelled=True)
->>> found = design_set(cases, pipe=0.1071, construction=made, criteria=Criteria(kind="constant", margin=0.1))
+>>> found = design_set(cases, Line.in_units(pipe=107.1), made, Criteria(kind="constant", margin=0.1))
 >>> found.count, found.cases.names[found.governing], found.rating.margin[:, found.governing].min() >= 0.1
 (6, 'maximum', True)
 >>> [round(1e3 * plate.bore, 2) for plate in found.plates.plates] == sorted(round(1e3 * p.bore, 2)
@@ -22,26 +22,27 @@ True
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
-from typing import Any
 
 import numpy as np
 
+from lowpoint.design.bores import Sized, drilled, size
 from lowpoint.design.cases import Cases, Liquid
 from lowpoint.design.checks import told
 from lowpoint.design.criteria import Criteria
 from lowpoint.design.notes import Note
-from lowpoint.design.plates import Construction, PlateSet
+from lowpoint.design.plates import Construction, Line, PlateSet
 from lowpoint.design.rating import Rating, rate
-from lowpoint.design.sizing import Sized, drilled, size
-from lowpoint.design.split import Duty, greedy
+from lowpoint.design.split import Duty, Table
+from lowpoint.design.strength import load_on, strength_notes
 from lowpoint.errors import LowpointError
 from lowpoint.physics.stages import LIQUID, MOST
 
-__all__ = ["Cases", "Construction", "Criteria", "Liquid", "SetDesign", "design_set", "load_on", "rate"]
+__all__ = ["Cases", "Construction", "Criteria", "Line", "Liquid", "SetDesign", "design_set", "rate"]
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class SetDesign:
     """A designed set: ``plates`` as built, ``rating`` of every case with them, ``sized`` before rounding to drills."""
 
@@ -65,7 +66,7 @@ class SetDesign:
     @property
     def length(self) -> float:
         """From the first plate to the last, m."""
-        return (self.count - 1) * float(self.plates.spacing or 0.0)
+        return (self.count - 1) * self.plates.line.apart
 
     @property
     def notes(self) -> tuple[Note, ...]:
@@ -73,50 +74,41 @@ class SetDesign:
         return (*self.rating.notes, *_margin_notes(self), *strength_notes(self.construction, self.plates, self.load))
 
 
-def load_on(construction: Construction, cases: Cases) -> float:
-    """The load of a plate, Pa: p1 - p2 of the worst case (any plate can be the blocked one), or more where stated."""
-    return max(float(np.max(cases.p1 - cases.p2)), construction.differential or 0.0)  # type: ignore[type-var]
-
-
 def design_set(
-    cases: Cases, pipe: float, construction: Construction | None = None, criteria: Criteria | None = None, *,
-    governing: str | None = None, plates: int | None = None, holes: int = 1, spacing: float | None = None,
-    free_discharge: bool = False,
+    cases: Cases, line: Line, construction: Construction | None = None, criteria: Criteria | None = None, *,
+    governing: str | None = None, plates: int | None = None,
 ) -> SetDesign:  # fmt: skip
-    """The set of fewest plates that keeps the margin in the governing case, and every case rated with it. SI.
+    """The set of fewest plates that keeps the margin in the governing case, and every case rated with it.
 
-    Split by equal margin (:mod:`~lowpoint.design.split`), thickness and loss in agreement, bores rounded to drills, then
-    all cases marched plate after plate with choking in force. ``governing`` names the case to size for, else the one
-    that needs the set most open, so that every case's flow passes; the other cases show their margins in the rating.
-    ``plates`` sets the number. ``pipe``: inside diameter, m; ``spacing`` m, six pipe diameters unless given.
+    Split by equal margin (:mod:`~lowpoint.design.split`), thickness and loss in agreement, bores rounded to drills,
+    then all cases marched plate after plate with choking in force. ``governing`` names the case to size for, else the
+    one that needs the set most open, so that every case's flow passes; the other cases show their margins in the
+    rating. ``plates`` sets the number.
 
     LowpointError where the liquid flashes after the last plate, or more than 12 plates were needed.
     """
     construction, criteria = construction or Construction(), criteria or Criteria()
-    apart = 6.0 * pipe if spacing is None else spacing
-    case = cases.governing(governing)
-    duty = _duty(cases, case, pipe, holes, criteria)
-    load = load_on(construction, cases)
+    case, load = cases.governing(governing), load_on(construction, cases)
+    duty = _duty(cases, case, line, construction, criteria)
+    table = Table(duty, lambda bores: construction.likely_length(bores, load, line.pipe))
 
     def sized(count: int) -> Sized:
-        return size(duty, construction, load, count)
+        return size(duty, construction, load, duty.bore(table.shares(count)))
 
     if plates is None:
-        found, fewer = _fewest(duty, sized, construction, criteria, cases, case)
+        found, fewer = _fewest(sized, table, criteria, cases, case)
     else:
         found, fewer = sized(_possible(plates)), None
-    bores = drilled(found, duty, construction, load, criteria)
-    thickness = construction.thickness_for(bores, load)
-    built = PlateSet(pipe, construction.build(bores, thickness, pipe, holes), apart, free_discharge, cases.system)  # type: ignore[arg-type]
+    built = construction.build(drilled(found, duty, construction, load, criteria), load, line)
     return SetDesign(built, rate(built, cases, criteria), found, cases, criteria, construction, case, load, fewer)
 
 
-def _duty(cases: Cases, case: int, pipe: float, holes: int, criteria: Criteria) -> Duty:
+def _duty(cases: Cases, case: int, line: Line, construction: Construction, criteria: Criteria) -> Duty:
     p2, pv = float(cases.p2[case]), float(cases.liquid.pv[case])
     if p2 <= pv:
         must = f"p2 must be above pv = {told(pv, 'pressure', cases.system)}"
         raise LowpointError(f"case '{cases.names[case]}'", must, told(p2, "pressure", cases.system), LIQUID.remedy)
-    return Duty.of(cases, case, pipe, float(holes), criteria.kind)
+    return Duty.of(cases, case, line.pipe, construction.holes, criteria.kind)
 
 
 def _possible(plates: int) -> int:
@@ -126,11 +118,10 @@ def _possible(plates: int) -> int:
 
 
 def _fewest(
-    duty: Duty, sized: Any, construction: Construction, criteria: Criteria, cases: Cases, case: int
+    sized: Callable[[int], Sized], table: Table, criteria: Criteria, cases: Cases, case: int
 ) -> tuple[Sized, Sized | None]:
     """The set of fewest plates that keeps the margin, and the best of one fewer, which does not."""
-    thin = float(construction.bore_length(np.array([construction.thickness or np.nan]), duty.pipe)[0])
-    reached = greedy(duty, thin, criteria.margin)
+    reached = table.greedy(criteria.margin)
     count = max(len(reached), 1)
     if count > MOST + 1:
         raise _too_many(criteria, cases, case, count, float(reached[MOST - 1]))
@@ -172,24 +163,4 @@ def _margin_notes(design: SetDesign) -> list[Note]:
             text = f"the margin to its {design.criteria.kind} limit is {rating.margin[plate, worst]:.3g} in "
             text += f"{design.cases.names[worst]}, below the {wanted:g} asked for"
             found.append(Note("margin", text, plate + 1, cases))
-    return found
-
-
-def strength_notes(construction: Construction, plates: PlateSet, load: float) -> list[Note]:
-    """What is to be said of the thickness of plates: not checked, too thin, or with a caution of the method."""
-    if construction.stress is None:
-        return [Note("strength", "the strength of the plates was not checked: no stress and support_diameter are given")]
-    found = [Note("strength", "a clamped rim is seldom that stiff in service; simple is the safe choice")]
-    found = found if construction.support == "clamped" else []
-    for number, plate in enumerate(plates.plates, 1):
-        needed = float(construction.needed_thickness(np.array([plate.bore]), load)[0])
-        if plate.thickness is not None and plate.thickness < needed * (1.0 - 1e-9):
-            has, must = (told(x, "size", plates.system) for x in (plate.thickness, needed))
-            carries = told(load, "pressure", plates.system)
-            found.append(Note("strength", f"the plate is {has} thick and must be {must} to carry {carries}", number))
-        if needed > 0.125 * construction.support_diameter:  # type: ignore[operator]
-            found.append(Note("strength", "the plate is thicker than a quarter of its support's radius, where thin-plate "
-                              "theory overstates it", number))  # fmt: skip
-        if plate.holes > 1.0 and construction.ligament == 1.0:
-            found.append(Note("strength", "many holes weaken a plate: give their ligament efficiency", number))
     return found

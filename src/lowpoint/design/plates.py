@@ -1,19 +1,19 @@
-"""What is built: one plate, a set of plates in a pipe, and how thick a plate must be made."""
+"""What is built: the line, the plates in it, and how plates are made."""
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from dataclasses import dataclass
+import math
+from dataclasses import dataclass, replace
 from typing import Annotated, Any, ClassVar
 
 import numpy as np
 
 from lowpoint import quantities as q
-from lowpoint.design.checks import Inputs, told
+from lowpoint.design.checks import Inputs, of, told
 from lowpoint.errors import LowpointError
 from lowpoint.physics.plate_strength import plate_thickness
 
-__all__ = ["CLEAR_OF_EACH_OTHER", "Construction", "Plate", "PlateSet"]
+__all__ = ["CLEAR_OF_EACH_OTHER", "Construction", "Line", "Plate", "PlateSet"]
 
 CLEAR_OF_EACH_OTHER = 6.0
 """Pipe diameters between two plates from which their losses add up (common practice)."""
@@ -24,20 +24,51 @@ NO_THICKNESS = (
     "calculation finds."
 )
 
-_SIZE = {"dimension": "size", "low": 0.0}
-Edge = Annotated[q.Floats, q.Quantity("edge", "cylindrical part of a bevelled bore", **_SIZE)]
-Thickness = Annotated[q.Floats, q.Quantity("thickness", "thickness of the plate", **_SIZE)]
-Spacing = Annotated[q.Floats, q.Quantity("spacing", "distance from plate to plate", **_SIZE)]
-Step = Annotated[
-    q.Floats, q.Quantity("step", "steps in which thicknesses come, 0 for any", "size", low=0.0, closed_low=True)
-]
+Bore = Annotated[float, of(q.OrificeBore)]
+BoreLength = Annotated[float, of(q.BoreLength)]
+Holes = Annotated[float, of(q.Holes)]
+Pipe = Annotated[float, of(q.Pipe)]
+Stress = Annotated[float, of(q.Stress)]
+SupportDiameter = Annotated[float, of(q.SupportDiameter)]
+Allowance = Annotated[float, of(q.Allowance)]
+Differential = Annotated[float, of(q.PlateDrop)]
+Edge = Annotated[float, q.Quantity("edge", "cylindrical part of a bevelled bore", "size", low=0.0)]
+Thickness = Annotated[float, q.Quantity("thickness", "thickness of the plate", "size", low=0.0)]
+Spacing = Annotated[float, q.Quantity("spacing", "distance from plate to plate", "size", low=0.0)]
+Step = Annotated[float, q.Quantity("step", "steps in which thicknesses come", "size", low=0.0, closed_low=True)]
 Ligament = Annotated[
-    q.Floats,
-    q.Quantity(
-        "ligament", "ligament efficiency, what many holes leave of the strength", "ratio", low=0.0, high=1.0,
-        closed_high=True,
-    ),
+    float,
+    q.Quantity("ligament", "ligament efficiency, what many holes leave of the strength", "ratio", low=0.0, high=1.0,
+               closed_high=True),
 ]  # fmt: skip
+
+
+def _whole(subject: str, holes: float) -> None:
+    if holes != math.floor(holes):
+        raise LowpointError(subject, "holes must be a whole number", f"{holes:g}")
+
+
+@dataclass(frozen=True)
+class Line(Inputs):
+    """The pipe that plates stand in, SI: inside diameter ``pipe`` (m), ``spacing`` from plate to plate (m).
+
+    ``spacing`` left out is six pipe diameters. ``free_discharge``: the last plate blows into the open or a tank.
+
+    >>> Line.in_units(pipe=102.3).apart
+    0.6138
+    """
+
+    subject: ClassVar[str] = "line"
+
+    pipe: Pipe
+    spacing: Spacing | None = None
+    free_discharge: bool = False
+    system: str = "metric"
+
+    @property
+    def apart(self) -> float:
+        """Distance from plate to plate, m."""
+        return CLEAR_OF_EACH_OTHER * self.pipe if self.spacing is None else self.spacing
 
 
 @dataclass(frozen=True)
@@ -49,48 +80,42 @@ class Plate(Inputs):
 
     subject: ClassVar[str] = "plate"
 
-    bore: q.OrificeBore
-    bore_length: q.BoreLength | None = None
-    holes: q.Holes = 1.0  # type: ignore[assignment]
+    bore: Bore
+    bore_length: BoreLength | None = None
+    holes: Holes = 1.0
     thickness: Thickness | None = None
     system: str = "metric"
 
     def __post_init__(self) -> None:
         super().__post_init__()
-        if self.holes != np.floor(self.holes):
-            raise LowpointError(self.subject, "holes must be a whole number", f"{self.holes:g}")
+        _whole(self.subject, self.holes)
 
 
 @dataclass(frozen=True)
-class PlateSet(Inputs):
-    """Plates one after another in a pipe, first to last, SI (m): inside diameter ``pipe``, ``spacing`` plate to plate.
+class PlateSet:
+    """Plates one after another in a line, first to last."""
 
-    ``spacing`` left out is six pipe diameters. ``free_discharge``: the last plate blows into the open or a tank.
-    """
-
-    subject: ClassVar[str] = "plate set"
-
-    pipe: q.Pipe
+    line: Line
     plates: tuple[Plate, ...]
-    spacing: Spacing | None = None
-    free_discharge: bool = False
-    system: str = "metric"
 
     def __post_init__(self) -> None:
-        super().__post_init__()
-        self._set("plates", tuple(self.plates))
+        object.__setattr__(self, "plates", tuple(self.plates))
         if not self.plates:
-            raise LowpointError(self.subject, "there must be at least one plate", "none")
+            raise LowpointError("plate set", "there must be at least one plate", "none")
         for number, plate in enumerate(self.plates, 1):
             self._inside(number, plate)
 
     def _inside(self, number: int, plate: Plate) -> None:
-        widest = self.pipe / float(np.sqrt(plate.holes))
+        widest = self.pipe / math.sqrt(plate.holes)
         if not plate.bore < widest:
-            holes = "" if plate.holes == 1.0 else f" over the root of {plate.holes:g} holes"
-            limit = f"bore must be below the pipe's inside diameter{holes}, {told(widest, 'size', self.system)}"
-            remedy = "Check that bore and pipe are not swapped, and the worn bore."
-            raise LowpointError(f"plate {number}", limit, told(plate.bore, "size", self.system), remedy)
+            over = "" if plate.holes == 1.0 else f" over the root of {plate.holes:g} holes"
+            must = f"bore must be below the pipe's inside diameter{over} = {told(widest, 'size', plate.system)}"
+            remedy = "Check that bore and pipe are not swapped, and the wear."
+            raise LowpointError(f"plate {number}", must, told(plate.bore, "size", plate.system), remedy)
+
+    @property
+    def pipe(self) -> float:
+        return self.line.pipe
 
     @property
     def count(self) -> int:
@@ -104,9 +129,8 @@ class PlateSet(Inputs):
         """The same set with every bore larger by this share: 0.03 for 3 %."""
         if not -0.5 < share < 1.0:
             must = "wear must be a share of the bore between -0.5 and 1 (0.03 for 3 %)"
-            raise LowpointError(self.subject, must, f"{share:g}")
-        plates = [Plate(p.bore * (1.0 + share), p.bore_length, p.holes, p.thickness, p.system) for p in self.plates]
-        return PlateSet(self.pipe, tuple(plates), self.spacing, self.free_discharge, self.system)
+            raise LowpointError("plate set", must, f"{share:g}")
+        return PlateSet(self.line, tuple(replace(p, bore=p.bore * (1.0 + share)) for p in self.plates))
 
 
 @dataclass(frozen=True)
@@ -114,29 +138,31 @@ class Construction(Inputs):
     """How plates are made, SI. One of: ``thickness`` (m) given, or found from strength, or neither: a thin sharp edge.
 
     Strength: allowable ``stress`` (Pa), ``support_diameter`` (m, gasket mean), ``support`` (``simple``, the safe
-    choice, or ``clamped``), ``allowance`` (m, wear and corrosion), ``ligament`` efficiency of many holes,
-    ``differential`` (Pa): the largest of start-up and shut-in where that is more than p1 - p2 of any case, the load of a
-    blocked plate, which is always taken. Thicknesses are rounded up to ``step`` (m, 1 mm unless given; 0: not rounded).
+    choice, or ``clamped``), ``allowance`` (m, wear and corrosion), ``ligament`` efficiency where ``holes`` are many,
+    ``differential`` (Pa): start-up or shut-in where that is more than p1 - p2 of any case, the load of a blocked
+    plate, which is always taken. Thicknesses are rounded up to ``step`` (m; 1 mm unless given, 0 for any).
     ``bevelled`` downstream, the bore's parallel part is only ``edge`` long (m, 0.02 pipe unless given).
     """
 
     subject: ClassVar[str] = "construction"
 
-    stress: q.Stress | None = None
-    support_diameter: q.SupportDiameter | None = None
+    stress: Stress | None = None
+    support_diameter: SupportDiameter | None = None
     support: str = "simple"
-    allowance: q.Allowance = 0.0  # type: ignore[assignment]
-    ligament: Ligament = 1.0  # type: ignore[assignment]
-    differential: q.PlateDrop | None = None
+    allowance: Allowance = 0.0
+    ligament: Ligament = 1.0
+    differential: Differential | None = None
     thickness: Thickness | None = None
-    step: Step = 1e-3  # type: ignore[assignment]
+    step: Step = 1e-3
     bevelled: bool = False
     edge: Edge | None = None
+    holes: Holes = 1.0
     system: str = "metric"
 
     def __post_init__(self) -> None:
         super().__post_init__()
         self._word("support", ("simple", "clamped"))
+        _whole(self.subject, self.holes)
         for given, needed in (("stress", "support_diameter"), ("support_diameter", "stress")):
             if getattr(self, given) is not None and getattr(self, needed) is None:
                 raise LowpointError(self.subject, f"{needed} must be given where {given} is", "nothing")
@@ -144,8 +170,8 @@ class Construction(Inputs):
             raise LowpointError(self.subject, "edge must be left out of a plate that is not bevelled",
                                 told(self.edge, "size", self.system), "Set bevelled, or leave edge out.")  # fmt: skip
         if self.bevelled and self.thickness is None and self.stress is None:
-            raise LowpointError(self.subject, "thickness, or stress and support_diameter, must be given where bevelled "
-                                "is", "nothing")  # fmt: skip
+            must = "thickness, or stress and support_diameter, must be given where bevelled is"
+            raise LowpointError(self.subject, must, "nothing")
 
     def needed_thickness(self, bore: Any, load: float) -> Any:
         """Thickness that strength asks for, rounded up to the step, at bores (any shape); NaN where none is asked for.
@@ -153,32 +179,41 @@ class Construction(Inputs):
         LowpointError where no plate that thin-plate theory covers carries the load.
         """
         bore = np.asarray(bore)
+        found = self._strong_enough(bore, load)
+        if self.stress is not None and self.support_diameter is not None and np.isnan(found).any():
+            self._refuse(float(bore[np.isnan(found)].flat[0]), load, self.support_diameter, self.stress * self.ligament)
+        return found
+
+    def _strong_enough(self, bore: Any, load: float) -> Any:
+        """As :meth:`needed_thickness`, NaN where no plate carries the load."""
         if self.stress is None:
             return np.full(bore.shape, np.nan)
-        drop, support, stress = (np.full(bore.shape, x) for x in (load, self.support_diameter, self._allowable()))
-        found = plate_thickness(drop, support, bore, stress, self.support, self.allowance)
-        if np.isnan(found).any():
-            self._refuse(float(bore[np.isnan(found)].flat[0]), load)
+        values = (load, self.support_diameter, self.stress * self.ligament, self.allowance)
+        drop, support, stress, allowance = (np.full(bore.shape, value, np.float64) for value in values)
+        found = plate_thickness(drop, support, bore, stress, self.support, allowance)
         # A thickness that is a whole step but for a rounding is that step.
         return found if self.step == 0.0 else np.ceil(found / self.step - 1e-9) * self.step
 
-    def _allowable(self) -> float:
-        return float(self.stress * self.ligament)  # type: ignore[operator]
-
-    def _refuse(self, bore: float, load: float) -> None:
-        size, support = told(bore, "size", self.system), told(self.support_diameter, "size", self.system)  # type: ignore[arg-type]
-        if bore >= self.support_diameter:  # type: ignore[operator]
-            raise LowpointError(self.subject, f"support_diameter must be above the bore, {size}", support)
-        must = f"a plate with a bore of {size} must carry {told(load, 'pressure', self.system)} at a thickness below "
-        must += "half its support diameter"
-        raise LowpointError(self.subject, must, f"none on {support} at {told(self._allowable(), 'stress', self.system)}",
-                            NO_THICKNESS)  # fmt: skip
+    def _refuse(self, bore: float, load: float, support: float, stress: float) -> None:
+        size, rim = told(bore, "size", self.system), told(support, "size", self.system)
+        if bore >= support:
+            raise LowpointError(self.subject, f"support_diameter must be above the bore = {size}", rim)
+        must = f"a plate with a bore of {size} must carry {told(load, 'pressure', self.system)} at a thickness of at "
+        must += "most half its support diameter"
+        got = f"none on {rim} at {told(stress, 'stress', self.system)}"
+        raise LowpointError(self.subject, must, got, NO_THICKNESS)
 
     def thickness_for(self, bore: Any, load: float) -> Any:
         """Thickness as made: the one given, else the one needed, else NaN."""
         if self.thickness is not None:
             return np.full(np.shape(bore), self.thickness)
         return self.needed_thickness(bore, load)
+
+    def likely_length(self, bore: Any, load: float, pipe: float) -> Any:
+        """Bore length of plates made for a load; 0 where no plate carries it."""
+        given = self.thickness is not None
+        thickness = np.full(bore.shape, self.thickness) if given else self._strong_enough(bore, load)
+        return self.bore_length(thickness, pipe)
 
     def bore_length(self, thickness: Any, pipe: float) -> Any:
         """Parallel part of the bore of plates of this thickness; 0, a sharp edge, where no thickness is known."""
@@ -187,10 +222,11 @@ class Construction(Inputs):
             return thickness
         return np.minimum(thickness, LONGEST_EDGE * pipe if self.edge is None else self.edge)
 
-    def build(self, bores: Sequence[float], thickness: Any, pipe: float, holes: float) -> tuple[Plate, ...]:
-        """The plates of these bores and thicknesses."""
-        lengths = self.bore_length(thickness, pipe)
-        return tuple(
-            Plate(bore, length or None, holes, None if np.isnan(thick) else thick, self.system)  # type: ignore[arg-type]
+    def build(self, bores: Any, load: float, line: Line) -> PlateSet:
+        """Plates of these bores, made for a load."""
+        thickness = self.thickness_for(bores, load)
+        lengths = self.bore_length(thickness, line.pipe)
+        return PlateSet(line, tuple(
+            Plate(float(bore), float(length) or None, self.holes, None if np.isnan(thick) else float(thick), self.system)
             for bore, length, thick in zip(bores, lengths, thickness, strict=True)
-        )
+        ))  # fmt: skip

@@ -13,7 +13,7 @@ from lowpoint.design.criteria import Criteria
 from lowpoint.design.march import Geometry, march
 from lowpoint.design.notes import Note, notes, rules
 from lowpoint.design.plates import PlateSet
-from lowpoint.physics.orifices import orifice_drop, orifice_limit
+from lowpoint.physics.orifices import orifice_drop
 from lowpoint.physics.regime import regime_word
 
 __all__ = ["Rating", "State", "rate"]
@@ -43,7 +43,7 @@ class State:
     regime: str
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Rating:
     """What plates do in each case. Arrays of (plates, cases) unless said; SI; indices and limits in upstream form.
 
@@ -145,11 +145,7 @@ def rate(plates: PlateSet, cases: Cases, criteria: Criteria | None = None, worn:
     shape = (plates.count, cases.count)
     p_in, p_out = gone.pressures[:-1], gone.pressures[1:]
     pv = cases.liquid.pv
-    pipe = np.full(geometry.bore.shape, plates.pipe)
-    incipient, constant = (
-        np.broadcast_to(orifice_limit(k, geometry.bore, pipe, geometry.bore_length, geometry.holes), shape)
-        for k in ("incipient", "constant")
-    )
+    incipient, constant = (np.broadcast_to(geometry.limit(kind), shape) for kind in ("incipient", "constant"))
     choking = (p_in - pv) / (gone.loss.recovery2 * (p_in - cases.critical_floor))
     sigma = (p_in - pv) / (p_in - p_out)
     # A choked plate is at its limit, on whichever side of it the last bit fell.
@@ -164,8 +160,9 @@ def rate(plates: PlateSet, cases: Cases, criteria: Criteria | None = None, worn:
 
 
 def _tap_drop(geometry: Geometry, cases: Cases, flow: Any, taps: str) -> Any:
-    liquid = cases.liquid
-    return orifice_drop(
-        flow, geometry.bore, np.full(geometry.bore.shape, geometry.pipe), liquid.density, liquid.viscosity,
-        geometry.bore_length, geometry.holes, taps,
-    )  # fmt: skip
+    columns: tuple[Any, ...] = (
+        np.full(geometry.bore.shape, geometry.pipe),
+        cases.liquid.density,
+        cases.liquid.viscosity,
+    )
+    return orifice_drop(flow, geometry.bore, *columns, geometry.bore_length, geometry.holes, taps)

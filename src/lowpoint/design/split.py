@@ -6,13 +6,14 @@ With the drop of a plate ``dp(bore) = K x`` and its limit ``L(bore)`` the condit
     head_(i-1) = (1 + m) L(bore_i) dp(bore_i)      head_i = head_(i-1) - dp(bore_i)      head_n = p2 - base
 
 with ``head = p - pv`` for the incipient and constant limits; for choking ``head = p - FF pv`` and ``L = 1/FL^2``, which
-is the same condition. A root search in the logarithms of the n bores and of 1 + m, from the split of equal index.
+is the same condition. A root search in the logarithms of the n bores and of 1 + m, by Newton's method from a table.
 Source: derived from the definition of the index.
 """
 
 from __future__ import annotations
 
 import math
+from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Any
 
@@ -23,7 +24,7 @@ from lowpoint.errors import LowpointError
 from lowpoint.physics.orifices import NARROWEST, WIDEST, orifice_limit
 from lowpoint.physics.plate_loss import losses
 
-__all__ = ["Duty", "Split", "equal_margin", "greedy"]
+__all__ = ["Duty", "Split", "Table", "equal_margin"]
 
 MOST_STEPS = 60
 NUDGE = 1e-6
@@ -62,8 +63,14 @@ class Duty:
         """Bore from the logarithm of the root of the open share."""
         return self.pipe / math.sqrt(self.holes) * np.exp(log_share)
 
+    @property
+    def heads(self) -> tuple[float, float]:
+        """Heads before the first plate and after the last."""
+        return self.p1 - self.base, self.p2 - self.base
+
     def curves(self, bore: Any, bore_length: Any) -> tuple[Any, Any]:
         """Drop (Pa) and limit of plates with these bores."""
+        bore_length = bore_length if np.any(bore_length) else None
         pipe, holes = np.full(len(bore), self.pipe), np.full(len(bore), self.holes)
         loss = losses(bore, pipe, bore_length, holes, self.reynolds)
         if self.kind == "choked":
@@ -71,9 +78,9 @@ class Duty:
         return loss.k * self.dynamic, orifice_limit(self.kind, bore, pipe, bore_length, holes)
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Split:
-    """A drop over plates: ``bores`` (m), ``pressures`` (Pa, one more), ``limits``, ``drops`` (Pa), common ``margin``."""
+    """A drop over plates: ``bores`` (m), ``pressures`` (Pa, one more), ``drops`` (Pa), ``limits``, ``margin`` of all."""
 
     bores: Any
     pressures: Any
@@ -82,12 +89,51 @@ class Split:
     margin: float
 
 
-def _start(duty: Duty, bore_length: Any, count: int) -> Any:
-    """Logarithms of the open shares of the split of equal index, read off a table."""
-    shares = np.linspace(CLOSED, OPEN, 80)
-    drops, _ = duty.curves(duty.bore(shares), np.full(80, float(np.mean(bore_length))))
-    heads = (duty.p1 - duty.base) * ((duty.p2 - duty.base) / (duty.p1 - duty.base)) ** (np.arange(count + 1) / count)
-    return np.interp(-np.log(-np.diff(heads)), -np.log(drops), shares)
+class Table:
+    """The drop and the limit of a plate over its bore, read off 200 bores: for first guesses and for counting plates.
+
+    ``bore_length`` gives the bore length (m) that strength asks for at bores.
+    """
+
+    def __init__(self, duty: Duty, bore_length: Callable[[Any], Any]) -> None:
+        self._duty = duty
+        self._shares = np.linspace(CLOSED, OPEN, 200)
+        bores = duty.bore(self._shares)
+        drops, limits = duty.curves(bores, bore_length(bores))
+        self._drops = np.log(drops)
+        self._needs = -np.log(limits * drops)  # rises with the bore
+
+    def _head_after(self, head: Any, log_margin: Any) -> Any:
+        """Head after the plate that takes the most of this head at a margin."""
+        drop = np.exp(np.interp(log_margin - np.log(head), self._needs, self._drops))
+        return np.maximum(head - drop, 1e-6 * head)
+
+    def shares(self, count: int) -> Any:
+        """Logarithms of the root of the open shares of ``count`` plates of equal margin, nearly."""
+        head, last = self._duty.heads
+        margins = np.linspace(math.log(0.02), math.log(50.0), 200)
+        heads = np.full(len(margins), head)
+        for _ in range(count):
+            heads = self._head_after(heads, margins)
+        log_margin = np.interp(math.log(last), np.log(heads), margins)
+        found = []
+        for _ in range(count):
+            found.append(np.interp(log_margin - math.log(head), self._needs, self._shares))
+            head = float(self._head_after(head, log_margin))
+        return np.array(found)
+
+    def greedy(self, margin: float, most: int = 100) -> Any:
+        """Pressures after plates that each take the largest drop that keeps the margin, until p2 is reached.
+
+        No set reaches p2 with fewer plates of that margin; as read off a table, the number may be one off.
+        The march ends after ``most`` plates.
+        """
+        head, last = self._duty.heads
+        pressures: list[float] = []
+        while head > last * (1.0 + 1e-9) and len(pressures) < most:
+            head = float(self._head_after(head, math.log1p(margin)))
+            pressures.append(self._duty.base + head)
+        return np.array(pressures)
 
 
 def _residual(duty: Duty, drops: Any, limits: Any, log_margin: float) -> Any | None:
@@ -110,15 +156,13 @@ def _jacobian(duty: Duty, drops: Any, slopes: Any, slopes_both: Any) -> Any:
     return jacobian
 
 
-def equal_margin(duty: Duty, bore_length: Any, start: Any = None) -> Split:
+def equal_margin(duty: Duty, bore_length: Any, start: Any) -> Split:
     """The split of equal margin over as many plates as there are bore lengths (m; 0: sharp edge).
 
-    ``start``: bores to begin with. LowpointError where no bores take the drop.
+    ``start``: bores (m) to begin with. LowpointError where no bores take the drop.
     """
-    bore_length = np.asarray(bore_length, np.float64)
-    each = duty.pipe / math.sqrt(duty.holes)
-    u = _start(duty, bore_length, len(bore_length)) if start is None else np.log(np.asarray(start) / each)
-    log_margin, count, lengths = 0.0, len(u), np.tile(bore_length, 2)
+    u = np.log(np.asarray(start) * (math.sqrt(duty.holes) / duty.pipe))
+    log_margin, count, lengths = 0.0, len(u), np.tile(np.asarray(bore_length, np.float64), 2)
     drops, limits = np.zeros(count), np.zeros(count)
     for step in range(MOST_STEPS):
         both = duty.curves(duty.bore(np.concatenate([u, u + NUDGE])), lengths)
@@ -141,19 +185,3 @@ def equal_margin(duty: Duty, bore_length: Any, start: Any = None) -> Split:
                             "Choose another pipe size, or another number of plates.")  # fmt: skip
     pressures = duty.p1 - np.concatenate([[0.0], np.cumsum(drops)])
     return Split(duty.bore(u), pressures, drops, limits, math.expm1(log_margin))
-
-
-def greedy(duty: Duty, bore_length: float, margin: float, most: int = 100) -> Any:
-    """Pressures after plates that each take the largest drop that keeps the margin, until p2 or ``most`` are reached.
-
-    No set reaches p2 with fewer plates of that margin. Read off a table, so a number of plates may be one off.
-    """
-    shares = np.linspace(CLOSED, OPEN, 200)
-    drops, limits = duty.curves(duty.bore(shares), np.full(200, bore_length))
-    needed, log_drops = -np.log((1.0 + margin) * limits * drops), np.log(drops)  # the first rises with the bore
-    head, last = duty.p1 - duty.base, duty.p2 - duty.base
-    pressures = []
-    while head > last * (1.0 + 1e-9) and len(pressures) < most:
-        head -= math.exp(np.interp(-math.log(head), needed, log_drops))
-        pressures.append(duty.base + head)
-    return np.array(pressures)

@@ -21,6 +21,7 @@ COMMANDS = {
     "starter": "write a book to begin with",
     "functions": "the reference of the worksheet functions",
     "calc": "the add-in that puts the LP_ functions into the cells of LibreOffice Calc",
+    "excel": "the add-in that puts the LP_ functions into the cells of Excel",
 }
 """Each command with its one line of help; its module in this package has ``fill(parser)`` and ``run(options)``."""
 

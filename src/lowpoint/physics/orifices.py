@@ -44,6 +44,8 @@ REFERENCE_PIPE = 0.1
 """m, the pipe up to which the published limits hold as they stand."""
 NARROWEST, WIDEST = 1e-3, math.sqrt(0.998)
 """Root of the open share between which a bore is looked for."""
+DROPS = ("net", "corner", "flange", "radius")
+"""What the words of ``taps`` ask for."""
 NEAR = 0.03
 """How far the logarithm of the first guess of a bore may lie off, most often."""
 
@@ -125,14 +127,20 @@ def orifice_drop(
     Source: ISO 5167-2:2003; Idelchik.
     """
     reynolds = _reynolds(flow, pipe, density, viscosity)
-    velocity = flow / _area(pipe)
-    net = 0.5 * density * velocity * velocity * orifice_loss(bore, pipe, bore_length, holes, reynolds)
-    if isinstance(taps, str) and taps == "net":
-        return net
-    drop = net
-    for kind in ("corner", "flange", "radius"):
-        drop = np.where(taps == kind, _tap_drop(flow, bore, pipe, density, reynolds, kind), drop)
-    return np.where(_no_tap_drop(bore, pipe, bore_length, holes, taps) | np.isnan(net), np.nan, drop)
+
+    def between(kind: str) -> Any:
+        if kind != "net":
+            return _tap_drop(flow, bore, pipe, density, reynolds, kind)
+        velocity = flow / _area(pipe)
+        return 0.5 * density * velocity * velocity * orifice_loss(bore, pipe, bore_length, holes, reynolds)
+
+    if isinstance(taps, str):
+        drop = between(taps)
+        if taps == "net":
+            return drop
+    else:
+        drop = np.select([taps == kind for kind in DROPS], [between(kind) for kind in DROPS], np.nan)
+    return np.where(_no_tap_drop(bore, pipe, bore_length, holes, taps), np.nan, drop)
 
 
 def _heads(p1: Any, p2: Any, pv: Any, pc: Any) -> tuple[Any, Any]:

@@ -21,8 +21,13 @@ CASES = 20
 _HEAD = 34
 FIRST_ROW = _HEAD + 1
 """The first row of the chart's data."""
-_MARKS = (("incipient", "triangle", "E0A100", 7), ("constant", "diamond", "7B8F3A", 7), ("damage", "square", "C2571A", 7),
-          ("choked", "dash", "1D2B36", 10))  # fmt: skip
+_MARKS = (
+    ("incipient", "triangle", "E0A100", 7),
+    ("constant", "diamond", "7B8F3A", 7),
+    ("damage", "square", "C2571A", 7),
+    ("choked", "dash", "1D2B36", 10),
+)
+"""Limits with the form, the colour and the size of their marks: told apart by form too."""
 
 
 def write(book: Any, plant: Plant) -> None:

@@ -17,7 +17,7 @@ GROUPS = {
     "liquid": "Operating case and liquid",
     "valve": "Valve",
     "limits": "Limits as tested (upstream form)",
-    "state": "Liquid at the valve",
+    "state": "At the valve",
     "sizing": "Sizing",
     "index": "Index and limits at this size, pressure and installation",
     "result": "Result",
@@ -63,15 +63,19 @@ def _or_given(given: str, formula: str) -> str:
     return f"=IF(ISBLANK({given}),{formula},{given})"
 
 
-def _scaled(limit: str) -> str:
+def _where_given(limit: str, call: str) -> str:
     """A limit that is not given is left out with an empty text, which LP_ functions take for a blank cell."""
-    call = "LP_SIGMA_SCALED({%s_ref},{valve_size},{size_ref},{p1}-{pv},{head_ref},{size_exponent},{head_exponent},Scale_method)"
-    return '=IF(ISBLANK({%s_ref}),"",' % limit + call % limit + ")"
+    return f'=IF(ISBLANK({{{limit}_ref}}),"",{call})'
+
+
+def _scaled(limit: str) -> str:
+    test = "{size_ref},{p1}-{pv},{head_ref},{size_exponent},{head_exponent}"
+    return _where_given(limit, f"LP_SIGMA_SCALED({{{limit}_ref}},{{valve_size}},{test},Scale_method)")
 
 
 def _installed(limit: str) -> str:
-    call = "LP_LIMIT_INSTALLED({%s_scaled},{coefficient},{valve_size},{pipe_in},{pipe_out})"
-    return '=IF(ISBLANK({%s_ref}),"",' % limit + call % limit + ")"
+    sizes = "{coefficient},{valve_size},{pipe_in},{pipe_out}"
+    return _where_given(limit, f"LP_LIMIT_INSTALLED({{{limit}_scaled}},{sizes})")
 
 
 _GIVEN = "Type a value where the liquid is not one that Lowpoint knows; it goes before the computed one."
@@ -109,7 +113,7 @@ COLUMNS: tuple[Column, ...] = (
     Column("pv_given", "liquid", "Vapour pressure, if given", "LP_COEFFICIENT.pv", "pressure", "fine", 10, note=_GIVEN),
     Column("pc_given", "liquid", "Critical pressure, if given", "LP_COEFFICIENT.pc", "pressure", "pressure", 10,
            note=_GIVEN),
-    Column("density_given", "liquid", "Density, if given", "LP_COEFFICIENT.density", "density", "density", 9,
+    Column("density_given", "liquid", "Density, if given", "LP_COEFFICIENT.density", "density", "typed", 9,
            note=_GIVEN),
     # --- valve ---
     Column("style", "valve", "Style", "LP_TYPICAL.style", width=44, words="styles"),
@@ -122,7 +126,7 @@ COLUMNS: tuple[Column, ...] = (
            words="characteristics", note="Or the name of a table on sheet Valves, as a remark; the formulas of the row "
            "then read that table."),
     Column("rangeability", "valve", "Rangeability", "LP_TRAVEL.rangeability", "ratio", "whole", 11),
-    Column("fl", "valve", "FL", "LP_COEFFICIENT.fl", "ratio", "factor", 7,
+    Column("fl", "valve", "FL", "LP_COEFFICIENT.fl", "ratio", "factor", 9.5,
            note="In rows with a vendor's table it is read from the table at the opening."),
     Column("fl_basis", "valve", "Basis of FL", width=10.5, words="bases", note="tested, published or estimated."),
     Column("fd", "valve", "Fd", "LP_XFZ.fd", "ratio", "factor", 6.5),
@@ -196,14 +200,14 @@ COLUMNS: tuple[Column, ...] = (
            note="The limit of column Limit to keep, at this size, pressure and installation.",
            formula='=CHOOSE(MATCH({keep},{{"incipient","constant","damage","choked"}},0),{incipient},{constant},'
            "{damage},{choked})"),
-    Column("kept", "result", "Kept?", fmt="verdict", width=7.5, note="no: the index is at or below the limit to keep.",
+    Column("kept", "result", "Kept?", fmt="verdict", width=11, note="no: the index is at or below the limit to keep.",
            formula='=IF({margin}>0,"yes","no")'),
     Column("allowed_drop", "result", "Largest drop that keeps it", "LP_ALLOWED_DROP", "pressure", "pressure", 10,
            formula="=LP_ALLOWED_DROP({p1},{pv},{limit})"),
     Column("vapour", "result", "Vapour after the valve", "LP_FLASH", "ratio", "percent", 9,
            note="Mass fraction; 0 where the outlet is above the vapour pressure.",
            formula="=IF({p2}>{pv},0,LP_FLASH({fluid},{t},{p1},{p2}))"),
-    Column("why", "result", "Why (LP_WHY)", "LP_WHY", width=96,
+    Column("why", "result", "Why (LP_WHY)", "LP_WHY", width=118,
            note="The first step of the row that has no answer, in words; else what the required coefficient cautions "
            "about, or ok.", formula=chain(BY_CHARACTERISTIC)),
     Column("remark", "result", "Remark", width=44, note="Yours: whatever a reader of this row should know."),

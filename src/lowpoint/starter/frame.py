@@ -75,7 +75,7 @@ def put_table(
             cell.font = style.INPUT if place in typed else style.PLAIN
             if place in typed:
                 cell.fill = style.fill("sand")
-            cell.border = style.Border(bottom=style.THIN)
+            cell.border = style.LINE_BELOW
             if head.fmt in ("text", "tag", "verdict"):
                 cell.alignment = style.INDENTED
     return row + 1

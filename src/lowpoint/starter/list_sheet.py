@@ -21,8 +21,10 @@ __all__ = ["LETTERS", "TITLE", "inputs_of", "write"]
 TITLE = "List"
 LETTERS = {column.key: get_column_letter(place) for place, column in enumerate(COLUMNS, start=1)}
 """The column of the sheet by key."""
-_OF_ITEM = ("area", "service", "fluid", "salinity", "p_unit", "style", "direction", "valve_size", "pipe_in",
-            "pipe_out", "rated", "characteristic", "rangeability", "fl_basis", "fd", "limits_basis", "keep")  # fmt: skip
+_OF_ITEM = (
+    "area", "service", "fluid", "salinity", "p_unit", "style", "direction", "valve_size", "pipe_in", "pipe_out",
+    "rated", "characteristic", "rangeability", "fl_basis", "fd", "limits_basis", "keep",
+)  # fmt: skip
 """Repeated in every row of an item, so that each row is complete; shown faint from its second row on."""
 
 
@@ -125,6 +127,10 @@ def _mark(sheet: Any, last: int) -> None:
     """Conditional formats: findings, the first row of an item, what it repeats."""
     add = sheet.conditional_formatting.add
     everything = f"A{FIRST}:{LETTERS['unanswered']}{last}"
+    # First, since the rules after it end the search where they apply.
+    first_of_item = style.rule(f"$A{FIRST}<>$A{FIRST - 1}", last=False)
+    first_of_item.dxf.border = Border(top=Side(style="thin", color=style.COLOURS["mid"]))
+    add(everything, first_of_item)
     for key in ("verdict", "regime"):
         cells = f"{LETTERS[key]}{FIRST}"
         style.mark_verdicts(sheet, f"{cells}:{LETTERS[key]}{last}", cells)
@@ -133,9 +139,6 @@ def _mark(sheet: Any, last: int) -> None:
     add(f"{margin}:{LETTERS['margin']}{last}",
         style.rule(f"AND(ISNUMBER({margin}),{margin}<=0)", ink="bad", bold=True, last=False))  # fmt: skip
     style.mark_errors(sheet, everything, f"A{FIRST}")
-    first_of_item = style.rule(f"$A{FIRST}<>$A{FIRST - 1}", last=False)
-    first_of_item.dxf.border = Border(top=Side(style="thin", color=style.COLOURS["mid"]))
-    add(everything, first_of_item)
     for key in _OF_ITEM:
         letter = LETTERS[key]
         again = f"AND($A{FIRST}=$A{FIRST - 1},{letter}{FIRST}={letter}{FIRST - 1})"
@@ -150,7 +153,7 @@ def _choose_from_lists(sheet: Any) -> None:
         choice = DataValidation(
             type="list", formula1=f"Words_{column.words}", allow_blank=True, errorStyle="warning",
             showErrorMessage=True, errorTitle=column.heading,
-            error=f"This word is not in the list {column.words.replace('_', ' ')} of sheet Words. Keep it all the same?",
+            error=f"Not in the list {column.words.replace('_', ' ')} of sheet Words. Keep it all the same?",
         )  # fmt: skip
         sheet.add_data_validation(choice)
         letter = LETTERS[column.key]

@@ -27,7 +27,8 @@ _BASES = (
     ("estimated", "A formula gives it (here the inception estimate of IEC 60534-8-4). A screening value."),
 )
 _CAUTIONS = (
-    "Lowpoint supports a qualified engineer. Vendor test data, site rules, local codes and licensed practice come first.",
+    "Lowpoint supports a qualified engineer. Vendor test data, site rules, local codes and licensed practice come "
+    "first.",
     "Everything in this book is invented: plant, tags, flows, FL, limits and exponents are demo values of no vendor.",
     "A throat pressure above the vapour pressure is never evidence of no cavitation: only the limits judge.",
     "Pressures are those at the valve, absolute once computed. The readings say in each row whether they are gauge.",
@@ -51,12 +52,12 @@ def write(book: Any, plant: Plant) -> None:
     """Add the sheet as the first of the book."""
     sheet = book.create_sheet("Read me", 0)
     style.title(sheet, f"{plant.name}: cavitation of control valves in liquid service", f"A valve list that computes "
-                f"itself: {len(plant.items)} items of an invented island utility, each with its operating cases.")  # fmt: skip
+                f"itself: {len(plant.items)} items of an invented utility, each with its operating cases.")  # fmt: skip
     sheet.column_dimensions["A"].width, sheet.column_dimensions["B"].width = 18, 112
     row = _section(sheet, 4, "The sheets", (
         ("Summary", "Counts by state of the flow and by area, the worst ten items, every case without an answer."),
         ("Items", "One row an item, judged by the worst of its cases. This is the sheet to issue."),
-        ("List", "One row an item and case: inputs, then every intermediate value. Notes on the headings say what each is."),
+        ("List", "One row an item and case: inputs, then every intermediate value. Notes on the headings tell more."),
         ("Chart", "Index against limits of the worst cases."),
         ("Valves", "Vendors' tables of coefficient, FL and incipient index over the opening."),
         ("Site", "Elevation and barometric pressure of the areas; gauge readings made absolute."),
@@ -95,7 +96,7 @@ def _section(sheet: Any, row: int, title: str, lines: Any) -> int:
         cell = sheet.cell(row, 2, text)
         cell.font, cell.alignment = style.PLAIN, style.WRAP
         sheet.cell(row, 1).alignment = style.TOP
-        sheet.row_dimensions[row].height = 13 * (1 + len(text) // 118) + 2
+        sheet.row_dimensions[row].height = 13 * (1 + len(text) // 126) + 2
         if title == "State of the flow":
             style.mark_verdicts(sheet, f"A{row}", f"A{row}")
     return row + 2

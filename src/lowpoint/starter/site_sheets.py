@@ -71,7 +71,7 @@ def _conversions(sheet: Any, row: int, plant: Plant, metric: bool) -> None:
     """Readings made absolute at the valve: gauge to absolute, then the column of liquid between gauge and valve."""
     bar, rise, rho = (unit_label(name, plant.system) for name in ("pressure", "elevation", "density"))
     units = words_of_set(plant.system)
-    readings = (
+    readings: tuple[tuple[float, str, float, float, str], ...] = (
         (4.5, plant.areas[0].name, 0.0, 1025.0, "gauge beside the valve"),
         (6.2, plant.areas[-1].name, 12.0, 610.0, "gauge 12 m below the valve"),
         (2.8, plant.areas[3].name, -8.5, 965.0, "gauge 8.5 m above the valve"),

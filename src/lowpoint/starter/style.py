@@ -15,8 +15,11 @@ from openpyxl.styles import Alignment, Border, Font, PatternFill, Side
 from openpyxl.styles.differential import DifferentialStyle
 from openpyxl.worksheet.page import PageMargins
 
-__all__ = ["BAND", "COLOURS", "FORMATS", "HEAD", "INDENTED", "INPUT", "LEFT", "NOTE", "PLAIN", "SUBTITLE", "TITLE", "TOP", "WRAP",
-           "chart_title", "fill", "font", "heading", "mark_errors", "mark_verdicts", "mark_word", "print_setup", "rule", "title"]  # fmt: skip
+__all__ = [
+    "BAND", "COLOURS", "FORMATS", "HEAD", "INDENTED", "INPUT", "LEFT", "LINE_BELOW", "NOTE", "PLAIN", "SUBTITLE",
+    "TITLE", "TOP", "TOP_NUMBER", "WRAP", "chart_title", "fill", "font", "heading", "mark_errors", "mark_verdicts",
+    "mark_word", "print_setup", "rule", "title",
+]  # fmt: skip
 
 COLOURS = {
     "ink": "1D2B36",
@@ -52,9 +55,11 @@ TITLE, SUBTITLE, NOTE = font("deep", 15, bold=True), font("mid", 10), font("quie
 HEAD, BAND = font("white", 9, bold=True), font("deep", 9, bold=True)
 LEFT = Alignment(horizontal="left", vertical="center")
 INDENTED = Alignment(horizontal="left", vertical="center", indent=1)
-WRAP, TOP = Alignment(wrap_text=True, vertical="top"), Alignment(vertical="top")
+WRAP = Alignment(wrap_text=True, vertical="top", indent=1)
+TOP = Alignment(horizontal="left", vertical="top", indent=1)
+TOP_NUMBER = Alignment(horizontal="right", vertical="top")
 CENTRE = Alignment(horizontal="center", vertical="center", wrap_text=True)
-THIN = Side(style="thin", color=COLOURS["line"])
+LINE_BELOW = Border(bottom=Side(style="thin", color=COLOURS["line"]))
 
 FORMATS = {
     "metric": {"pressure": "0.00", "fine": "0.0000", "flow": "#,##0.0", "density": "0.0", "size": "0.0",
@@ -62,8 +67,8 @@ FORMATS = {
     "us": {"pressure": "0.0", "fine": "0.000", "flow": "#,##0.0", "density": "0.00", "size": "0.00",
            "coefficient": "#,##0.00"},
 }  # fmt: skip
-_COMMON = {"text": "@", "tag": "@", "verdict": "General", "one": "0.0", "whole": "0", "factor": "0.00",
-           "index": "0.000", "percent": "0.0%", "working": "0.00"}  # fmt: skip
+_COMMON = {"text": "@", "tag": "@", "verdict": "General", "one": "0.0", "typed": "0.0##", "whole": "0",
+           "factor": "0.00", "index": "0.000", "percent": "0.0%", "working": "0.00"}  # fmt: skip
 for _formats in FORMATS.values():
     _formats.update(_COMMON)
 
@@ -106,7 +111,7 @@ def rule(
 
 
 def mark_verdicts(sheet: Any, area: str, first: str) -> None:
-    """Colour cells that hold a verdict word (the word itself stays), or an error; ``first`` is the area's first cell."""
+    """Colour cells that hold a verdict word (the word stays), or an error; ``first`` is the area's first cell."""
     add = sheet.conditional_formatting.add
     add(area, rule(f"ISERROR({first})", "fault", ink="bad", bold=True))
     add(area, rule(_holds(first, _WORST), "bad", ink="white", bold=True))

@@ -101,11 +101,12 @@ def _chart(sheet: Any, last: int) -> Any:
 
 def _areas(sheet: Any, row: int, plant: Plant, formats: dict[str, str]) -> int:
     _section(sheet, row, "By area")
-    heads = [Head("Area", 29), Head("Cases", 11, "whole"), Head("Items", 8, "whole"), Head("Keep their limit", 13, "whole"),
-             Head("At or below it", 11, "whole"), Head("Without an answer", 11, "whole"),
-             Head("Least margin", 11, "percent")]  # fmt: skip
+    heads = [Head("Area", 29), Head("Cases", 11, "whole"), Head("Items", 8, "whole"),
+             Head("Keep their limit", 13, "whole"), Head("At or below it", 11, "whole"),
+             Head("Without an answer", 11, "whole"), Head("Least margin", 11, "percent")]  # fmt: skip
     rows = [
-        (area.name, f"=COUNTIF(List_area,A{at})", f"=COUNTIF(Items_area,A{at})", f'=COUNTIFS(List_area,A{at},List_kept,"yes")',
+        (area.name, f"=COUNTIF(List_area,A{at})", f"=COUNTIF(Items_area,A{at})",
+         f'=COUNTIFS(List_area,A{at},List_kept,"yes")',
          f'=COUNTIFS(List_area,A{at},List_kept,"no")', f'=COUNTIFS(List_area,A{at},List_errors,">0")',
          f'=IF(COUNTIFS(List_area,A{at},List_rank,"<1E+99")=0,"",_xlfn.MINIFS(List_rank,List_area,A{at}))')
         for at, area in enumerate(plant.areas, start=row + 2)
@@ -155,6 +156,7 @@ def _unanswered(sheet: Any, row: int, formats: dict[str, str]) -> None:
         sheet.merge_cells(start_row=at, start_column=5, end_row=at, end_column=8)
         if at >= first:
             sheet.cell(at, 5).alignment = style.WRAP
+            sheet.cell(at, 3).alignment = style.TOP_NUMBER
             sheet.row_dimensions[at].height = 26
-            for column in (1, 2, 3, 4):
+            for column in (1, 2, 4):
                 sheet.cell(at, column).alignment = style.TOP

@@ -75,7 +75,9 @@ class Driver:
         return self.process.poll() is None
 
     def new(self):
-        return self._kept(self.desktop.loadComponentFromURL("private:factory/scalc", "_blank", 0, properties(Hidden=True)))
+        return self._kept(
+            self.desktop.loadComponentFromURL("private:factory/scalc", "_blank", 0, properties(Hidden=True))
+        )
 
     def open(self, path):
         begun = time.monotonic()
@@ -113,7 +115,7 @@ class Driver:
             [cells.getCellByPosition(x, y).getError() for x in range(at.EndColumn - at.StartColumn + 1)]
             for y in range(at.EndRow - at.StartRow + 1)
         ]
-        return [[[value, error] for value, error in zip(*both)] for both in zip(data, errors)]
+        return [[[value, error] for value, error in zip(*both, strict=True)] for both in zip(data, errors, strict=True)]
 
     def formulas(self, book, place):
         return [list(row) for row in self._range(book, place).getFormulaArray()]

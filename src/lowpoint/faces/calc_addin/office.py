@@ -136,7 +136,9 @@ def _run(command: Sequence[str], environment: Mapping[str, str], user: int | Non
     except OSError as problem:
         raise LowpointError(command[0], f"cannot be started ({problem.strerror or problem})") from None
     except subprocess.TimeoutExpired:
-        raise LowpointError(command[0], f"must end within {SECONDS} s", "no end", "Close the office and retry.") from None
+        raise LowpointError(
+            command[0], f"must end within {SECONDS} s", "no end", "Close the office and retry."
+        ) from None
     if done.returncode:
         said = " ".join((done.stderr or done.stdout).split()) or f"exit code {done.returncode}"
         raise LowpointError.plain(f"the office refused the add-in: {said[:500]}", exit_code=1)

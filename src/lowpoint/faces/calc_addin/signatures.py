@@ -1,4 +1,4 @@
-"""The add-in's methods, from the registry: names, arguments and texts as the office and its function wizard see them."""
+"""The add-in's methods, from the registry: names, arguments and texts as the office and its wizard see them."""
 
 from __future__ import annotations
 
@@ -71,7 +71,7 @@ def _signature(function: Function) -> Signature:
 def _variadic(function: Function) -> tuple[Argument, ...]:
     first, rest = function.parameters
     return (
-        Argument(first.name, ANY, f"{first.kind.meaning}, for example \"LP_SIGMA\" (required)"),
+        Argument(first.name, ANY, f'{first.kind.meaning}, for example "LP_SIGMA" (required)'),
         Argument(rest.name, MANY, rest.kind.meaning),
     )
 

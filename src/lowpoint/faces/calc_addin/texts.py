@@ -100,7 +100,7 @@ def _wizard_entry(one: Signature) -> list[str]:
     ]
     for argument in one.arguments:
         lines += [
-            f"   <node oor:name={quoteattr(argument.name)} oor:op=\"replace\">",
+            f'   <node oor:name={quoteattr(argument.name)} oor:op="replace">',
             f'    <prop oor:name="DisplayName">{_value(argument.name)}</prop>',
             f'    <prop oor:name="Description">{_value(argument.text)}</prop>',
             "   </node>",

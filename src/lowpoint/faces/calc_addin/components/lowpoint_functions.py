@@ -1,4 +1,6 @@
 """The component that the office calls for every LP_ and LPU_ function of a cell."""
+# mypy: disable-error-code="import-not-found,misc"
+# What is imported here is there in the office alone.
 
 from __future__ import annotations
 
@@ -15,7 +17,7 @@ from org.lowpoint import XFunctions  # found through the extension's own type li
 
 IMPLEMENTATION = "org.lowpoint.FunctionsImplementation"
 SERVICE = "org.lowpoint.Functions"
-KEPT = 1024
+KEPT = 256
 
 
 class Functions(unohelper.Base, XServiceInfo, XFunctions):

@@ -1,7 +1,10 @@
 """The job that the office runs when a book was loaded or saved: plain names bind, and plain names are stored."""
+# mypy: disable-error-code="import-not-found,misc"
+# What is imported here is there in the office alone.
 
 from __future__ import annotations
 
+import re
 from typing import Any
 
 import uno
@@ -16,6 +19,9 @@ SERVICE = "org.lowpoint.PlainNamesJob"
 BOOK = "com.sun.star.sheet.SpreadsheetDocument"
 STORED_BY_SERVICE = (".xlsx", ".xlsm", ".xltx", ".xltm", ".ods", ".ots")
 PASSING = "lowpoint_passing_name"
+FORMULAS = 0
+OURS = re.compile(r"\blpu?_", re.IGNORECASE)
+OTHER_SPELLINGS = r"(?<![\w.])(?:(?:\[\d+\]!|_xl(?:l|udf|fn)\.)(lpu?)[._]|(lpu?)\.)([a-z_]+)\("
 
 
 class PlainNamesJob(unohelper.Base, XJob, XServiceInfo):
@@ -35,7 +41,9 @@ class PlainNamesJob(unohelper.Base, XJob, XServiceInfo):
 
     def execute(self, arguments: Any) -> None:
         try:
-            given = {value.Name: value.Value for named in arguments if named.Name == "Environment" for value in named.Value}
+            given = {
+                value.Name: value.Value for named in arguments if named.Name == "Environment" for value in named.Value
+            }
             book = given.get("Model")
             if book is None or not book.supportsService(BOOK):
                 return
@@ -56,15 +64,48 @@ class PlainNamesJob(unohelper.Base, XJob, XServiceInfo):
 
 
 def rebind(book: Any) -> None:
-    """Calc reads LP_SIGMA( of a file as an unknown name; any change of the defined names makes it look again."""
-    modified, names, undo = book.isModified(), book.NamedRanges, book.getUndoManager()
+    """Make Calc understand the LP_ names of a book that it has just read; the book counts as unchanged."""
+    modified, undo = book.isModified(), book.getUndoManager()
     undo.lock()
     try:
-        names.addNewByName(PASSING, "$A$1", CellAddress(), 0)
-        names.removeByName(PASSING)
+        sheets = [book.Sheets.getByIndex(index) for index in range(book.Sheets.Count)]
+        for sheet in sheets:
+            _respell_cells(sheet)
+            _renew_names(sheet.NamedRanges)
+            _renew_conditions(sheet.ConditionalFormats)
+        _renew_names(book.NamedRanges)
+        # Calc took LP_SIGMA( for an unknown name; any change of the defined names makes it look again.
+        book.NamedRanges.addNewByName(PASSING, "$A$1", CellAddress(), 0)
+        book.NamedRanges.removeByName(PASSING)
     finally:
         undo.unlock()
     book.setModified(modified)
+
+
+def _respell_cells(sheet: Any) -> None:
+    """Calls as another program stores those of its own add-in; the cells that hold none are not touched."""
+    change = sheet.createReplaceDescriptor()
+    change.SearchRegularExpression, change.SearchType = True, FORMULAS
+    change.SearchString, change.ReplaceString = OTHER_SPELLINGS, "$1$2_$3("
+    sheet.replaceAll(change)
+
+
+def _renew_names(names: Any) -> None:
+    """A defined name is not looked at again by itself; setting what it means is enough."""
+    for name in names.ElementNames:
+        meaning = names.getByName(name)
+        if OURS.search(meaning.Content):
+            meaning.setContent(meaning.Content)
+
+
+def _renew_conditions(formats: Any) -> None:
+    for one in formats.getConditionalFormats() or ():
+        for index in range(one.getCount()):
+            entry = one.getByIndex(index)
+            for part in ("Formula1", "Formula2"):
+                formula = getattr(entry, part, None)
+                if isinstance(formula, str) and OURS.search(formula):
+                    setattr(entry, part, formula)
 
 
 g_ImplementationHelper = unohelper.ImplementationHelper()  # noqa: N816 - the office looks for this name

@@ -52,7 +52,7 @@ class Helper:
         if self._process is not None and self._process.poll() is None:
             return
         self.stop()
-        self._complaints = tempfile.TemporaryFile()
+        self._complaints = tempfile.TemporaryFile()  # noqa: SIM115 - it lives as long as the process
         pipe = subprocess.PIPE
         try:
             self._process = subprocess.Popen(
@@ -61,7 +61,9 @@ class Helper:
             )  # fmt: skip
         except OSError as problem:
             what = problem.strerror or problem
-            raise HelperError(f"The Python at {self._settings.python} cannot be started ({what}). {REMEDY}", True) from None
+            raise HelperError(
+                f"The Python at {self._settings.python} cannot be started ({what}). {REMEDY}", True
+            ) from None
         threading.Thread(target=self._watch, args=(self._process,), daemon=True).start()
         try:
             self.greeting = self._receive(STARTING)

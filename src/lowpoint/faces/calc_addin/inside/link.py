@@ -35,6 +35,7 @@ class Link:
         self._made_for = (version, fingerprint)
         self._problem = ""
         self._retry = 0.0
+        self._helper: Helper | None = None
         self._lock = threading.Lock()
 
     def call(self, name: str, arguments: tuple[Any, ...]) -> Any:
@@ -52,6 +53,13 @@ class Link:
         except Exception as bug:
             self.journal.write(f"{name}: {type(bug).__name__}: {bug}")
         return CRASHED
+
+    def close(self) -> None:
+        """End the helper process, if there is one; the office ends it by closing its end of the pipe."""
+        self.calls.clear()
+        if self._helper is not None:
+            self._helper.stop()
+            self._helper = None
 
     def _refusal(self, name: str) -> Any:
         """Nothing is computed with the wrong package, or none: the cell shows #VALUE!, LP_WHY the reason."""
@@ -78,7 +86,8 @@ class Link:
                 return self._open_here(settings)
             except ImportError as missing:
                 self.journal.write(f"Lowpoint cannot be loaded into the office ({missing}); a helper process is used.")
-        helper = Helper(settings, lambda greeting: self._check(greeting, settings))
+        self.close()
+        self._helper = helper = Helper(settings, lambda greeting: self._check(greeting, settings))
         helper.start()
         self.calls = {name: _through(helper, name, self._lock) for name in helper.greeting["names"]}
 
@@ -92,7 +101,7 @@ class Link:
 
     def _check(self, greeting: dict[str, Any], settings: Settings) -> None:
         """The add-in and the package must be of one making: arguments could have changed their places."""
-        version, fingerprint = self._made_for
+        version = self._made_for[0]
         if (greeting["version"], greeting["fingerprint"]) == self._made_for:
             return
         other = greeting["version"] if greeting["version"] != version else f"another {version}"
@@ -108,9 +117,9 @@ _shared: list[Link] = []
 
 def shared_link(context: Any) -> Link:
     """The one link of this office, which its components share; settings and log are in its profile."""
-    import uno
+    import uno  # type: ignore[import-not-found]  # there in the office alone, as is what the build makes
 
-    from .generated import FINGERPRINT, VERSION
+    from .generated import FINGERPRINT, VERSION  # type: ignore[import-not-found]
 
     if not _shared:
         paths = context.ServiceManager.createInstanceWithContext("com.sun.star.util.PathSubstitution", context)

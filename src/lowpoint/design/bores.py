@@ -14,14 +14,16 @@ from lowpoint.design.plates import Construction
 from lowpoint.design.split import Duty, Split, equal_margin
 from lowpoint.errors import LowpointError
 
-__all__ = ["Sized", "drilled", "size"]
+__all__ = ["Sized", "drill_choices", "drilled", "settled", "size"]
 
 MOST_ROUNDS = 40
+PATIENCE = 10
+"""Rounds after which a thickness no longer falls."""
 AGREED = 1e-11
 """Share of the pipe by which two rounds may differ in a bore length."""
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Sized:
     """Bores of equal margin that agree with the thickness which strength asks of them, before any rounding."""
 
@@ -37,33 +39,37 @@ class Sized:
         return self.split.margin
 
 
-def size(duty: Duty, construction: Construction, load: float, count: int) -> Sized:
-    """Split the drop with sharp edges; find the thickness; split again with it; until the two agree.
+def size(duty: Duty, construction: Construction, load: float, start: Any) -> Sized:
+    """Split the drop; find the thickness that the bores ask for; split again with it; until the two agree.
 
-    A thickness never falls from round to round, so that its rounding cannot make it swing; what comes out is always a
-    thickness that is enough and a loss that belongs to it.
+    ``start``: bores (m) to begin with, one a plate. A thickness that is rounded up could swing between two steps;
+    after some rounds it never falls again, so that what comes out is enough and the loss belongs to it.
     """
-    thickness = np.full(count, np.nan)
-    start = None
+    thickness = construction.thickness_for(start, load)
     for rounds in range(1, MOST_ROUNDS + 1):
         lengths = construction.bore_length(thickness, duty.pipe)
         split = equal_margin(duty, lengths, start)
-        thickness, start = np.fmax(thickness, construction.thickness_for(split.bores, load)), split.bores
+        thickness, start = settled(thickness, construction.thickness_for(split.bores, load), rounds), split.bores
         if np.abs(construction.bore_length(thickness, duty.pipe) - lengths).max() <= AGREED * duty.pipe:
             return Sized(split, thickness, lengths, rounds)
     raise LowpointError("plate set", "bores and thickness must agree", f"none that do in {MOST_ROUNDS} rounds",
                         "Give the thickness, or bevel the plates.")  # fmt: skip
 
 
-def drill_choices(bores: Any, duty: Duty, criteria: Criteria) -> Any:
+def settled(before: Any, now: Any, rounds: int) -> Any:
+    """Thickness of the next round."""
+    return now if rounds < PATIENCE else np.fmax(before, now)
+
+
+def drill_choices(bores: Any, pipe: float, holes: float, criteria: Criteria) -> Any:
     """(2, plates): the next smaller and the next larger drill; one of them twice where only one can be used."""
     low, high = series(criteria.drills).around(bores)
-    widest = duty.pipe / np.sqrt(duty.holes)
-    high = np.where(high < widest, high, np.nan)
+    high = np.where(high < pipe / np.sqrt(holes), high, np.nan)
     choices = np.array([np.where(np.isnan(low), high, low), np.where(np.isnan(high), low, high)])
-    if np.isnan(choices).any():
-        size_ = told(float(bores[np.isnan(choices).any(axis=0)][0]), "size", criteria.system)
-        raise LowpointError("drills", "there must be a drill near the bore that is below the pipe", size_,
+    lost = np.isnan(choices).any(axis=0)
+    if lost.any():
+        raise LowpointError("drills", "there must be a drill near the bore that is below the pipe",
+                            told(float(bores[lost][0]), "size", criteria.system),
                             "Set rounding to none, or choose a larger pipe.")  # fmt: skip
     return choices
 
@@ -71,13 +77,13 @@ def drill_choices(bores: Any, duty: Duty, criteria: Criteria) -> Any:
 def drilled(sized: Sized, duty: Duty, construction: Construction, load: float, criteria: Criteria) -> Any:
     """Bores rounded to drills.
 
-    ``nearest``: of all combinations of the two drills around each bore, those whose every plate keeps the margin, and of
-    these the one whose flow is nearest to the wanted one. They are judged with nothing else in the line: the plates
+    ``nearest``: of all combinations of the two drills around each bore, those whose every plate keeps the margin, and
+    of these the one whose flow is nearest to the wanted one. They are judged with nothing else in the line: the plates
     share p1 - p2 as their losses do. If none keeps the margin, the one with the best least margin.
     """
     if criteria.rounding == "none":
         return sized.split.bores
-    choices = drill_choices(sized.split.bores, duty, criteria)
+    choices = drill_choices(sized.split.bores, duty.pipe, duty.holes, criteria)
     if criteria.rounding == "down":
         return choices[0]
     count = choices.shape[1]

@@ -148,7 +148,7 @@ def test_no_docstring() -> None:
 
 # --- direction of imports -------------------------------------------------------------------------------------------
 
-LAYERS = ["errors", "sources", "units", "quantities", "declare", "problems", "physics", "columns", "messages",
+LAYERS = ["errors", "sources", "units", "quantities", "declare", "problems", "physics", "design", "columns", "messages",
           "checked", "scalar", "registry", "cells", "reference", "starter", "book", "faces"]  # fmt: skip
 """From the bottom up: a module may import only what stands before it, or its own package."""
 LAZY = {"openpyxl", "lxml", "formualizer", "CoolProp", "pint", "fluids"}

@@ -100,7 +100,7 @@ class Cases(Inputs):
             raise LowpointError(self.subject, f"names must be {count} different names, one a case", ", ".join(names))
         return names
 
-    def _where(self, row: int) -> str:
+    def _where(self, row: int, rows: int) -> str:
         return f"case '{self.names[row]}'" if row < len(self.names) else f"case {row + 1}"
 
     @property

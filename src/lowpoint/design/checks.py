@@ -20,8 +20,13 @@ def of(annotation: Any) -> Quantity:
     return next(extra for extra in annotation.__metadata__ if isinstance(extra, Quantity))
 
 
-@cache
 def _kinds(cls: Any) -> dict[str, tuple[Quantity, bool]]:
+    """The number fields of a class of inputs."""
+    return _kinds_of(cls)
+
+
+@cache
+def _kinds_of(cls: Any) -> dict[str, tuple[Quantity, bool]]:
     """Each number field with its quantity, and whether it may be left out."""
     found = {}
     for name, hint in typing.get_type_hints(cls, include_extras=True).items():
@@ -77,9 +82,9 @@ class Inputs:
             value.setflags(write=False)
         object.__setattr__(self, name, value)
 
-    def _where(self, row: int) -> str:
-        """The subject of a complaint about one row."""
-        return f"{self.subject}, case {row + 1}" if self.columns else self.subject
+    def _where(self, row: int, rows: int) -> str:
+        """The subject of a complaint about one of several rows."""
+        return f"{self.subject}, case {row + 1}" if rows > 1 else self.subject
 
     def _checked(self, name: str, value: Any, kind: Quantity) -> Any:
         unit = dimension(kind.dimension).unit(self.system)
@@ -93,7 +98,7 @@ class Inputs:
             if bad.any():
                 row = int(np.argmax(bad))
                 got = _shown(float(numbers[row]), unit)
-                raise LowpointError(self._where(row), f"{name} must be {relation}", got, kind.remedy)
+                raise LowpointError(self._where(row, len(numbers)), f"{name} must be {relation}", got, kind.remedy)
         return numbers if self.columns else float(numbers[0])
 
     def _spread(self, name: str, count: int) -> Any:
@@ -110,10 +115,12 @@ class Inputs:
 
     def _below(self, low: str, small: Any, high: str, large: Any, kind: str, remedy: str) -> None:
         """One value must lie below another, row by row."""
-        for row, (a, b) in enumerate(zip(*np.broadcast_arrays(small, large), strict=True)):
-            if not a < b:
-                words = f"{low} must be below {high} = {told(b, kind, self.system)}"
-                raise LowpointError(self._where(row), words, told(a, kind, self.system), remedy)
+        lows, highs = np.broadcast_arrays(small, large)
+        bad = ~(lows < highs)
+        if bad.any():
+            row = int(np.argmax(bad))
+            must = f"{low} must be below {high} = {told(highs[row], kind, self.system)}"
+            raise LowpointError(self._where(row, len(bad)), must, told(lows[row], kind, self.system), remedy)
 
 
 def _known(subject: str, system: str) -> None:

@@ -226,7 +226,7 @@ class Construction(Inputs):
         """Plates of these bores, made for a load."""
         thickness = self.thickness_for(bores, load)
         lengths = self.bore_length(thickness, line.pipe)
-        return PlateSet(line, tuple(
-            Plate(float(bore), float(length) or None, self.holes, None if np.isnan(thick) else float(thick), self.system)
-            for bore, length, thick in zip(bores, lengths, thickness, strict=True)
-        ))  # fmt: skip
+        plates = []
+        for bore, length, thick in zip(bores.tolist(), lengths.tolist(), thickness.tolist(), strict=True):
+            plates.append(Plate(bore, length or None, self.holes, None if np.isnan(thick) else thick, self.system))
+        return PlateSet(line, tuple(plates))

@@ -160,9 +160,8 @@ def rate(plates: PlateSet, cases: Cases, criteria: Criteria | None = None, worn:
 
 
 def _tap_drop(geometry: Geometry, cases: Cases, flow: Any, taps: str) -> Any:
-    columns: tuple[Any, ...] = (
-        np.full(geometry.bore.shape, geometry.pipe),
-        cases.liquid.density,
-        cases.liquid.viscosity,
+    viscosity: Any = cases.liquid.viscosity
+    pipe = np.full(geometry.bore.shape, geometry.pipe)
+    return orifice_drop(
+        flow, geometry.bore, pipe, cases.liquid.density, viscosity, geometry.bore_length, geometry.holes, taps
     )
-    return orifice_drop(flow, geometry.bore, *columns, geometry.bore_length, geometry.holes, taps)

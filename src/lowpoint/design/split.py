@@ -80,7 +80,7 @@ class Duty:
 
 @dataclass(frozen=True, eq=False)
 class Split:
-    """A drop over plates: ``bores`` (m), ``pressures`` (Pa, one more), ``drops`` (Pa), ``limits``, ``margin`` of all."""
+    """A drop over plates: ``bores`` (m), ``pressures`` (Pa, one more), ``drops`` (Pa), ``limits``, one ``margin``."""
 
     bores: Any
     pressures: Any

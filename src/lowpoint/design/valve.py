@@ -11,7 +11,7 @@ from lowpoint import quantities as q
 from lowpoint.design.cases import Cases
 from lowpoint.design.checks import Inputs
 from lowpoint.errors import LowpointError
-from lowpoint.physics.indices import ABOVE_ONE, choked_index
+from lowpoint.physics.indices import choked_index
 from lowpoint.physics.limits import installed_limit
 from lowpoint.physics.regime import regime_word
 from lowpoint.physics.sizing import required_coefficient
@@ -54,8 +54,8 @@ class Valve(Inputs):
         for name in ("incipient", "constant", "damage"):
             limit = getattr(self, name)
             if limit is not None and (limit <= 1.0).any():
-                raise LowpointError(self.subject, f"{name} {ABOVE_ONE.rstrip('?').split(';')[0]}", f"{limit.min():.6g}",
-                                    "Was another form meant?")  # fmt: skip
+                must, got = f"{name} must be above 1, in upstream form", f"{limit.min():.6g}"
+                raise LowpointError(self.subject, must, got, "Was another form meant?")
         for name in ("pipe_in", "pipe_out"):
             if getattr(self, name) is not None and self.valve_size is None:
                 raise LowpointError(self.subject, f"valve_size must be given where {name} is", "nothing")

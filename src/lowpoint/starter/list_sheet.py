@@ -127,22 +127,22 @@ def _mark(sheet: Any, last: int) -> None:
     """Conditional formats: findings, the first row of an item, what it repeats."""
     add = sheet.conditional_formatting.add
     everything = f"A{FIRST}:{LETTERS['unanswered']}{last}"
-    # First, since the rules after it end the search where they apply.
-    first_of_item = style.rule(f"$A{FIRST}<>$A{FIRST - 1}", last=False)
-    first_of_item.dxf.border = Border(top=Side(style="thin", color=style.COLOURS["mid"]))
-    add(everything, first_of_item)
     for key in ("verdict", "regime"):
         cells = f"{LETTERS[key]}{FIRST}"
         style.mark_verdicts(sheet, f"{cells}:{LETTERS[key]}{last}", cells)
     style.mark_word(sheet, f"{LETTERS['kept']}{FIRST}:{LETTERS['kept']}{last}", f"{LETTERS['kept']}{FIRST}", "no")
     margin = f"{LETTERS['margin']}{FIRST}"
     add(f"{margin}:{LETTERS['margin']}{last}",
-        style.rule(f"AND(ISNUMBER({margin}),{margin}<=0)", ink="bad", bold=True, last=False))  # fmt: skip
+        style.rule(f"AND(ISNUMBER({margin}),{margin}<=0)", ink="bad", bold=True))  # fmt: skip
     style.mark_errors(sheet, everything, f"A{FIRST}")
     for key in _OF_ITEM:
         letter = LETTERS[key]
         again = f"AND($A{FIRST}=$A{FIRST - 1},{letter}{FIRST}={letter}{FIRST - 1})"
-        add(f"{letter}{FIRST}:{letter}{last}", style.rule(again, ink="quiet", last=False))
+        add(f"{letter}{FIRST}:{letter}{last}", style.rule(again, ink="quiet"))
+    # Last, since some programs apply only the first rule that is true.
+    first_of_item = style.rule(f"$A{FIRST}<>$A{FIRST - 1}")
+    first_of_item.dxf.border = Border(top=Side(style="thin", color=style.COLOURS["mid"]))
+    add(everything, first_of_item)
 
 
 def _choose_from_lists(sheet: Any) -> None:

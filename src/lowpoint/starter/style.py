@@ -97,15 +97,13 @@ def heading(cell: Any) -> None:
     cell.border = Border(left=Side(style="thin", color=COLOURS["mid"]))
 
 
-def rule(
-    formula: str, colour: str | None = None, *, ink: str | None = None, bold: bool = False, last: bool = True
-) -> Any:
+def rule(formula: str, colour: str | None = None, *, ink: str | None = None, bold: bool = False) -> Any:
     """A conditional format: the cells where the formula is true."""
     look = DifferentialStyle(
         font=Font(color=COLOURS[ink], bold=bold) if ink else None,
         fill=PatternFill(bgColor=COLOURS[colour]) if colour else None,
     )
-    made = FormulaRule(formula=[formula], stopIfTrue=last)
+    made = FormulaRule(formula=[formula])
     made.dxf = look
     return made
 

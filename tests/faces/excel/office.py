@@ -191,8 +191,10 @@ def _cell_from_vba(value: Any) -> Any:
     if isinstance(value, vba.VBAErrorValue):
         return _CELLS[value.number]
     if isinstance(value, vba.VBAArray):
-        rows = _rows(value, _cell_from_vba)
-        return rows if rows and isinstance(rows[0], list) else [rows]
+        value = _rows(value, lambda one: one)
+    if isinstance(value, list):
+        rows = value if value and isinstance(value[0], list) else [value]
+        return [[_cell_from_vba(cell) for cell in row] for row in rows]
     return value
 
 

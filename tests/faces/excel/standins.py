@@ -207,6 +207,9 @@ class _Components:
     def __call__(self, name: str) -> str:
         raise _ComError(-2147352567, f"no module {name}")
 
+    def Remove(self, component: object) -> None:
+        raise AssertionError("there is nothing to remove")
+
     def Import(self, path: str) -> None:
         self.text = Path(path).read_text(encoding="utf-8")
 

@@ -70,12 +70,13 @@ def _decorated(outline: Outline) -> Callable[..., Rows]:
     function.__doc__ = outline.text
     function.__annotations__ = {}  # xlwings takes annotations for converters
     function.__signature__ = _signature(outline)  # type: ignore[attr-defined]
-    function = xlwings.func(category=category(outline))(function)
     # "raw": values as COM gives them. The other converters lose the shape of a column, and blank out errors.
     function = xlwings.arg("addin", "raw", vba="LpMaker")(function)
     for one in outline.arguments:
         function = xlwings.arg(one.name, "raw", doc=one.text)(function)
-    decorated: Callable[..., Rows] = xlwings.ret("raw")(function)
+    function = xlwings.ret("raw")(function)
+    # The last: each of the others would put xlwings' own category in its place.
+    decorated: Callable[..., Rows] = xlwings.func(category=category(outline))(function)
     return decorated
 
 

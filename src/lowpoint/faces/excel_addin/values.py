@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from itertools import chain
 from typing import Any
 
 from lowpoint.cells import CellError
@@ -35,9 +36,9 @@ def argument(given: Any) -> Any:
     rows = given if given and type(given[0]) is tuple else (given,)
     if len(rows) == 1 and len(rows[0]) == 1:
         return argument(rows[0][0])
-    if any(int in set(map(type, row)) for row in rows):
+    if int in set(map(type, chain.from_iterable(rows))):
         return [[argument(cell) for cell in row] for row in rows]
-    return [list(row) for row in rows]
+    return list(map(list, rows))
 
 
 def marked(cell: Any) -> Any:

@@ -213,7 +213,8 @@ def test_array_constants_and_broadcasting(tmp_path: Path) -> None:
 def test_an_array_of_pressures_between_stages(tmp_path: Path) -> None:
     cells = _dynamic({"F2": "LP_STAGE_PRESSURES(60,8,0.03,3)"}) | {
         "H2": '<f t="array" ref="H2:H5">LP_STAGE_PRESSURES(60,8,0.03,3)</f><v>0</v>',
-        "J2": formula("LP_STAGE_PRESSURES(60,8,0.03,3)", "0"), "K2": formula("INDEX(LP_STAGE_PRESSURES(60,8,0.03,3),2)", "0"),
+        "J2": formula("LP_STAGE_PRESSURES(60,8,0.03,3)", "0"),
+        "K2": formula("INDEX(LP_STAGE_PRESSURES(60,8,0.03,3),2)", "0"),
     }  # fmt: skip
     done = both(bare(tmp_path / "list.xlsx", cells))
     column = [row[0] for row in expected("LP_STAGE_PRESSURES", 60.0, 8.0, 0.03, 3.0)]

@@ -97,7 +97,8 @@ def test_a_file_that_is_no_workbook_is_refused_and_nothing_is_written(
 @pytest.mark.parametrize(
     "sheet, words",
     [
-        (f'<worksheet xmlns="{MAIN}"><sheetData><row r="1"><c r="A1"><f>1</f></row></sheetData></worksheet>', "well-formed XML"),
+        (f'<worksheet xmlns="{MAIN}"><sheetData><row r="1"><c r="A1"><f>1</f></row></sheetData></worksheet>',
+         "well-formed XML"),
         (f'<worksheet xmlns="{MAIN}"><sheetData><row r="1"><c r="A1"><f><![CDATA[1]]></f></c></row></sheetData></worksheet>', "plain text"),
         (f'<!DOCTYPE x [<!ENTITY e "1">]><worksheet xmlns="{MAIN}"><sheetData><row r="1"><c r="A1"><f>&e;</f></c></row></sheetData></worksheet>', "entities|DOCTYPE"),
     ],

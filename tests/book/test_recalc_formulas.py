@@ -22,7 +22,8 @@ def _sigma(item: int) -> Any:
 
 def test_omitted_arguments_take_the_declared_defaults(tmp_path: Path) -> None:
     places = {
-        "F2": "=LP_REGIME(1.1,,,,1.2)", "F3": "=LP_REGIME(3,,2,)", "F4": "=LP_REGIME(1.1,,,,,1.2)", "G2": "=LP_REGIME(2,)",
+        "F2": "=LP_REGIME(1.1,,,,1.2)", "F3": "=LP_REGIME(3,,2,)", "F4": "=LP_REGIME(1.1,,,,,1.2)",
+        "G2": "=LP_REGIME(2,)",
         "G3": "=LP_SIGMA(A2,B2,)", "G4": "=LP_SIGMA(,B2,C2)", "H2": "=IF(1,LP_REGIME(1.1,,,,1.2))&\"!\"",
     }  # fmt: skip
     done = _done(tmp_path, places)
@@ -37,7 +38,8 @@ def test_omitted_arguments_take_the_declared_defaults(tmp_path: Path) -> None:
 def test_blank_cells_text_logicals_and_errors_as_arguments(tmp_path: Path) -> None:
     places = {
         "E2": "n/a", "E3": True, "E4": "#DIV/0!", "F2": "=LP_SIGMA(A2,B2,Z9)", "F3": "=LP_SIGMA(A2,B2,E2)",
-        "F4": "=LP_SIGMA(A2,B2,E3)", "G2": "=LP_SIGMA(A2,NA(),E4)", "G3": "=LP_SIGMA(A2,B2,E4)", "G4": "=LP_SIGMA(B2,A2,C2)",
+        "F4": "=LP_SIGMA(A2,B2,E3)", "G2": "=LP_SIGMA(A2,NA(),E4)", "G3": "=LP_SIGMA(A2,B2,E4)",
+        "G4": "=LP_SIGMA(B2,A2,C2)",
         "H2": '=LP_SIGMA(A2,B2,"")', "H3": "=LP_SIGMA(A2,B2,IF(FALSE,1,Z9))", "H4": "=LP_SIGMA(A2,B2,+Z9)",
         "I2": "=LP_SIGMA(A2,B2,Z9+0)", "I3": "=LP_SIGMA(A2,B2,INDEX(Z1:Z9,2))", "I4": "=LP_SIGMA(A2,B2,1/0)",
     }  # fmt: skip
@@ -60,7 +62,8 @@ def test_blank_cells_text_logicals_and_errors_as_arguments(tmp_path: Path) -> No
         ("_xlfn.LET(_xlpm.s,LP_SIGMA(A2,B2,C2),_xlpm.s+_xlpm.s)", 2 * _sigma(0)),
         ("_xlfn.LET(_xlpm.p,A2,LP_SIGMA(_xlpm.p,B2,C2))", _sigma(0)),
         ("_xlfn.IFS(A2<0,1,TRUE,LP_SIGMA(A2,B2,C2))", _sigma(0)), ("CHOOSE(2,1,LP_SIGMA(A2,B2,C2))", _sigma(0)),
-        ("_xlfn.SWITCH(D2,0.9,LP_SIGMA(A2,B2,C2),0)", _sigma(0)), ("MAX(LP_SIGMA(A2,B2,C2),LP_SIGMA(A3,B3,C3))", _sigma(1)),
+        ("_xlfn.SWITCH(D2,0.9,LP_SIGMA(A2,B2,C2),0)", _sigma(0)), ("MAX(LP_SIGMA(A2,B2,C2),LP_SIGMA(A3,B3,C3))",
+         _sigma(1)),
         ("SUM(LP_SIGMA(A2,B2,C2),A2:A4)", _sigma(0) + 29.5), ("LP_SIGMA(SUM(A2),MIN(B2:B2),C2)", _sigma(0)),
         ("LP_SIGMA(INDEX(A2:A4,2),VLOOKUP(12.5,A2:B4,2,FALSE),C3)", _sigma(1)),
         ("LP_SIGMA(IF(D2>0.5,A2,A3),B2,C2)", _sigma(0)), ("LP_SIGMA(A2,B2,C2)&\" \"&LP_REGIME(3,2)", None),
@@ -68,7 +71,8 @@ def test_blank_cells_text_logicals_and_errors_as_arguments(tmp_path: Path) -> No
         ("SUMPRODUCT(LP_SIGMA(A2:A4,B2:B4,C2:C4)*(A2:A4>8))", _sigma(0) + _sigma(1)),
         ("LP_SIGMA(OFFSET(A1,1,0),INDIRECT(\"B2\"),C2)", _sigma(0)), ("LP_SIGMA(A2,B2,3%)", _sigma(0)),
         ("LP_SIGMA(A2,B2,C2)=LP_SIGMA(A2,B2,C2)", True), ("IF(ROW()=2,LP_SIGMA(A2,B2,C2),0)", _sigma(0)),
-        ("LP_AT_TRAVEL(50,{0;100},{1;3})", 2.0), ("LP_SIGMA(--A2,B2*1,C2+0)", _sigma(0)), ("LP_SIGMA(A2,B2,\"0.03\")", None),
+        ("LP_AT_TRAVEL(50,{0;100},{1;3})", 2.0), ("LP_SIGMA(--A2,B2*1,C2+0)", _sigma(0)), ("LP_SIGMA(A2,B2,\"0.03\")",
+         None),
     ],
 )  # fmt: skip
 def test_formulas_around_calls(tmp_path: Path, text: str, wanted: object) -> None:
@@ -105,7 +109,8 @@ def test_a_column_that_reads_the_row_above_itself(tmp_path: Path) -> None:
 
 def test_several_sheets_with_names_that_need_quotes(tmp_path: Path) -> None:
     places = {
-        "'Fuel jetty'!A1": "=LP_SIGMA(List!A2,List!B2,'Kestrel''s bay'!A1)", "'Kestrel''s bay'!A1": 0.05, "R1C1!A1": 2.5,
+        "'Fuel jetty'!A1": "=LP_SIGMA(List!A2,List!B2,'Kestrel''s bay'!A1)", "'Kestrel''s bay'!A1": 0.05,
+        "R1C1!A1": 2.5,
         "F2": "='Fuel jetty'!A1*2", "F3": "=LP_MARGIN('FUEL JETTY'!A1,'R1C1'!A1)",
     }  # fmt: skip
     places = {place.replace("'Fuel jetty'", "Fuel jetty").replace("'Kestrel''s bay'!A1", "Kestrel's bay!A1"): value

@@ -40,7 +40,8 @@ def _done(tmp_path: Path, cells: dict[str, str], **more: Any) -> Done:
 def test_a_formula_beyond_us_keeps_its_value_and_says_why(tmp_path: Path, text: str, reason: str | None) -> None:
     cells = {
         "E1": formula(text, "41"), "F1": formula(f"E1+{SIGMA}", "42"), "G1": formula("IFERROR(F1,0)*2", "43"),
-        "H1": formula(SIGMA, "0"), "E2": formula(f"IF(TRUE,{SIGMA},{text})", "44") if text[-1] not in "+~" else number(44.0),
+        "H1": formula(SIGMA, "0"), "E2": formula(f"IF(TRUE,{SIGMA},{text})",
+        "44") if text[-1] not in "+~" else number(44.0),
     }  # fmt: skip
     done = _done(tmp_path, cells)
     assert [done[f"Intake!{place}"] for place in ("E1", "F1", "G1")] == [41.0, 42.0, 43.0]
@@ -55,7 +56,8 @@ def test_a_formula_beyond_us_keeps_its_value_and_says_why(tmp_path: Path, text: 
 def test_circular_references_keep_their_values(tmp_path: Path) -> None:
     cells = {
         "E1": formula("E2+1", "5"), "E2": formula("E1+1", "6"), "F1": formula("E1*2", "7"), "G1": formula("G1+1", "8"),
-        "H1": formula("LP_MARGIN(H2,2)", "9"), "H2": formula("LP_MARGIN(H1,3)", "10"), "I1": formula(f"IF(TRUE,{SIGMA},I1)", "1"),
+        "H1": formula("LP_MARGIN(H2,2)", "9"), "H2": formula("LP_MARGIN(H1,3)", "10"),
+        "I1": formula(f"IF(TRUE,{SIGMA},I1)", "1"),
         "J1": formula("LP_MARGIN(E2,1)", "11"), "K1": formula("IFERROR(E1,0)", "12"),
     }  # fmt: skip
     done = _done(tmp_path, cells)
@@ -163,7 +165,8 @@ def test_sheets_that_are_no_worksheets_are_left_alone(tmp_path: Path) -> None:
         b"worksheet", b"dialogsheet"
     )
     more = {
-        "[Content_Types].xml": types.encode(), "xl/workbook.xml": workbook.encode(), "xl/dialogsheets/sheet1.xml": panel,
+        "[Content_Types].xml": types.encode(), "xl/workbook.xml": workbook.encode(),
+        "xl/dialogsheets/sheet1.xml": panel,
         "xl/_rels/workbook.xml.rels": relation_list(
             ("rId1", "worksheet", "worksheets/sheet1.xml"), ("rId2", "dialogsheet", "dialogsheets/sheet1.xml")
         ),

@@ -111,7 +111,7 @@ def books(draw: st.DrawFn) -> dict[str, str]:
         texts = [draw(either)] * 4 if draw(st.booleans()) else [draw(either) for _ in ROWS]
         for row, text in zip(ROWS, texts, strict=True):
             marks = {"<r>": row, "<above>": row - 1, "<below>": row + 1}
-            written = re.sub("<[a-z]+>", lambda found: str(marks[found[0]]), text)
+            written = re.sub("<[a-z]+>", lambda found, marks=marks: str(marks[found[0]]), text)
             places[f"{column}{row}"] = draw(st.sampled_from(["", "", "", 'cm="1"|'])) + formula(written, "7")
     for place, inside in places.items():
         if inside.startswith("cm"):
@@ -119,7 +119,7 @@ def books(draw: st.DrawFn) -> dict[str, str]:
     return {place: inside for place, inside in places.items() if inside}
 
 
-@settings(max_examples=60, suppress_health_check=[HealthCheck.large_base_example, HealthCheck.too_slow])
+@settings(max_examples=40, suppress_health_check=[HealthCheck.large_base_example, HealthCheck.too_slow])
 @given(books())
 @example({"A2": "<v>3</v>", "E2": formula("LP_MARGIN(A2+0.1-0.2,1)-LP_MARGIN(A2-0.1,1)", "1")})
 def test_both_ways_give_the_same_book(places: dict[str, str]) -> None:

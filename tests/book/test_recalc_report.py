@@ -23,7 +23,8 @@ SWAPPED = (
 
 def test_changed_cells_untouched_ones_and_those_that_no_call_feeds(tmp_path: Path) -> None:
     cells = INPUTS | {
-        "E1": formula(SIGMA, repr(VALUE)), "F1": formula("E1*2", "1"), "G1": formula("A1*2", "3"), "H1": formula("A1+B1", "14"),
+        "E1": formula(SIGMA, repr(VALUE)), "F1": formula("E1*2", "1"), "G1": formula("A1*2", "3"),
+        "H1": formula("A1+B1", "14"),
         "I1": formula("A1-B1"), "J1": 't="str"|' + formula('"p"&A1', "p10"), "K1": 't="b"|' + formula("A1>1", "1"),
         "L1": formula("1/3", "0.333333333333333"), "M1": formula("E1/3", "0.55388888888888"),
     }  # fmt: skip
@@ -54,13 +55,15 @@ def test_a_second_run_changes_nothing_and_gives_the_same_bytes(tmp_path: Path) -
 
 def test_failed_calls_come_with_cell_and_reason(tmp_path: Path) -> None:
     cells = INPUTS | {
-        "E1": formula("LP_SIGMA(B1,A1,C1)"), "F1": formula("LP_MARGIN(E1,2)"), "G1": formula("IFERROR(LP_SIGMA(B1,A1,C1),0)"),
+        "E1": formula("LP_SIGMA(B1,A1,C1)"), "F1": formula("LP_MARGIN(E1,2)"),
+        "G1": formula("IFERROR(LP_SIGMA(B1,A1,C1),0)"),
         "H1": formula("LP_MARGIN(LP_SIGMA(B1,A1,C1),LP_SIGMA(A1,,C1))"), "I1": formula(SIGMA),
     }  # fmt: skip
     report = both(bare(tmp_path / "list.xlsx", cells)).report
     assert report.failed[0] == Failure("Intake", "E1", "LP_SIGMA", "#NUM!", SWAPPED)
     assert [(f.cell, f.function) for f in report.failed] == [
-        ("E1", "LP_SIGMA"), ("F1", "LP_MARGIN"), ("G1", "LP_SIGMA"), ("H1", "LP_SIGMA"), ("H1", "LP_SIGMA"), ("H1", "LP_MARGIN"),
+        ("E1", "LP_SIGMA"), ("F1", "LP_MARGIN"), ("G1", "LP_SIGMA"), ("H1", "LP_SIGMA"), ("H1", "LP_SIGMA"), ("H1",
+         "LP_MARGIN"),
     ] or {(f.cell, f.function) for f in report.failed} == {
         ("E1", "LP_SIGMA"), ("F1", "LP_MARGIN"), ("G1", "LP_SIGMA"), ("H1", "LP_SIGMA"), ("H1", "LP_MARGIN"),
     }  # fmt: skip
@@ -105,7 +108,8 @@ def test_the_report_as_data_is_plain_json(tmp_path: Path) -> None:
     report = both(bare(tmp_path / "list.xlsx", cells)).report
     plain = json.loads(json.dumps(report.to_json()))
     assert plain["counts"] == {
-        "recomputed": 3, "lp_calls": 1, "changed": 1, "changed_unfed": 2, "untouched": 0, "failed": 1, "not_refreshed": 1,
+        "recomputed": 3, "lp_calls": 1, "changed": 1, "changed_unfed": 2, "untouched": 0, "failed": 1,
+        "not_refreshed": 1,
     }  # fmt: skip
     assert plain["changed"] == [{"sheet": "Intake", "cell": "E1", "old": 1.0, "new": "#NUM!"}]
     assert plain["failed"] == [

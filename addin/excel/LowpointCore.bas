@@ -31,7 +31,15 @@ Public Function LpWhy(ByVal about As Variant, ByVal given As Variant) As Variant
     LpWhy = LpAsked("LP_WHY", arguments)
     Exit Function
 Failed:
-    LpWhy = "LP_WHY: the add-in cannot ask Python: " & Left$(Err.Description, 400) & " 'lowpoint excel status' tells more."
+    LpWhy = "LP_WHY: the add-in cannot ask Python: " & LpLastLine(Err.Description) & " 'lowpoint excel status' tells more."
+End Function
+
+' What Python says of itself has many lines, and the reason in the last one.
+Private Function LpLastLine(ByVal told As String) As String
+    Do While Right$(told, 1) = vbLf Or Right$(told, 1) = vbCr
+        told = Left$(told, Len(told) - 1)
+    Loop
+    LpLastLine = Left$(Mid$(told, InStrRev(told, vbLf) + 1), 400)
 End Function
 
 Private Function LpAsked(ByVal called As String, ByVal given As Variant) As Variant

@@ -60,8 +60,8 @@ Public Function LP_SIGMA_CHOKED(Optional p1, Optional pv, Optional pc, Optional 
     LP_SIGMA_CHOKED = LpCell("LP_SIGMA_CHOKED", p1, pv, pc, fl, coefficient, valve_size, pipe_in, pipe_out)
 End Function
 
-Public Function LP_SIGMA_FORM(Optional value, Optional from, Optional to_)
-    LP_SIGMA_FORM = LpCell("LP_SIGMA_FORM", value, from, to_)
+Public Function LP_SIGMA_FORM(Optional value, Optional from_, Optional to_)
+    LP_SIGMA_FORM = LpCell("LP_SIGMA_FORM", value, from_, to_)
 End Function
 
 Public Function LP_SIGMA_SCALED(Optional limit, Optional size, Optional size_ref, Optional head, Optional head_ref, Optional size_exponent, Optional head_exponent, Optional method)

@@ -24,8 +24,8 @@ Public Function LPU_SOUND_SPEED(Optional fluid, Optional t, Optional p)
     LPU_SOUND_SPEED = LpCell("LPU_SOUND_SPEED", fluid, t, p)
 End Function
 
-Public Function LPU_UNIT(Optional value, Optional from, Optional to_, Optional atmosphere)
-    LPU_UNIT = LpCell("LPU_UNIT", value, from, to_, atmosphere)
+Public Function LPU_UNIT(Optional value, Optional from_, Optional to_, Optional atmosphere)
+    LPU_UNIT = LpCell("LPU_UNIT", value, from_, to_, atmosphere)
 End Function
 
 Public Function LPU_VAPOUR_PRESSURE(Optional fluid, Optional t, Optional salinity)
@@ -60,8 +60,8 @@ Public Function LP_SOUND_SPEED(Optional fluid, Optional t, Optional p)
     LP_SOUND_SPEED = LpCell("LP_SOUND_SPEED", fluid, t, p)
 End Function
 
-Public Function LP_UNIT(Optional value, Optional from, Optional to_, Optional atmosphere)
-    LP_UNIT = LpCell("LP_UNIT", value, from, to_, atmosphere)
+Public Function LP_UNIT(Optional value, Optional from_, Optional to_, Optional atmosphere)
+    LP_UNIT = LpCell("LP_UNIT", value, from_, to_, atmosphere)
 End Function
 
 Public Function LP_VAPOUR_PRESSURE(Optional fluid, Optional t, Optional salinity)

@@ -9,7 +9,7 @@ from typing import Any
 import pytest
 
 from book.lists import Done, bare, both, cells_xml, expected, formula, number
-from book.makers import MAIN, XLSX, pack, parts
+from book.makers import MAIN, REL, XLSX, pack, parts
 from lowpoint.book.package import Package
 from lowpoint.problems import CellError
 
@@ -95,12 +95,13 @@ def test_each_kind_of_value_is_written_as_the_format_wants_it(
 
 def test_a_right_value_stays_as_it_is_spelled(tmp_path: Path) -> None:
     strings = {
-        "xl/sharedStrings.xml": f'<sst xmlns="{MAIN}"><si><t>p1</t></si><si><r><t>a</t></r><r><t>4</t></r></si></sst>'.encode()
+        "xl/sharedStrings.xml": (
+            f'<sst xmlns="{MAIN}"><si><t>p1</t></si><si><r><t>a</t></r><r><t>4</t></r></si></sst>'.encode()
+        )
     }
     links = parts()["xl/_rels/workbook.xml.rels"].replace(
         b"</Relationships>",
-        b'<Relationship Id="s" Type="http://schemas.openxmlformats.org/officeDocument/2006/relationships/sharedStrings" '
-        b'Target="sharedStrings.xml"/></Relationships>',
+        f'<Relationship Id="s" Type="{REL}/sharedStrings" Target="sharedStrings.xml"/></Relationships>'.encode(),
     )
     types = parts()["[Content_Types].xml"].replace(
         b"</Types>",
@@ -124,9 +125,11 @@ def test_a_right_value_stays_as_it_is_spelled(tmp_path: Path) -> None:
 def test_namespace_prefixes_comments_and_instructions(tmp_path: Path) -> None:
     cells = "".join(f'<x:c r="{place}">{inside.replace("v>", "x:v>")}</x:c>' for place, inside in INPUTS.items())
     text = (
-        f'<?xml version="1.0" standalone="yes"?>\n<?note <c r="A9"><f>1</f></c> ?><x:worksheet xmlns:x="{MAIN}" a="&gt;">'
+        f'<?xml version="1.0" standalone="yes"?>\n<?note <c r="A9"><f>1</f></c> ?>'
+        f'<x:worksheet xmlns:x="{MAIN}" a="&gt;">'
         f'<!-- <sheetData><c r="A1"><f>{SIGMA}</f></c> --><x:sheetData><x:row r="1">{cells}</x:row><x:row r="2">'
-        f'<x:c r="A2"><x:f>{SIGMA}</x:f><x:v>1</x:v></x:c><x:c r="B2" t="e"><x:f t="array" ref="B2:B3">LP_MARGIN({{2;3}},A2)</x:f>'
+        f'<x:c r="A2"><x:f>{SIGMA}</x:f><x:v>1</x:v></x:c>'
+        f'<x:c r="B2" t="e"><x:f t="array" ref="B2:B3">LP_MARGIN({{2;3}},A2)</x:f>'
         f"<x:v>#N/A</x:v></x:c></x:row></x:sheetData><!-- end --></x:worksheet>\n<!-- after -->"
     )
     done = both(pack(tmp_path / "list.xlsx", {**parts(), SHEET: text.encode()}))

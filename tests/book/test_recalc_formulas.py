@@ -134,8 +134,8 @@ def test_why_tells_the_reason_in_a_cell(tmp_path: Path) -> None:
         done["F3"]
         == done["H3"]
         == (
-            "LP_SIGMA: p2 must be below p1 = 4, got 10. The outlet pressure must be the lower one: check that the two are "
-            "not swapped."
+            "LP_SIGMA: p2 must be below p1 = 4, got 10. The outlet pressure must be the lower one: check that the two "
+            "are not swapped."
         )
     )
     assert "pv (vapour pressure" in done["F4"]
@@ -152,7 +152,8 @@ def test_tables_and_their_columns(tmp_path: Path) -> None:
     book = xlsxwriter.Workbook(path)
     sheet, other = book.add_worksheet("List"), book.add_worksheet("Sum")
     columns: list[dict[str, Any]] = [
-        {"header": "p1"}, {"header": "p 2"}, {"header": "pv #"}, {"header": "sigma", "formula": "=LP_SIGMA([@p1],[@[p 2]],[@[pv '#]])"},
+        {"header": "p1"}, {"header": "p 2"}, {"header": "pv #"},
+        {"header": "sigma", "formula": "=LP_SIGMA([@p1],[@[p 2]],[@[pv '#]])"},
         {"header": "margin", "formula": "=LP_MARGIN(Valves[[#This Row],[sigma]],MAX(Valves[sigma]))"},
     ]  # fmt: skip
     sheet.add_table("B3:F6", {"name": "Valves", "columns": columns, "data": [item[:3] for item in ITEMS]})
@@ -183,7 +184,8 @@ def test_names_over_ranges_formulas_and_nothing(tmp_path: Path) -> None:
     }  # fmt: skip
     places = {
         "F2": "=SUM(inlets)*LP_FF(0.03,220)", "F3": "=SUM(moving)+LP_FF(0.03,220)", "F4": "=LP_SIGMA(twice,B2,C2)",
-        "G2": "=lost+LP_FF(0.03,220)", "G3": "=ring", "G4": "=away+1", "H2": "=unheard_of+1", "H3": "=LP_SIGMA(INDEX(inlets,2),B3,C3)",
+        "G2": "=lost+LP_FF(0.03,220)", "G3": "=ring", "G4": "=away+1", "H2": "=unheard_of+1",
+        "H3": "=LP_SIGMA(INDEX(inlets,2),B3,C3)",
     }  # fmt: skip
     done = _done(tmp_path, places, names=names)
     ff = expected("LP_FF", 0.03, 220.0)

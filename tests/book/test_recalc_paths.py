@@ -67,7 +67,7 @@ def call(draw: st.DrawFn, place: int, depth: int) -> str:
     return spelling.format(name, body) if "{1}" in spelling else f"{spelling.format(name)}({body})"
 
 
-# {a} and {b} are expressions, {c} is a call, {r} a reference, {n} a small whole number; <r> and the like are row numbers.
+# {a} and {b} are expressions, {c} is a call, {r} a reference, {n} a whole number; <r> is the row.
 FORMS_OF_EXPRESSION = (
     "{c}", "{c}", "{c}", "{c}", "{a}+{c}", "{c}*{b}", "IF({a}>2,{c},{b})", "IFERROR({c},{a})", "IFERROR({a},{c})",
     "_xlfn.IFS({a}>3,{c},TRUE,{b})", "CHOOSE({n},{a},{c},{b})", "_xlfn.SWITCH({a},1,{c},{b})",
@@ -76,7 +76,8 @@ FORMS_OF_EXPRESSION = (
 )  # fmt: skip
 # References that the text does not tell, arrays, names of nothing.
 RARE = (
-    'LP_MARGIN(INDIRECT("A<r>"),{a})', "OFFSET(A$2,1,1)+{c}", "NOSUCH(A2)", "{c}+NOSUCH(1)", "MAX(E$2:E$5)", "E<below>+1",
+    'LP_MARGIN(INDIRECT("A<r>"),{a})', "OFFSET(A$2,1,1)+{c}", "NOSUCH(A2)", "{c}+NOSUCH(1)", "MAX(E$2:E$5)",
+    "E<below>+1",
     "LP_SIGMA(A$2:A$5,B$2:B$5,C$2:C$5)", "SUM(LP_MARGIN(A$2:A$5,{a}))", 'IFERROR(INDIRECT("B<r>"),{c})',
     'LP_WHY("LP_SIGMA",A<r>,B<r>,C<r>)', "LP_MARGIN({a},1)-{c}",
 )  # fmt: skip

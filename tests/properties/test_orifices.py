@@ -77,6 +77,19 @@ def test_a_column_gives_the_bits_of_each_row(plate: Plate, service: Service) -> 
         assert BORE(flow=flow, pipe=plate.pipe, **plate.rest(), **pressures, viscosity=mu) == bore
 
 
+def test_four_hundred_rows_give_the_bits_of_each() -> None:
+    """Rows that settle early stay as they are, however long others take."""
+    rng = np.random.default_rng(5)
+    n = 400
+    columns = {
+        "p1": rng.uniform(5.0, 50.0, n), "p2": rng.uniform(0.5, 4.5, n), "bore": rng.uniform(10.0, 90.0, n),
+        "density": rng.uniform(700.0, 1000.0, n), "viscosity": 10.0 ** rng.uniform(-1.0, 3.0, n),
+    }  # fmt: skip
+    rest = {"pipe": 100.0, "pv": 0.1, "pc": 100.0}
+    together = FLOW(**columns, **rest)
+    assert [FLOW(**{k: v[i] for k, v in columns.items()}, **rest) for i in range(n)] == together.tolist()
+
+
 # --- the loss -------------------------------------------------------------------------------------------------------
 
 
@@ -131,6 +144,21 @@ def test_a_long_bore_loses_less_but_the_vena_contracta_stays(plate: Plate, ratio
     assert FL(**thick.cells()) < FL(**plate.cells())
     case = {"p1": 10.0, "p2": 0.01, "pv": 0.02, "pc": 220.64, "density": 998.0}
     assert FLOW(**thick.cells(), **case) == pytest.approx(FLOW(**plate.cells(), **case), rel=1e-12)
+
+
+@given(plates(thin=True), st.floats(2.4, 100.0), st.floats(1.01, 10.0))
+def test_beyond_the_last_length_friction_alone_grows(plate: Plate, ratio: float, more: float) -> None:
+    """By 0.02 a diameter of the bore (Idelchik's lambda): equal steps of length, equal steps of loss."""
+    k = [loss(Plate(plate.bore, plate.pipe, plate.bore * ratio * (1.0 + i * more), plate.holes)) for i in range(3)]
+    assert k[2] - k[1] == pytest.approx(k[1] - k[0], rel=1e-9)
+    assert k[1] > k[0]
+
+
+@given(plates(), st.floats(1.0, 4999.0))
+def test_below_a_reynolds_number_of_5000_the_loss_is_that_at_5000(plate: Plate, reynolds: float) -> None:
+    assert loss(plate, reynolds) == loss(plate, 5000.0)
+    assume(0.1 < plate.bore / plate.pipe < 0.75 and plate.pipe > 50.0 and plate.holes == 1)
+    assert loss(plate, 5000.0) != loss(plate, 5100.0)
 
 
 @given(plates(), services())
@@ -224,6 +252,16 @@ def test_limits_stand_in_their_order(plate: Plate) -> None:
     """No flow chokes before it cavitates, and none cavitates steadily before it begins to."""
     incipient, constant, choked = (LIMIT(limit=x, **plate.cells()) for x in ("incipient", "constant", "choked"))
     assert incipient >= constant >= choked
+
+
+@pytest.mark.parametrize(("b", "t_over_d"), [(0.97, None), (0.98, None), (0.93, 1.0), (0.95, 2.0)])
+def test_no_plate_chokes_before_it_cavitates(b: float, t_over_d: float | None) -> None:
+    """Where the fit would fall below the index at choking, all three limits are that index."""
+    plate = Plate(100.0 * b, 100.0, None if t_over_d is None else 100.0 * b * t_over_d)
+    choked = LIMIT(limit="choked", **plate.cells(), form="downstream")
+    assert choked > max(1.2, 4.5 * b + 0.5)
+    assert LIMIT(limit="incipient", **plate.cells(), form="downstream") == pytest.approx(choked, rel=1e-12)
+    assert LIMIT(limit="constant", **plate.cells(), form="downstream") == pytest.approx(choked, rel=1e-12)
 
 
 @given(st.floats(0.2, 0.6), st.floats(20.0, 1000.0), st.floats(1.01, 3.0), st.sampled_from(["incipient", "constant"]))

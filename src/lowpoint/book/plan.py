@@ -92,9 +92,12 @@ def make_plan(groups: Iterable[Group], context: Context, per_cell: bool = False)
 
 
 def _entry(group: Group, context: Context) -> Entry | None:
-    place = Place(group.sheet, group.rows[0], group.column)
+    places = [Place(group.sheet, row, group.column) for row in (group.rows[0], min(group.rows), max(group.rows))]
     try:
-        entry = Entry(group, read(group.tokens, place, context.names, context.tables))
+        if any(token.kind == "table" for token in group.tokens):
+            for place in places[1:]:  # "this row" must be one of the table's for all the rows
+                context.tables.expand(group.tokens, place)
+        entry = Entry(group, read(group.tokens, places[0], context.names, context.tables))
         for ref in entry.formula.refs:
             _check_sheet(ref, context)
         return entry

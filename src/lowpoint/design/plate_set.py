@@ -41,6 +41,9 @@ from lowpoint.physics.stages import LIQUID, MOST
 
 __all__ = ["Cases", "Construction", "Criteria", "Line", "Liquid", "SetDesign", "design_set", "rate"]
 
+ENOUGH = 1e-4
+"""By which a margin may fall short of what is asked for without a word: the flow's last digits move it that much."""
+
 
 @dataclass(frozen=True, eq=False)
 class SetDesign:
@@ -122,23 +125,23 @@ def _fewest(
 ) -> tuple[Sized, Sized | None]:
     """The set of fewest plates that keeps the margin, and the best of one fewer, which does not."""
     reached = table.greedy(criteria.margin)
-    count = max(len(reached), 1)
-    if count > MOST + 1:
-        raise _too_many(criteria, cases, case, count, float(reached[MOST - 1]))
-    count = min(count, MOST)
-    found, fewer = sized(count), None
-    enough = criteria.margin - 1e-9
-    while found.margin >= enough and count > 1:
-        fewer = sized(count - 1)
-        if fewer.margin < enough:
-            return found, fewer
+    if len(reached) > MOST + 1:
+        raise _too_many(criteria, cases, case, len(reached), float(reached[MOST - 1]))
+
+    def enough(found: Sized) -> bool:
+        return found.margin >= criteria.margin - 1e-9
+
+    count = max(len(reached) - 1, 1)  # the table may be one off
+    found = sized(count)
+    while enough(found):
+        if count == 1 or not enough(fewer := sized(count - 1)):
+            return found, None if count == 1 else fewer
         found, count = fewer, count - 1
-    while found.margin < enough:
-        if count == MOST:
-            raise _too_many(criteria, cases, case, count + 1, float(reached[min(len(reached), MOST) - 1]))
+    while count < MOST:
         fewer, count = found, count + 1
-        found = sized(count)
-    return found, fewer if count > 1 else None
+        if enough(found := sized(count)):
+            return found, fewer
+    raise _too_many(criteria, cases, case, MOST + 1, float(reached[min(len(reached), MOST) - 1]))
 
 
 def _too_many(criteria: Criteria, cases: Cases, case: int, count: int, after: float) -> LowpointError:
@@ -156,7 +159,7 @@ def _margin_notes(design: SetDesign) -> list[Note]:
     rating, wanted = design.rating, design.criteria.margin
     found = []
     for plate in range(design.count):
-        below = rating.margin[plate] < wanted - 1e-9
+        below = rating.margin[plate] < wanted - ENOUGH
         if below.any():
             worst = int(np.argmin(rating.margin[plate]))
             cases = tuple(name for name, short in zip(design.cases.names, below, strict=True) if short)

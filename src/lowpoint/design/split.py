@@ -27,6 +27,8 @@ from lowpoint.physics.plate_loss import losses
 __all__ = ["Duty", "Split", "Table", "equal_margin"]
 
 MOST_STEPS = 60
+AGREED = 1e-12
+"""By which the logarithms of the conditions may be off."""
 NUDGE = 1e-6
 """Step of the logarithm of a bore in which slopes are taken."""
 LONGEST_STEP = 0.5
@@ -136,24 +138,45 @@ class Table:
         return np.array(pressures)
 
 
-def _residual(duty: Duty, drops: Any, limits: Any, log_margin: float) -> Any | None:
-    """How far the conditions are off, as logarithms; None where the plates take more than there is."""
-    heads = duty.p1 - duty.base - np.concatenate([[0.0], np.cumsum(drops)])
-    if not heads[-1] > 0.0:
-        return None
-    each = np.log(heads[:-1] / (limits * drops)) - log_margin
-    return np.append(each, math.log(heads[-1] / (duty.p2 - duty.base)))
+@dataclass(frozen=True, eq=False)
+class _Local:
+    """Drops and limits of plates, and how they change with the logarithm of the bore."""
 
+    drops: Any
+    limits: Any
+    slopes: Any
+    """Of ln drop."""
+    slopes_both: Any
+    """Of ln(limit drop)."""
 
-def _jacobian(duty: Duty, drops: Any, slopes: Any, slopes_both: Any) -> Any:
-    count = len(drops)
-    heads = duty.p1 - duty.base - np.concatenate([[0.0], np.cumsum(drops)])
-    jacobian = np.zeros((count + 1, count + 1))
-    # A head falls by the drops of all plates before it.
-    jacobian[:, :count] = np.tril(np.ones((count + 1, count)), -1) * -(drops * slopes) / heads[:, None]
-    jacobian[np.arange(count), np.arange(count)] = -slopes_both
-    jacobian[:count, count] = -1.0
-    return jacobian
+    @classmethod
+    def at(cls, duty: Duty, log_shares: Any, bore_length: Any) -> _Local:
+        nudged = np.concatenate([log_shares, log_shares + NUDGE])
+        both = duty.curves(duty.bore(nudged), np.tile(bore_length, 2))
+        (drops, near), (limits, near_limits) = (np.split(x, 2) for x in both)
+        slopes = np.log(near / drops) / NUDGE
+        return cls(drops, limits, slopes, slopes + np.log(near_limits / limits) / NUDGE)
+
+    def heads(self, duty: Duty) -> Any:
+        """Heads before the plates and after the last."""
+        return duty.heads[0] - np.concatenate([[0.0], np.cumsum(self.drops)])
+
+    def off(self, duty: Duty, log_margin: float) -> Any:
+        """How far the conditions are from being met, as logarithms; the last one is the pressure after all plates."""
+        heads = self.heads(duty)
+        return np.append(np.log(heads[:-1] / (self.limits * self.drops)) - log_margin,
+                         math.log(heads[-1] / duty.heads[1]))  # fmt: skip
+
+    def jacobian(self, duty: Duty) -> Any:
+        """How ``off`` changes with the logarithms of the bores and of 1 + m."""
+        count = len(self.drops)
+        matrix = np.zeros((count + 1, count + 1))
+        # A head falls by the drops of all plates before it.
+        before = np.tril(np.ones((count + 1, count)), -1)
+        matrix[:, :count] = -before * (self.drops * self.slopes) / self.heads(duty)[:, None]
+        matrix[np.arange(count), np.arange(count)] = -self.slopes_both
+        matrix[:count, count] = -1.0
+        return matrix
 
 
 def equal_margin(duty: Duty, bore_length: Any, start: Any) -> Split:
@@ -161,27 +184,29 @@ def equal_margin(duty: Duty, bore_length: Any, start: Any) -> Split:
 
     ``start``: bores (m) to begin with. LowpointError where no bores take the drop.
     """
+    bore_length = np.asarray(bore_length, np.float64)
     u = np.log(np.asarray(start) * (math.sqrt(duty.holes) / duty.pipe))
-    log_margin, count, lengths = 0.0, len(u), np.tile(np.asarray(bore_length, np.float64), 2)
-    drops, limits = np.zeros(count), np.zeros(count)
-    for step in range(MOST_STEPS):
-        both = duty.curves(duty.bore(np.concatenate([u, u + NUDGE])), lengths)
-        (drops, near), (limits, near_limits) = (np.split(x, 2) for x in both)
-        if step == 0:
-            log_margin = float(np.median(np.log((duty.p1 - duty.base) / (limits * drops))))
-        off = _residual(duty, drops, limits, log_margin)
-        if off is None:  # the plates take more than there is: open them all
+    log_margin = None
+    for _ in range(MOST_STEPS):
+        local = _Local.at(duty, u, bore_length)
+        if not local.heads(duty)[-1] > 0.0:  # the plates take more than there is: open them all
             u = np.minimum(u + 0.1, OPEN)
             continue
-        if np.abs(off).max() < 1e-12:
-            break
-        slopes = np.log(near / drops) / NUDGE
-        slopes_both = slopes + np.log(near_limits / limits) / NUDGE
-        move = np.linalg.solve(_jacobian(duty, drops, slopes, slopes_both), -off)
+        if log_margin is None:
+            log_margin = float(np.median(local.off(duty, 0.0)[:-1]))
+        off = local.off(duty, log_margin)
+        if np.abs(off).max() < AGREED:
+            pressures = duty.base + local.heads(duty)
+            return Split(duty.bore(u), pressures, local.drops, local.limits, math.expm1(log_margin))
+        move = np.linalg.solve(local.jacobian(duty), -off)
         move *= min(1.0, LONGEST_STEP / float(np.abs(move[:-1]).max()))
-        u, log_margin = np.clip(u + move[:-1], CLOSED, OPEN - NUDGE), log_margin + float(move[-1])
-    else:
-        raise LowpointError("plate set", f"{count} plates must share the drop at equal margin", "no bores that do",
-                            "Choose another pipe size, or another number of plates.")  # fmt: skip
-    pressures = duty.p1 - np.concatenate([[0.0], np.cumsum(drops)])
-    return Split(duty.bore(u), pressures, drops, limits, math.expm1(log_margin))
+        u, log_margin = np.clip(u + move[:-1], CLOSED, OPEN), log_margin + float(move[-1])
+    raise _no_split(u)
+
+
+def _no_split(log_shares: Any) -> LowpointError:
+    must = f"{len(log_shares)} plates must share the drop at equal margin"
+    if (log_shares > OPEN - 1e-3).any():
+        return LowpointError("plate set", must, "plates that take more than their share with hardly anything closed",
+                             "The flow is too fast: choose a larger pipe.")  # fmt: skip
+    return LowpointError("plate set", must, f"no bores that do in {MOST_STEPS} steps", "Choose another pipe size.")

@@ -14,7 +14,7 @@ if TYPE_CHECKING:
 __all__ = ["fill", "run"]
 
 _EXAMPLES = {
-    "build": "lowpoint.xlam --python C:\\lowpoint\\Scripts\\python.exe", "install": "", "status": "", "uninstall": "",
+    "build": "lowpoint.xlam", "install": "", "status": "", "uninstall": "",
     "sources": "addin/excel",
 }  # fmt: skip
 

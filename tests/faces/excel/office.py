@@ -1,4 +1,4 @@
-"""Excel as far as the add-in needs it: the VBA of a built add-in, run by pyOpenVBA over the real call path of xlwings."""
+"""Excel as far as the add-in needs it: the VBA of a built add-in, run over the real call path of xlwings."""
 
 from __future__ import annotations
 
@@ -11,6 +11,8 @@ import pyopenvba.interpreter as vba
 from pyopenvba import ExcelFile
 from pyopenvba.apps.excel import ExcelApplication, Range
 from pyopenvba.apps.excel._bridge import ExcelBridge
+from pyopenvba.apps.excel._model import Application, Workbook
+from pyopenvba.interpreter._objects import MemberSpec
 from pyopenvba.interpreter._values import error
 
 from faces.excel.standins import EMPTY, MISSING, ComServer, Error
@@ -114,8 +116,7 @@ class Excel:
         last = f"{_column(_number(column) + len(rows[0]) - 1)}{int(row) + len(rows) - 1}"
         for down, cells in enumerate(rows):
             for right, cell in enumerate(cells):
-                if cell is not None:
-                    first.vba_get("Offset", [down, right]).vba_set("Value2", _cell_to_vba(cell))
+                first.vba_get("Offset", [down, right]).vba_set("Value2", _cell_to_vba(cell))
         return f"{corner}:{last}"
 
     def range(self, address: str) -> Range:
@@ -127,6 +128,38 @@ class Excel:
         """The answer of one function, as a cell or rows of cells; ranges are given as :meth:`range`."""
         given = [one if isinstance(one, Range) else _cell_to_vba(one) for one in arguments]
         return _cell_from_vba(self.app.run(name, *given))
+
+    def run_macro(self, name: str) -> Any:
+        """The answer of a procedure that takes nothing."""
+        return self.app.run(name)
+
+    def replace(self, module: str, text: str) -> None:
+        """Another text for a module."""
+        self.app.add_module(_without_libraries(text), name=module)
+
+    def described(self) -> dict[str, tuple[str, str, list[str]]]:
+        """What the add-in tells the function wizard when it opens: text, category and help by function."""
+        told: dict[str, tuple[str, str, list[str]]] = {}
+        hidden = [True]
+
+        def macro_options(_: Any, macro: str, description: str, category: str, help_: Any) -> None:
+            assert not hidden[0], "Excel takes texts for the macros of a book that can be seen only"
+            assert macro.startswith("'")
+            assert "'!" in macro
+            told[macro.rpartition("!")[2]] = (str(description), str(category), _rows(help_, str))
+
+        def hide(_: Any, value: Any) -> None:
+            hidden[0] = bool(value)
+
+        names = ("Macro", "Description", "Category", "ArgumentDescriptions")
+        Application.vba_add_member(MemberSpec("MacroOptions", "method", macro_options, parameters=names))
+        Workbook.vba_add_member(MemberSpec("IsAddin", "property", lambda _: hidden[0], hide))
+        try:
+            self.run_macro("LpDescribe")
+        finally:
+            del Application._vba_members["macrooptions"], Workbook._vba_members["isaddin"]
+        assert hidden[0], "the add-in stays in sight"
+        return told
 
 
 def _without_libraries(text: str) -> str:

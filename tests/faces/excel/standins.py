@@ -152,7 +152,9 @@ def _module(name: str, **members: Any) -> None:
 def _pywin32() -> None:
     base = {"CDispatch": _Dispatch, "Dispatch": _dispatch, "DispatchEx": _dispatch}
     classes = {name: type(name, (), {}) for name in ("DispatchBaseClass", "CoClassBaseClass")}
-    _module("pywintypes", com_error=_ComError, error=_ComError, IID=_Guid, TimeType=type("TimeType", (dt.datetime,), {}))
+    _module(
+        "pywintypes", com_error=_ComError, error=_ComError, IID=_Guid, TimeType=type("TimeType", (dt.datetime,), {})
+    )
     _module(
         "pythoncom", com_error=_ComError, ole_error=_ComError, IID_IDispatch="IDispatch", CoInitialize=lambda: None,
         IID_IEnumVARIANT="IEnumVARIANT", TypeIIDs={"IDispatch": type("PyIDispatch", (), {})}, VT_ERROR=10,

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import os
-import re
 import secrets
 import sys
 import tempfile
@@ -17,7 +16,7 @@ from lowpoint import __version__
 from lowpoint.errors import LowpointError
 from lowpoint.faces.calc_addin.bundle import bundle
 from lowpoint.faces.calc_addin.inside.settings import FILE, FOLDER, LOG, Settings, SettingsError
-from lowpoint.faces.calc_addin.office import Office, find_office, refuse_if_open
+from lowpoint.faces.calc_addin.office import find_office, refuse_if_open
 from lowpoint.faces.calc_addin.texts import IDENTIFIER
 
 __all__ = ["install", "own_settings", "status", "uninstall"]
@@ -53,7 +52,7 @@ def uninstall(profile: Path) -> bool:
     """Take the add-in and its settings out; False where it was not there."""
     office = find_office()
     refuse_if_open(profile)
-    there = _installed_version(office, profile) is not None
+    there = _installed_version(profile) is not None
     if there:
         with _denied(profile):
             office.unopkg(profile, "remove", IDENTIFIER)
@@ -70,7 +69,7 @@ def uninstall(profile: Path) -> bool:
 def status(profile: Path) -> dict[str, Any]:
     """What stands in the profile, and how the functions would be computed."""
     office = find_office()
-    version = _installed_version(office, profile)
+    version = _installed_version(profile)
     found: dict[str, Any] = {
         "profile": str(profile), "office": str(office.program), "office_python": _dotted(office.python),
         "package": __version__, "addin": version, "python": None, "runs": None, "problem": None,
@@ -98,14 +97,17 @@ def _dotted(release: tuple[int, int] | None) -> str | None:
     return None if release is None else f"{release[0]}.{release[1]}"
 
 
-def _installed_version(office: Office, profile: Path) -> str | None:
-    """The version of the add-in that a profile holds; read from the files, so that an open office does not matter."""
-    cache = profile / "user" / "uno_packages" / "cache" / "uno_packages"
-    for description in cache.glob(f"*/{PACKAGE_FILE}/description.xml"):
-        text = description.read_text(encoding="utf-8", errors="replace")
-        found = re.search(r'<version value="([^"]*)"', text)
-        if found and f'value="{IDENTIFIER}"' in text:
-            return found[1]
+def _installed_version(profile: Path) -> str | None:
+    """The version of the add-in that a profile holds, read from the office's list, so that an open office may stay."""
+    listed = profile / "user" / "uno_packages" / "cache" / "uno_packages.pmap"
+    try:
+        lines = listed.read_bytes().removeprefix(b"Pmp1\xff").split(b"\n")
+    except OSError:
+        return None
+    # An identifier a line, and a line of what is known of it: folder, file, kind, version, one more.
+    for identifier, known in zip(lines[::2], lines[1::2], strict=False):
+        if identifier.decode("utf-8", "replace") == IDENTIFIER:
+            return known.split(b"\xff")[3].decode("utf-8", "replace") if known.count(b"\xff") > 3 else "unknown"
     return None
 
 

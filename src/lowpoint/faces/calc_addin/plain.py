@@ -32,7 +32,7 @@ _CALL = re.compile(
 _ELEMENT = re.compile(
     rb"(<(?:\w+:)?(?:f|definedName|formula|formula1|formula2|calculatedColumnFormula|totalsRowFormula)(?:\s[^<>]*)?>)([^<]+)"
 )
-_ATTRIBUTE = re.compile(rb"((?:table:(?:formula|expression|condition)|calcext:(?:value|formula))=\")([^\"]*)")
+_ATTRIBUTE = re.compile(rb"((?:table:(?:formula|expression|condition)|style:condition|calcext:value)=\")([^\"]*)")
 
 
 def plain_formula(formula: bytes) -> bytes:

@@ -44,7 +44,7 @@ def made_with(content: bytes) -> str | None:
             text = archive.read(_PROPERTIES).decode("utf-8", "replace")
     except (zipfile.BadZipFile, KeyError):
         return None
-    start, found, rest = text.partition("<cp:keywords>")
+    _, found, rest = text.partition("<cp:keywords>")
     return rest.partition("</cp:keywords>")[0] if found else None
 
 

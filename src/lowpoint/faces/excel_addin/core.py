@@ -39,7 +39,8 @@ Public Function LpWhy(ByVal about As Variant, ByVal given As Variant) As Variant
     LpWhy = LpAsked("LP_WHY", arguments)
     Exit Function
 Failed:
-    LpWhy = "LP_WHY: the add-in cannot ask Python: " & LpLastLine(Err.Description) & " 'lowpoint excel status' tells more."
+    LpWhy = "LP_WHY: the add-in cannot ask Python: " & LpLastLine(Err.Description) _
+        & " 'lowpoint excel status' tells more."
 End Function
 
 ' What Python says of itself has many lines, and the reason in the last one.

@@ -1,4 +1,4 @@
-"""Putting the add-in where Excel starts it, asking how it is there, and taking it out again: one file, whole or not at all."""
+"""Putting the add-in where Excel starts it, asking how it is there, taking it out again: one file, or nothing."""
 
 from __future__ import annotations
 
@@ -74,6 +74,8 @@ def _problem(machine: Machine, there: bool, made: str | None, rest: str) -> str 
         return None
     if made is None:
         return f"The file there is not an add-in of Lowpoint. {_AGAIN}"
+    if machine.excel() is None:
+        return "Excel is not installed on this machine."
     if not made.startswith(maker() + " "):
         return f"The add-in is of Lowpoint {made.partition(' ')[0]}, this package of {__version__}. {_AGAIN}"
     built_with = rest.rpartition(" ")[2]
@@ -84,8 +86,6 @@ def _problem(machine: Machine, there: bool, made: str | None, rest: str) -> str 
         _library(machine, xlwings)
     except LowpointError as problem:
         return str(problem)
-    if machine.excel() is None:
-        return "Excel is not installed on this machine."
     if machine.macros_forbidden():
         return "The trusted folders of Excel are switched off (File, Options, Trust Center), so no add-in starts."
     return None
@@ -94,8 +94,8 @@ def _problem(machine: Machine, there: bool, made: str | None, rest: str) -> str 
 def _folder(machine: Machine) -> Path:
     if not machine.windows:
         raise LowpointError.plain(
-            "excel: the add-in is installed on Windows only; here 'lowpoint excel build FILE.xlam' writes it for another "
-            "machine, and 'lowpoint calc install' serves LibreOffice."
+            "excel: the add-in is installed on Windows only; here 'lowpoint excel build FILE.xlam' writes it for "
+            "another machine, and 'lowpoint calc install' serves LibreOffice."
         )
     folder = machine.start_folder()
     if folder is None:

@@ -1,4 +1,4 @@
-"""The add-in's functions as VBA and xlwings see them: names that VBA accepts, wizard texts, and what both sides compare."""
+"""The add-in's functions as VBA and xlwings see them: names that VBA accepts, wizard texts, what both sides compare."""
 
 from __future__ import annotations
 
@@ -22,8 +22,8 @@ _LONGEST = 255
 _MOST = 60
 """Arguments that a function of a worksheet can have."""
 
-_RESERVED = frozenset(
-    """abs addressof alias and any append array as attribute base begin binary boolean byref byte byval call case
+_WORDS = """
+    abs addressof alias and any append array as attribute base begin binary boolean byref byte byval call case
     cbool cbyte ccur cdate cdbl cdec cint circle clng clnglng clngptr close compare const csng cstr currency cvar cverr
     database date debug decimal declare defbool defbyte defcur defdate defdbl defint deflng deflnglng deflngptr defobj
     defsng defstr defvar dim do doevents double each else elseif empty end endif enum eqv erase error event exit
@@ -32,9 +32,10 @@ _RESERVED = frozenset(
     nothing null object on open option optional or output paramarray preserve print private property pset ptrsafe public
     put raiseevent random randomize read redim rem resume return rset scale seek select set sgn shared single spc
     static step stop string sub tab text then to true type typeof ubound unlock until variant wend while width with
-    withevents write xor""".split()
-)
+    withevents write xor
+"""
 """Words that VBA does not take for an argument (its language specification, section 3.3.5.2)."""
+_RESERVED = frozenset(_WORDS.split())
 
 
 @dataclass(frozen=True, slots=True)

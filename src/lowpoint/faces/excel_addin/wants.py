@@ -11,7 +11,7 @@ __all__ = ["TESTED", "WANTED", "installed", "need"]
 
 TESTED = "0.37.8"
 """The version of xlwings that the tests run with."""
-WANTED = {"xlwings": ((0, 37, 8), (0, 38)), "pyOpenVBA": ((6, 5), (7,))}
+WANTED = {"xlwings": ((0, 37, 8), (0, 38)), "pyOpenVBA": ((6, 5), (6, 6))}
 """From (included) and up to (excluded): the call path and the writer of VBA are proved for these."""
 
 Versions = Callable[[str], str | None]

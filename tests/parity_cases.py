@@ -22,6 +22,7 @@ ROWS = 240
 """Argument sets a function."""
 
 _GOLDEN = 0.6180339887498949
+_WHOLE = ("stages", "holes")
 _ODD = (None, "no such word", CellError.NA, CellError.DIV0, 0.0, -3.0, True, 1e9, "", CellError.NUM)
 """Given in the place of one argument: a blank, texts, errors, numbers that many functions refuse, a logical."""
 
@@ -57,8 +58,11 @@ def _leave_out(function: Function, arguments: list[Any], row: int) -> None:
 def _moved(function: Function, parameter: Parameter, base: Any, row: int, place: int) -> Any:
     """The example's argument, moved by up to a tenth; words of the vocabulary in turn, capitals now and then."""
     if isinstance(parameter.kind, Quantity):
+        if parameter.name in _WHOLE:
+            return float(1 + row % 7)
         share = (row * _GOLDEN + place * 0.37) % 1.0
-        return base * (1.0 + 0.1 * (share - 0.5)) if parameter.name != "stages" else float(1 + row % 7)
+        # As a person types numbers; openpyxl stores 16 digits, where a double has 17.
+        return float(f"{base * (1.0 + 0.1 * (share - 0.5)):.9g}")
     if parameter.is_text and isinstance(base, str):
         return _word(function, parameter, base, row)
     return base

@@ -31,7 +31,8 @@ Public Function LpWhy(ByVal about As Variant, ByVal given As Variant) As Variant
     LpWhy = LpAsked("LP_WHY", arguments)
     Exit Function
 Failed:
-    LpWhy = "LP_WHY: the add-in cannot ask Python: " & LpLastLine(Err.Description) & " 'lowpoint excel status' tells more."
+    LpWhy = "LP_WHY: the add-in cannot ask Python: " & LpLastLine(Err.Description) _
+        & " 'lowpoint excel status' tells more."
 End Function
 
 ' What Python says of itself has many lines, and the reason in the last one.
@@ -73,7 +74,7 @@ Private Function LpSent(ByVal called As String, ByRef sent() As Variant) As Vari
     On Error GoTo Lost
 Connected:
     If Server Is Nothing Then LpConnect
-    LpSent = Server.CallUDF("lowpoint.faces.excel_addin.udfs", called, sent, Empty, Empty)
+    LpSent = Server.CallUDF("lowpoint.faces.excel_addin.udfs", (called), sent, Empty, Empty)
     Exit Function
 Lost:
     If Server Is Nothing Or again Then Err.Raise 5, , Err.Description

@@ -94,9 +94,10 @@ def test_attributes_in_either_quotation_marks() -> None:
 @pytest.mark.parametrize(
     "kind, text, value",
     [
-        (b"", b"1.5", 1.5), (b"n", b" 2E3 ", 2000.0), (b"", b"", None), (b"", None, None), (b"str", b"", ""), (b"str", b"a&lt;b_x000A_", "a<b\n"),
-        (b"b", b"1", True), (b"b", b"0", False), (b"e", b"#N/A", CellError.NA), (b"e", b"#BUSY!", "#BUSY!"), (b"s", b"1", "two"),
-        (b"s", b"9", None), (b"d", b"2024-01-01", "2024-01-01"),
+        (b"", b"1.5", 1.5), (b"n", b" 2E3 ", 2000.0), (b"", b"", None), (b"", None, None), (b"str", b"", ""),
+        (b"str", b"a&lt;b_x000A_", "a<b\n"),
+        (b"b", b"1", True), (b"b", b"0", False), (b"e", b"#N/A", CellError.NA), (b"e", b"#BUSY!", "#BUSY!"),
+        (b"s", b"1", "two"), (b"s", b"9", None), (b"d", b"2024-01-01", "2024-01-01"),
     ],
 )  # fmt: skip
 def test_stored_values_are_read(kind: bytes, text: bytes | None, value: Any) -> None:
@@ -107,8 +108,8 @@ def test_stored_values_are_read(kind: bytes, text: bytes | None, value: Any) -> 
 
 def test_shared_strings_are_read_without_their_looks() -> None:
     part = (
-        b'<sst xmlns="u"><si><t>plain</t></si><si><r><rPr><b/></rPr><t>a</t></r><r><t xml:space="preserve"> b</t></r></si>'
-        b'<si/><si><t/></si><si><t>&amp;_x0041_</t><rPh sb="0" eb="1"><t>no</t></rPh></si></sst>'
+        b'<sst xmlns="u"><si><t>plain</t></si><si><r><rPr><b/></rPr><t>a</t></r><r><t xml:space="preserve"> b</t></r>'
+        b'</si><si/><si><t/></si><si><t>&amp;_x0041_</t><rPh sb="0" eb="1"><t>no</t></rPh></si></sst>'
     )
     assert strings_of(part) == ["plain", "a b", "", "", "&A"]
 

@@ -69,7 +69,8 @@ WRONG: list[tuple[Callable[[], object], str]] = [
     (lambda: two_cases(liquid=Liquid.in_units(density=900, pv=[1.0, 60.0], pc=220.64)),
      "case 'normal': pv must be below p1 = 57 bar, got 60 bar. The liquid would boil before the plates: check "
      "temperature and pressure, and gauge against absolute."),
-    (lambda: two_cases(p1=[51, 57, 60]), "cases: flow must have one value, or one for each of the 3 cases, got 2 values."),
+    (lambda: two_cases(p1=[51, 57, 60]),
+     "cases: flow must have one value, or one for each of the 3 cases, got 2 values."),
     (lambda: two_cases(liquid=Liquid.in_units(density=[900, 910, 920], pv=1.0, pc=220.64)),
      "liquid: density must have one value, or one for each of the 2 cases, got 3 values."),
     (lambda: two_cases(names=("a", "a")), "cases: names must be 2 different names, one a case, got a, a."),
@@ -79,7 +80,8 @@ WRONG: list[tuple[Callable[[], object], str]] = [
      f"liquid: density must be at least 100 kg/m3, got 0.998 kg/m3. {SPECIFIC_GRAVITY}"),
     (lambda: Liquid.in_units("us", density=[62, 5], pv=0.3, pc=3200),
      f"liquid, case 2: density must be at least 6 lb/ft3, got 5 lb/ft3. {SPECIFIC_GRAVITY}"),
-    (lambda: Liquid.in_units(density="9,98", pv=0.02, pc=220), "liquid: density must be a number in kg/m3, got '9,98'."),
+    (lambda: Liquid.in_units(density="9,98", pv=0.02, pc=220),
+     "liquid: density must be a number in kg/m3, got '9,98'."),
     (lambda: Liquid.in_units(density=998, pv=220, pc=0.02),
      "liquid: pv must be below pc = 0.02 bar, got 220 bar. Check that the two are not swapped."),
     (lambda: Liquid.in_units("si", density=998, pv=1, pc=2),
@@ -90,8 +92,8 @@ WRONG: list[tuple[Callable[[], object], str]] = [
      "plate: bore (diameter of the bore (of each hole)) must be given, got nothing. Sizes are in mm (in)."),
     (lambda: Plate.in_units(bore=20, holes=2.5), "plate: holes must be a whole number, got 2.5."),
     (lambda: PlateSet(Line.in_units(pipe=102.3), (Plate.in_units(bore=20), Plate.in_units(bore=102.3))),
-     "plate 2: bore must be below the pipe's inside diameter = 102.3 mm, got 102.3 mm. Check that bore and pipe are not "
-     "swapped, and the wear."),
+     "plate 2: bore must be below the pipe's inside diameter = 102.3 mm, got 102.3 mm. Check that bore and pipe are "
+     "not swapped, and the wear."),
     (lambda: PlateSet(Line.in_units(pipe=100), (Plate.in_units(bore=25, holes=16),)),
      "plate 1: bore must be below the pipe's inside diameter over the root of 16 holes = 25 mm, got 25 mm. Check that "
      "bore and pipe are not swapped, and the wear."),

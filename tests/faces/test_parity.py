@@ -40,7 +40,9 @@ def expected(sets: dict[str, list[list[Any]]]) -> dict[str, list[Any]]:
 def differences(name: str, rows: list[list[Any]], got: list[Any], wanted: list[Any]) -> str:
     assert len(got) == len(wanted) == len(rows)
     told = [
-        f"{name}{row}: got {a!r}, a cell has {b!r}" for row, a, b in zip(rows, got, wanted, strict=True) if not same(a, b)
+        f"{name}{row}: got {a!r}, a cell has {b!r}"
+        for row, a, b in zip(rows, got, wanted, strict=True)
+        if not same(a, b)
     ]
     return "\n".join(told[:10])
 
@@ -193,7 +195,9 @@ def _ranges(name: str, rows: list[list[Any]]) -> list[Any]:
 
 
 @pytest.mark.parametrize("name", names())
-def test_one_cell_in_excel(name: str, sets: dict[str, list[list[Any]]], expected: dict[str, list[Any]], excel: Any) -> None:
+def test_one_cell_in_excel(
+    name: str, sets: dict[str, list[list[Any]]], expected: dict[str, list[Any]], excel: Any
+) -> None:
     """The short way of one cell, for a part of the sets."""
     part = range(0, ROWS, 9)
     got = [excel.run(name, *sets[name][row]) for row in part]

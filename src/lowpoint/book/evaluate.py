@@ -11,8 +11,8 @@ from lowpoint import cells
 from lowpoint.cells import OMITTED, CellError, Same
 
 from .curing import instance
-from .lowering import FIT, Arg, Cells, Computed, Literal, Result, Site, formula_of, text_of
 from .plan import Entry, Plan
+from .sites import FIT, Arg, Cells, Computed, Literal, Result, Site, formula_of, text_of
 
 if TYPE_CHECKING:
     from .engine import Engine

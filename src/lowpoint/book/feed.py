@@ -13,11 +13,11 @@ from collections.abc import Iterable, Mapping, Sequence
 from html import escape
 
 from .curing import instance
-from .lowering import formula_of, text_of
 from .package import Package
 from .plan import Entry, Plan
 from .refs import column_letters
 from .sheet import Group, SheetPart
+from .sites import formula_of, text_of
 
 __all__ = ["engine_bytes"]
 

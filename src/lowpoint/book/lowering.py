@@ -9,167 +9,22 @@ values that do not depend on where they are computed. Everything else is a callb
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass, field
 from functools import cached_property
-from itertools import count
 from typing import Any
 
 from . import classes
 from .formula import Formula
 from .formulas import Token, written
-from .refs import Ref, column_letters
+from .guards import guard_of
+from .sites import Arg, Cells, Computed, Literal, Pieces, Result, Setting, Site, Supply, Work
 
-__all__ = [
-    "FIT",
-    "Arg",
-    "Cells",
-    "Literal",
-    "Pieces",
-    "Result",
-    "Setting",
-    "Site",
-    "Slot",
-    "Supply",
-    "Work",
-    "formula_of",
-    "lower",
-    "stored_text",
-    "text_of",
-]
-
-FIT = "LPFIT_"
-WIDEST = 16_000  # columns of a scratch sheet
-
-
-@dataclass(frozen=True, slots=True)
-class Slot:
-    """A scratch column: the formula's row of it belongs to the formula."""
-
-    sheet: str
-    column: int
-
-
-Pieces = list[str | int | Slot]
-"""Formula text: text, row numbers as offsets from the formula's row, and scratch cells."""
-
-
-@dataclass(frozen=True, slots=True)
-class Literal:
-    """An argument that is the same in every row, or omitted."""
-
-    value: Any
-
-
-@dataclass(frozen=True, slots=True)
-class Cells:
-    """An argument read from one cell a row, or from a whole range where the parameter is a table."""
-
-    ref: Ref
-    whole: bool = False
-
-
-@dataclass(slots=True, eq=False)
-class Computed:
-    """An argument, or a guard, that the engine works out in a scratch column."""
-
-    slot: Slot
-    pieces: Pieces
-
-
-@dataclass(frozen=True, slots=True)
-class Result:
-    """An argument that is another batched call of the same formula."""
-
-    site: Site
-
-
-Arg = Literal | Cells | Computed | Result
-
-
-@dataclass(slots=True, eq=False)
-class Site:
-    """One LP_ call of a group of formulas. ``args`` is None for a callback; ``given`` marks arguments not omitted."""
-
-    name: str
-    number: int
-    args: list[Arg] | None
-    given: tuple[bool, ...]
-    own: bool = False  # its result is the cell's own value
-    slot: Slot | None = None  # scratch column of a nested batched call
-    guard: Computed | None = None  # of a batched call: 1 where it is really made; None when it always is
-    inner: list[Site] = field(default_factory=list)  # the calls inside this one
-    level: int = 0
-
-
-@dataclass(slots=True, eq=False)
-class Work:
-    """What becomes of a group: its sites and the engine's formula (None: a value cell, or the stored text as it is)."""
-
-    sites: list[Site] = field(default_factory=list)
-    pieces: Pieces | None = None
-    fit: tuple[int, int] | None = None  # lay the result out over so many rows and columns
-    single: bool = True  # the formula surely gives one value
-
-    @property
-    def own(self) -> Site | None:
-        """The site whose results are the cells' values."""
-        return next((s for s in self.sites if s.own), None)
-
-    @property
-    def slots(self) -> list[Slot]:
-        """All scratch columns."""
-        return [s.slot for s in self.sites if s.slot is not None] + [c.slot for c in self.computed]
-
-    @property
-    def computed(self) -> list[Computed]:
-        """Scratch columns with formulas."""
-        found = [a for s in self.sites for a in s.args or () if isinstance(a, Computed)]
-        return found + [s.guard for s in self.sites if s.guard]
-
-
-@dataclass(frozen=True, slots=True)
-class Setting:
-    """How a formula is stored: its sheet, its kind (see sheet.Group), the rows and columns a legacy array fills."""
-
-    sheet: str
-    kind: str = "plain"
-    size: tuple[int, int] = (1, 1)
-
-
-class Supply:
-    """Site numbers and scratch columns, each given out once."""
-
-    def __init__(self, titles: Iterable[str]) -> None:
-        self._taken = {title.casefold() for title in titles}
-        self._site, self._sheet, self._column = 0, "", WIDEST
-
-    def number(self) -> int:
-        """A new site's number."""
-        self._site += 1
-        return self._site
-
-    def slot(self) -> Slot:
-        """A free scratch column."""
-        if self._column == WIDEST:
-            names = (f"LP_SCRATCH_{n}" for n in count(1))
-            self._sheet = next(name for name in names if name.casefold() not in self._taken)
-            self._taken.add(self._sheet.casefold())
-            self._column = 0
-        self._column += 1
-        return Slot(self._sheet, self._column)
+__all__ = ["lower", "stored_text"]
 
 
 def lower(formula: Formula, setting: Setting, supply: Supply, batch: bool) -> Work:
     """Plan one formula; without ``batch`` all its LP_ calls are callbacks."""
     done = _Lowering(formula, setting, supply, batch)
     return _Lowering(formula, setting, supply, False).work if done.misplaced else done.work
-
-
-def formula_of(work: Work) -> Pieces | None:
-    """The engine's formula with its array laid into the stored range; None where there is none, or the stored one."""
-    if work.pieces is None or work.fit is None:
-        return work.pieces
-    return [f"{FIT}({work.fit[0]},{work.fit[1]},", *work.pieces, ")"]
 
 
 def gives_array(name: str) -> bool:
@@ -319,63 +174,14 @@ class _Lowering:
     def _guards(self) -> None:
         """Guards for the batched calls: callbacks are made by the engine, which takes one branch only."""
         for number, site in self.done.items():
-            pieces = self._guard(number) if site.args is not None else None
+            pieces = guard_of(self.f, number, self._elsewhere) if site.args is not None else None
             if pieces is not None:
                 site.guard = Computed(self.supply.slot(), ["IFERROR(SUM(", *pieces, "),0)"])
                 self.misplaced = not self._anywhere((0, len(self.f.tokens)))
 
-    def _guard(self, number: int) -> Pieces | None:
-        """A formula that gives 1 where the call is made and 0 where it stands in a branch not taken."""
-        taken: Pieces = ["1"]
-        plain = True
-        call = self.f.calls[number]
-        while call.parent is not None:
-            outer = self.f.calls[call.parent]
-            around = self._taken(self.f.name(call.parent), outer.args, call.place, taken)
-            plain = plain and around is None
-            taken, call = around or taken, outer
-        return None if plain else taken
-
-    def _taken(self, name: str, args: list[tuple[int, int]], place: int, inner: Pieces) -> Pieces | None:
-        def part(n: int) -> Pieces:
-            return self._render(args[n], qualify=True)
-
-        if name == "IF" and place > 0:
-            return [
-                "IF(",
-                *part(0),
-                ",",
-                *(inner if place == 1 else ["0"]),
-                ",",
-                *(inner if place == 2 else ["0"]),
-                ")",
-            ]
-        if name in ("IFERROR", "IFNA") and place == 1:
-            return ["IF(", "ISERROR(" if name == "IFERROR" else "ISNA(", *part(0), "),", *inner, ",0)"]
-        if name == "CHOOSE" and place > 0:
-            return ["IF(INT(", *part(0), f")={place},", *inner, ",0)"]
-        if name == "IFS" and place > 0:
-            earlier = [piece for n in range(0, place - 1 if place % 2 else place, 2) for piece in (*part(n), ",0,")]
-            last: Pieces = part(place - 1) if place % 2 else ["TRUE"]
-            return ["IFS(", *earlier, *last, ",", *inner, ",TRUE,0)"]
-        if name == "SWITCH" and place > 1:
-            return self._switch_taken(args, place, inner, part)
-        if name == "LET" and place > 0:
-            bound = [piece for n in range(place - place % 2) for piece in (*part(n), ",")]
-            return ["LET(", *bound, *inner, ")"] if bound else None
-        return None
-
-    def _switch_taken(self, args: list[tuple[int, int]], place: int, inner: Pieces, part: Any) -> Pieces:
-        default = len(args) % 2 == 0 and place == len(args) - 1
-        pairs = range(1, place if default else place - 1, 2)
-        head: Pieces = ["SWITCH(", *part(0)]
-        for n in pairs:
-            head += [",", *part(n), ",0"]
-        if default or place % 2:  # a value to compare with is worked out when none before it matched
-            return [*head, ",", *inner, ")"]
-        return [*head, ",", *part(place - 1), ",", *inner, ",0)"]
-
-    # Text
+    def _elsewhere(self, span: tuple[int, int]) -> Pieces:
+        """The text of a part for a cell on another sheet."""
+        return self._render(span, qualify=True)
 
     def _render(self, span: tuple[int, int], qualify: bool = False, marked: Iterable[int] = ()) -> Pieces:
         pieces: Pieces = []
@@ -448,18 +254,3 @@ def stored_text(formula: Formula) -> Pieces:
         else:
             pieces.append(f"{lp[i]}(" if i in lp else token.text)
     return pieces
-
-
-def text_of(pieces: Pieces) -> list[str | int]:
-    """Pieces with the scratch columns written out and neighbouring text joined."""
-    flat: list[str | int] = []
-    for piece in pieces:
-        parts: list[str | int] = (
-            [f"{piece.sheet}!{column_letters(piece.column)}", 0] if isinstance(piece, Slot) else [piece]
-        )
-        for part in parts:
-            if isinstance(part, str) and flat and isinstance(flat[-1], str):
-                flat[-1] += part
-            else:
-                flat.append(part)
-    return flat

@@ -11,10 +11,11 @@ from .curing import Blocked, Cured
 from .formula import Formula, read
 from .formulas import Unreadable
 from .graph import Block, components, dependencies
-from .lowering import Computed, Setting, Site, Supply, Work, lower, stored_text, text_of
+from .lowering import lower, stored_text
 from .names import Names, Place
 from .refs import Area, Ref
 from .sheet import Group
+from .sites import Computed, Setting, Site, Supply, Work, text_of
 from .tables import Tables
 
 __all__ = ["Context", "Entry", "Plan", "make_plan", "mark_fed", "span"]

@@ -81,17 +81,19 @@ def drilled(sized: Sized, duty: Duty, construction: Construction, load: float, c
     of these the one whose flow is nearest to the wanted one. They are judged with nothing else in the line: the plates
     share p1 - p2 as their losses do. If none keeps the margin, the one with the best least margin.
     """
+    bores = sized.split.bores
     if criteria.rounding == "none":
-        return sized.split.bores
-    choices = drill_choices(sized.split.bores, duty.pipe, duty.holes, criteria)
+        return bores
+    choices = drill_choices(bores, duty.pipe, duty.holes, criteria)
     if criteria.rounding == "down":
         return choices[0]
-    count = choices.shape[1]
+    count = len(bores)
     lengths = construction.bore_length(construction.thickness_for(choices, load), duty.pipe)
     drops, limits = (x.reshape(2, count) for x in duty.curves(choices.ravel(), lengths.ravel()))
-    pick = (np.arange(2**count)[:, None] >> np.arange(count)) & 1
     column = np.arange(count)
+    pick = np.arange(2**count)[:, None] >> column & 1
     least, total = _least_margin(duty, drops[pick, column], limits[pick, column])
+    # Where the margin is not kept to begin with (a given number of plates) there is none to keep.
     wanted = criteria.margin if sized.margin >= criteria.margin - 1e-9 else -np.inf
     keeps = least >= wanted - 1e-9
     away = np.abs(np.log(total / (duty.p1 - duty.p2)))

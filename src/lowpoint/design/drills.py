@@ -44,11 +44,6 @@ class DrillSeries:
         ended = np.append(sizes, np.nan)
         return ended[at_or_below], ended[at_or_above]
 
-    def nearest(self, bore: Any) -> Any:
-        """The nearest size, the smaller one of two that are equally near."""
-        low, high = self.around(bore)
-        return np.where(np.isnan(high) | (bore - low <= high - bore), np.where(np.isnan(low), high, low), high)
-
 
 @cache
 def _sizes(drills: DrillSeries) -> Any:

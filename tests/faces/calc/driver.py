@@ -15,6 +15,7 @@ import time
 import uno
 from com.sun.star.beans import PropertyValue
 
+ERRORS = 4  # com.sun.star.sheet.FormulaResult.ERROR
 FILTERS = {".xlsx": "Calc MS Excel 2007 XML", ".ods": "calc8"}
 
 
@@ -80,9 +81,12 @@ class Driver:
         )
 
     def open(self, path):
-        begun = time.monotonic()
+        """The book's number, and the seconds of processor time that the opening took."""
+        begun = self.busy()
         book = self.desktop.loadComponentFromURL(url(path), "_blank", 0, properties(Hidden=True))
-        return [self._kept(book), time.monotonic() - begun]
+        if book is None:
+            raise OSError(f"the office does not open {path}")
+        return [self._kept(book), self.busy() - begun]
 
     def _kept(self, book):
         number = len(self.books)
@@ -111,10 +115,11 @@ class Driver:
         cells = self._range(book, place)
         at = cells.RangeAddress
         data = cells.getDataArray()
-        errors = [
-            [cells.getCellByPosition(x, y).getError() for x in range(at.EndColumn - at.StartColumn + 1)]
-            for y in range(at.EndRow - at.StartRow + 1)
-        ]
+        errors = [[0] * len(row) for row in data]
+        for part in cells.queryFormulaCells(ERRORS).RangeAddresses:
+            for y in range(part.StartRow - at.StartRow, part.EndRow - at.StartRow + 1):
+                for x in range(part.StartColumn - at.StartColumn, part.EndColumn - at.StartColumn + 1):
+                    errors[y][x] = cells.getCellByPosition(x, y).getError()
         return [[[value, error] for value, error in zip(*both, strict=True)] for both in zip(data, errors, strict=True)]
 
     def formulas(self, book, place):

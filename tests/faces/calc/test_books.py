@@ -32,7 +32,7 @@ def book(tmp_path: Path) -> Path:
     made = openpyxl.Workbook()
     sheet = made.active
     assert sheet is not None
-    sheet.append([10, 5, 1, "=LP_SIGMA(A1,B1,C1)", f'=LP_REGIME(D1,2,1.7)&{QUOTED}', '=LP_WHY("LP_SIGMA",A1,B1,C1)'])
+    sheet.append([10, 5, 1, "=LP_SIGMA(A1,B1,C1)", f"=LP_REGIME(D1,2,1.7)&{QUOTED}", '=LP_WHY("LP_SIGMA",A1,B1,C1)'])
     sheet.append([12, 5, 1, "=ROUND(lp_sigma(A2,B2,C2),6)", '=IF(LP_MARGIN(D2,2)<0,"low","high")', "=Index"])
     sheet.append([20, 5, 1, "=LPU_COLUMN(100,10,62)", "=LP.SIGMA(A1,B1,C1)", "=_xll.LP_SIGMA(A1,B1,C1)"])
     made.defined_names["Index"] = DefinedName("Index", attr_text="LP_SIGMA(Sheet!$A$1,Sheet!$B$1,Sheet!$C$1)")
@@ -171,7 +171,9 @@ def test_the_sample_list_shows_what_recalc_computes(office: Any, tmp_path: Path)
                     want = stored[sheet.title][cell.coordinate].value
                     got = shown[cell.row - 1][cell.column - 1]
                     if not alike(got, want):
-                        differ.append(f"{sheet.title}!{cell.coordinate} {cell.value[:80]}: Calc {got!r}, recalc {want!r}")
+                        differ.append(
+                            f"{sheet.title}!{cell.coordinate} {cell.value[:80]}: Calc {got!r}, recalc {want!r}"
+                        )
     office.close(number)
     assert not differ, f"{len(differ)} of {tried}:\n" + "\n".join(differ[:20])
     assert tried > 1000

@@ -23,7 +23,9 @@ def test_committed_sources_are_not_stale(tmp_path: Path) -> None:
     """After a change of the registry: ``lowpoint calc sources addin/calc``."""
     assert cli.main(["calc", "sources", str(tmp_path)]) == 0
     made = {path.name: path.read_text(encoding="utf-8") for path in tmp_path.iterdir()}
-    committed = {path.name: path.read_text(encoding="utf-8") for path in COMMITTED.iterdir() if path.name != "README.md"}
+    committed = {
+        path.name: path.read_text(encoding="utf-8") for path in COMMITTED.iterdir() if path.name != "README.md"
+    }
     assert sorted(made) == sorted(committed)
     stale = [name for name, text in made.items() if committed[name] != text]
     assert not stale, "run 'lowpoint calc sources addin/calc'"

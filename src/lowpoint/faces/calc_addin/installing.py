@@ -16,7 +16,7 @@ from lowpoint import __version__
 from lowpoint.errors import LowpointError
 from lowpoint.faces.calc_addin.bundle import bundle
 from lowpoint.faces.calc_addin.inside.settings import FILE, FOLDER, LOG, Settings, SettingsError
-from lowpoint.faces.calc_addin.office import find_office, refuse_if_open
+from lowpoint.faces.calc_addin.office import find_office, give_to, owner_of, refuse_if_open
 from lowpoint.faces.calc_addin.texts import IDENTIFIER
 
 __all__ = ["install", "own_settings", "status", "uninstall"]
@@ -124,12 +124,15 @@ def _package() -> Iterator[Path]:
 def _changed_settings(profile: Path, settings: Settings) -> Iterator[None]:
     """Write the settings; what was there before comes back if the body fails."""
     path = profile / "user" / FOLDER / FILE
-    made = [folder for folder in (path.parent, *path.parent.parents) if not folder.exists()]
-    before = path.read_bytes() if path.exists() else None
+    with _denied(profile):
+        made = [folder for folder in (path.parent, *path.parent.parents) if not folder.exists()]
+        before = path.read_bytes() if path.exists() else None
     try:
         with _denied(profile):
+            owner = owner_of(profile)
             path.parent.mkdir(parents=True, exist_ok=True)
             _write(path, settings.as_text().encode())
+            give_to(owner, [path, *made])
             yield
     except BaseException:
         with suppress(OSError):

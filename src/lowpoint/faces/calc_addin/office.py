@@ -8,14 +8,14 @@ import shutil
 import subprocess
 import sys
 import tempfile
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from contextlib import contextmanager
 from dataclasses import dataclass
 from pathlib import Path
 
 from lowpoint.errors import LowpointError
 
-__all__ = ["Office", "default_profile", "find_office", "refuse_if_open"]
+__all__ = ["Office", "default_profile", "find_office", "give_to", "owner_of", "refuse_if_open"]
 
 SECONDS = 180
 _USUAL = (
@@ -45,7 +45,7 @@ class Office:
 
     def unopkg(self, profile: Path, *words: str) -> str:
         """Run the office's own program for extensions on a profile; LowpointError with what it said if it fails."""
-        if getattr(os, "geteuid", lambda: 1)() == 0:
+        if _is_root():
             return self._unopkg_as_root(profile, words)
         return _run(self._command(profile, words), dict(os.environ))
 
@@ -60,11 +60,11 @@ class Office:
             copy = stage / "profile"
             _copy_parts(profile / "user", copy / "user")
             inputs = [_brought(stage, word) for word in words]
-            _give(stage, _NOBODY, _NOBODY)
+            owner = owner_of(profile)
+            give_to((_NOBODY, _NOBODY), [stage, *stage.rglob("*")])
             settings = {**os.environ, "HOME": scratch, "TMPDIR": scratch}
             said = _run(self._command(copy, inputs), settings, user=_NOBODY)
-            owner = _owner(profile)
-            _give(copy, *owner)
+            give_to(owner, [copy, *copy.rglob("*")])
             with _replaced(profile / "user"):
                 _copy_parts(copy / "user", profile / "user")
             return said
@@ -113,15 +113,22 @@ def _brought(stage: Path, word: str) -> str:
     return str(shutil.copy(word, stage))
 
 
-def _owner(profile: Path) -> tuple[int, int]:
+def owner_of(profile: Path) -> tuple[int, int]:
+    """User and group that a profile belongs to, or would belong to if it were made."""
     there = next(folder for folder in (profile, *profile.parents) if folder.exists())
     state = os.stat(there)
     return state.st_uid, state.st_gid
 
 
-def _give(folder: Path, user: int, group: int) -> None:
-    for inner in (folder, *folder.rglob("*")):
-        os.chown(inner, user, group, follow_symlinks=False)
+def give_to(owner: tuple[int, int], paths: Iterable[Path]) -> None:
+    """What root makes in a profile belongs to whom the profile belongs to; others make nothing that is not theirs."""
+    if _is_root():
+        for path in paths:
+            os.chown(path, *owner, follow_symlinks=False)
+
+
+def _is_root() -> bool:
+    return getattr(os, "geteuid", lambda: 1)() == 0
 
 
 def _run(command: Sequence[str], environment: Mapping[str, str], user: int | None = None) -> str:

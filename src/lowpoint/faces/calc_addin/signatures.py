@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from lowpoint import reference
 from lowpoint.declare import Parameter
 from lowpoint.faces.calc_addin.typelib import ANY, MANY, Method
+from lowpoint.quantities import Quantity
 from lowpoint.registry import Function, functions
 
 __all__ = ["INTERFACE", "MODULES", "RAISES", "SERVICE", "Signature", "fingerprint", "methods", "signatures"]
@@ -76,6 +77,13 @@ def _variadic(function: Function) -> tuple[Argument, ...]:
     )
 
 
+def _zero_is_a_value(kind: object) -> bool:
+    """Calc shows an add-in a single blank cell as 0; where 0 is impossible it is refused or stands for omitted."""
+    if not isinstance(kind, Quantity) or kind.zero_is_blank:
+        return False
+    return kind.low < 0.0 < kind.high or (kind.low == 0.0 and kind.closed_low)
+
+
 def _argument(parameter: Parameter, told: dict[str, object]) -> Argument:
     """What the wizard shows under the argument: meaning, unit, possible values, and what an omission means."""
     unit, bounds, words = told["unit"], told["bounds"], told["words"]
@@ -84,4 +92,5 @@ def _argument(parameter: Parameter, told: dict[str, object]) -> Argument:
     if 0 < len(words) <= _MOST_WORDS:
         text += ": " + ", ".join(words)
     text += f"; {bounds}" if bounds else ""
+    text += "; a blank cell counts as 0" if _zero_is_a_value(parameter.kind) else ""
     return Argument(parameter.name, ANY, f"{text} ({told['default']})")

@@ -82,7 +82,7 @@ Private Function LpSent(ByVal called As String, ByRef sent() As Variant) As Vari
     On Error GoTo Lost
 Connected:
     If Server Is Nothing Then LpConnect
-    LpSent = Server.CallUDF("{MODULE}", called, sent, Empty, Empty)
+    LpSent = Server.CallUDF("{MODULE}", (called), sent, Empty, Empty)
     Exit Function
 Lost:
     If Server Is Nothing Or again Then Err.Raise 5, , Err.Description

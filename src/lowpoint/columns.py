@@ -14,7 +14,7 @@ import numpy as np
 import numpy.typing as npt
 
 from lowpoint.declare import Parameter
-from lowpoint.problems import CellError
+from lowpoint.problems import PASSED_ON, CellError
 from lowpoint.quantities import Table, Word
 
 __all__ = ["OMITTED", "Column", "number_column", "read_table", "word_column"]
@@ -168,7 +168,7 @@ def read_table(parameter: Parameter, cells: Any) -> tuple[Any, CellError | None,
     flat = number_column([cell for row in rows for cell in row])
     if flat.errors:
         first = flat.errors[min(flat.errors)]
-        return None, first, f"{name} holds {first}, passed on unchanged"
+        return None, first, f"{name} holds {first}, {PASSED_ON}"
     if flat.texts:
         return None, CellError.VALUE, f"{name} must hold numbers only, got '{flat.texts[min(flat.texts)]}'"
     assert flat.numbers is not None

@@ -11,7 +11,7 @@ import numpy as np
 import numpy.typing as npt
 
 from lowpoint.declare import Declaration, Must, Parameter
-from lowpoint.problems import CellError, shown
+from lowpoint.problems import PASSED_ON, CellError, shown
 from lowpoint.quantities import Quantity, Word
 
 if TYPE_CHECKING:
@@ -39,7 +39,7 @@ def sentence(function: Checked, words: str, remedy: str = "") -> Sentence:
 
 
 def passed_on(function: Checked, parameter: Parameter, error: CellError) -> Sentence:
-    return sentence(function, f"{parameter.name} is {error}, passed on unchanged")
+    return sentence(function, f"{parameter.name} is {error}, {PASSED_ON}")
 
 
 def blank(function: Checked, parameter: Parameter) -> Sentence:

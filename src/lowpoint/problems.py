@@ -9,7 +9,10 @@ from enum import StrEnum
 import numpy as np
 import numpy.typing as npt
 
-__all__ = ["CellError", "Fault", "Ledger", "shown"]
+__all__ = ["PASSED_ON", "CellError", "Fault", "Ledger", "shown"]
+
+PASSED_ON = "passed on unchanged"
+"""How the sentence ends where an error only came through."""
 
 
 class CellError(StrEnum):

@@ -10,7 +10,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from design.lines import HOT, WATER, served
+from design.lines import HOT, served
 from design.plain import PlainPlate, Water, reynolds, velocity
 from lowpoint.design import Cases, Construction, Criteria, Line, Plate, SeriesDesign, Valve, best_plate, rate_series
 from lowpoint.errors import LowpointError
@@ -104,8 +104,9 @@ def test_no_other_bore_is_better(
     criteria = Criteria(kind=kind, rounding="none")
     try:
         found = best(valve, cases, made, criteria)
-    except LowpointError as error:
-        assert "valve" in str(error)  # noqa: PT017 - some valves of this size do not pass the flow at all
+    except LowpointError as error:  # some valves of this size do not pass the flow at all
+        if error.subject != "valve and plate":
+            raise
         return
     for bore in np.geomspace(0.015, 0.1, 40):
         other = rate_series(valve, Plate(bore, 0.008 if thick else None), LINE, cases, criteria)
@@ -229,10 +230,4 @@ def test_worn() -> None:
     new, worn = (rate_series(GLOBE, Plate(0.042), LINE, bypass(), worn=w) for w in (0.0, 0.05))
     assert (worn.between < new.between).all()
     assert (worn.margins[0] < new.margins[0]).all()
-    assert (worn.coefficient < new.coefficient).all()
-
-
-def test_water_of_the_pump_is_that_of_the_cases() -> None:
-    """The same liquid object serves many cases."""
-    assert WATER.density.tolist() == [998.2]
-    assert bypass().liquid.density.tolist() == [998.2] * 3
+    assert worn.coefficient[2] < new.coefficient[2]  # at the smallest flow the valve is choked either way

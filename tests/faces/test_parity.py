@@ -1,4 +1,4 @@
-"""Every function gives the same double, word or error in Python, in a cell, in a column, in a recalculated book, in Excel.
+"""Every function gives the same double, word or error in Python, in cells, in a recalculated book and in Excel.
 
 Calc has its own test, in `faces/calc`, for it cannot tell a blank cell from 0; it may take its arguments from
 `parity_cases` too.

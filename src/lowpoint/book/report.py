@@ -7,6 +7,8 @@ from dataclasses import dataclass, field
 from enum import Enum
 from typing import Any, NamedTuple
 
+from lowpoint.problems import PASSED_ON
+
 __all__ = ["Change", "Failure", "Kept", "Report"]
 
 
@@ -28,6 +30,11 @@ class Failure:
     function: str
     error: str
     reason: str
+
+    @property
+    def passed_on(self) -> bool:
+        """Did the call only pass on an error that came in? Then the cause stands in another cell."""
+        return PASSED_ON in self.reason
 
 
 @dataclass(frozen=True, slots=True)
@@ -82,12 +89,20 @@ class Report:
                 "changed_unfed": len(self.unfed),
                 "untouched": self.untouched,
                 "failed": len(self.failed),
+                "failed_passed_on": sum(f.passed_on for f in self.failed),
                 "not_refreshed": len(self.kept),
             },
             "changed": [_change(c) for c in self.changed],
             "changed_unfed": [_change(c) for c in self.unfed],
             "failed": [
-                {"sheet": f.sheet, "cell": f.cell, "function": f.function, "error": f.error, "reason": f.reason}
+                {
+                    "sheet": f.sheet,
+                    "cell": f.cell,
+                    "function": f.function,
+                    "error": f.error,
+                    "reason": f.reason,
+                    "passed_on": f.passed_on,
+                }
                 for f in self.failed
             ],
             "not_refreshed": [{"sheet": k.sheet, "cell": k.cell, "reason": k.reason} for k in self.kept],
@@ -110,8 +125,11 @@ class Report:
             f"({self.seconds:.1f} s)."
         )
         if self.failed:
-            yield f"{_many(len(self.failed), 'LP_ call')} gave an error:"
-            yield from _cut([f"{_at(f.sheet, f.cell)} {f.error}  {f.reason}" for f in self.failed], limit)
+            first = [f for f in self.failed if not f.passed_on]
+            rest = [f for f in self.failed if f.passed_on]
+            only = f", {len(rest)} of them only because they read another cell's error" if rest else ""
+            yield f"{_many(len(self.failed), 'LP_ call')} gave an error{only}:"
+            yield from _cut([f"{_at(f.sheet, f.cell)} {f.error}  {f.reason}" for f in first + rest], limit)
         if self.kept:
             yield f"{_many(len(self.kept), 'cell')} could not be refreshed and kept the old value:"
             yield from _cut([f"{_at(k.sheet, k.cell)}  {k.reason}" for k in self.kept], limit)

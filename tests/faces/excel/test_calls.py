@@ -6,8 +6,8 @@ import math
 from typing import Any
 
 import pytest
-import registry_cases
 
+import registry_cases
 from lowpoint import cells
 from lowpoint.declare import Parameter
 from lowpoint.problems import CellError

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import errno
 import os
 import secrets
 import sys
@@ -53,12 +54,14 @@ def uninstall(profile: Path) -> bool:
     office = find_office()
     refuse_if_open(profile)
     there = _installed_version(profile) is not None
-    if there:
-        with _denied(profile):
-            office.unopkg(profile, "remove", IDENTIFIER)
     folder = profile / "user" / FOLDER
     left_over = folder.is_dir()
     with _denied(profile):
+        # Asked first: an add-in must not be taken out whose settings then stay behind.
+        if left_over and not os.access(folder, os.W_OK):
+            raise PermissionError(errno.EACCES, os.strerror(errno.EACCES))
+        if there:
+            office.unopkg(profile, "remove", IDENTIFIER)
         for name in (FILE, LOG):
             (folder / name).unlink(missing_ok=True)
         with suppress(OSError):

@@ -17,6 +17,7 @@ from pathlib import Path
 HERE = Path(__file__).parent
 sys.path.insert(0, str(HERE))
 
+import bench_design  # noqa: E402
 import bench_kernels  # noqa: E402
 import bench_orifices  # noqa: E402
 import bench_recalc  # noqa: E402
@@ -26,6 +27,7 @@ from figures import Figure  # noqa: E402
 SUITES: dict[str, Callable[[bool], Iterator[Figure]]] = {
     "kernels": bench_kernels.figures,
     "orifices": bench_orifices.figures,
+    "design": bench_design.figures,
     "recalc": bench_recalc.figures,
     "start": bench_start.figures,
 }

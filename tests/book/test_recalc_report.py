@@ -101,6 +101,7 @@ def test_a_call_in_a_branch_that_is_not_taken_is_no_failure(tmp_path: Path, text
 def test_the_report_as_data_is_plain_json(tmp_path: Path) -> None:
     cells = INPUTS | {
         "E1": formula("LP_SIGMA(B1,A1,C1)", "1"),
+        "E2": formula("LP_MARGIN(E1,2)", "1"),
         "F1": formula("NOSUCH(1)", "2"),
         "G1": formula("A1*2", "3"),
         "H1": formula("A1&B1=C1", "4"),
@@ -108,13 +109,19 @@ def test_the_report_as_data_is_plain_json(tmp_path: Path) -> None:
     report = both(bare(tmp_path / "list.xlsx", cells)).report
     plain = json.loads(json.dumps(report.to_json()))
     assert plain["counts"] == {
-        "recomputed": 3, "lp_calls": 1, "changed": 1, "changed_unfed": 2, "untouched": 0, "failed": 1,
-        "not_refreshed": 1,
+        "recomputed": 4, "lp_calls": 2, "changed": 2, "changed_unfed": 2, "untouched": 0, "failed": 2,
+        "failed_passed_on": 1, "not_refreshed": 1,
     }  # fmt: skip
-    assert plain["changed"] == [{"sheet": "Intake", "cell": "E1", "old": 1.0, "new": "#NUM!"}]
+    assert plain["changed"] == [
+        {"sheet": "Intake", "cell": cell, "old": 1.0, "new": "#NUM!"} for cell in ("E1", "E2")
+    ]  # fmt: skip
+    passed_on = "LP_MARGIN: sigma is #NUM!, passed on unchanged."
     assert plain["failed"] == [
-        {"sheet": "Intake", "cell": "E1", "function": "LP_SIGMA", "error": "#NUM!", "reason": SWAPPED}
-    ]
+        {"sheet": "Intake", "cell": "E1", "function": "LP_SIGMA", "error": "#NUM!", "reason": SWAPPED,
+         "passed_on": False},
+        {"sheet": "Intake", "cell": "E2", "function": "LP_MARGIN", "error": "#NUM!", "reason": passed_on,
+         "passed_on": True},
+    ]  # fmt: skip
     assert plain["not_refreshed"][0]["cell"] == "F1"
     assert {d["id"] for d in plain["engine_differences"]} == {"number-text-15-digits", "unknown-function"}
     assert {d["treatment"] for d in plain["engine_differences"]} == {"cured", "blocks"}

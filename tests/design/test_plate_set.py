@@ -240,7 +240,7 @@ def test_a_case_that_falls_short_is_named() -> None:
     last = found.count - 1
     worst = f"{found.rating.margin[last, 1]:.3g} in low sea"
     assert str(notes[-1]) == (
-        f"plate {last + 1}: the margin to its constant limit is {worst}, below the 0.1 asked for [low sea]"
+        f"plate {last + 1}: the margin to constant cavitation is {worst}, below the 0.1 asked for [low sea]"
     )
 
 

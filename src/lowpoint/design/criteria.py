@@ -42,6 +42,11 @@ class Criteria(Inputs):
     plugging: Plugging = 3e-3
     system: str = "metric"
 
+    @property
+    def limit_name(self) -> str:
+        """The limit that margins count to, in words."""
+        return "choking" if self.kind == "choked" else f"{self.kind} cavitation"
+
     def __post_init__(self) -> None:
         super().__post_init__()
         self._word("kind", KINDS)

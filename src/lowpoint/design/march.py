@@ -26,7 +26,7 @@ from lowpoint.design.plates import PlateSet
 from lowpoint.physics.orifices import orifice_limit
 from lowpoint.physics.plate_loss import Loss, losses
 
-__all__ = ["Geometry", "March", "backward", "march", "passed"]
+__all__ = ["Geometry", "March", "backward", "before_plate", "choking_index", "march", "passed"]
 
 MOST_ROUNDS = 60
 
@@ -72,12 +72,21 @@ class March:
     loss: Loss
 
 
+def before_plate(dynamic: Any, k: Any, fall: Any, after: Any, floor: Any) -> Any:
+    """Pressure that a flow needs before a plate, ``max(p_after + K x, FF pv + F x)``: free, or choked."""
+    return np.maximum(after + k * dynamic, floor + fall * dynamic)
+
+
+def choking_index(loss: Loss, before: Any, pv: Any, floor: Any) -> Any:
+    """Index at which a plate chokes, ``(p - pv)/(FL^2 (p - FF pv))`` with p before it."""
+    return (before - pv) / (loss.recovery2 * (before - floor))
+
+
 def backward(dynamic: Any, loss: Loss, p2: Any, floor: Any) -> Any:
     """Pressures before and between the plates that a flow needs, and p2: (plates + 1, cases)."""
-    drops, chokes = np.broadcast_arrays(loss.k * dynamic, loss.fall * dynamic + floor)
-    pressures = [np.broadcast_to(p2, drops.shape[1:])]
-    for drop, choke in zip(drops[::-1], chokes[::-1], strict=True):
-        pressures.append(np.maximum(pressures[-1] + drop, choke))
+    pressures = [p2]
+    for k, fall in zip(loss.k[::-1], loss.fall[::-1], strict=True):
+        pressures.append(before_plate(dynamic, k, fall, pressures[-1], floor))
     return np.array(pressures[::-1])
 
 

@@ -12,7 +12,18 @@ import numpy as np
 from lowpoint.declare import Caution
 from lowpoint.design.checks import told
 from lowpoint.design.plates import CLEAR_OF_EACH_OTHER
-from lowpoint.physics.plate_cautions import LARGEST_DROP, PLATE_CAUTIONS, SLOW_TEXT, slow
+from lowpoint.physics.plate_cautions import (
+    BEYOND_ISO,
+    BY_BOTH,
+    BY_IDELCHIK,
+    BY_ISO,
+    LARGEST_DROP,
+    REATTACHING,
+    SHORT,
+    SLOW_TEXT,
+    THICK,
+    slow,
+)
 
 if TYPE_CHECKING:
     from lowpoint.design.rating import Rating
@@ -43,24 +54,26 @@ class Note:
         return where + self.text + when
 
 
-def _holds(caution: Caution, values: dict[str, Any]) -> Any:
-    wanted = inspect.signature(caution.when).parameters
-    return np.broadcast_to(caution.when(*(values[name] for name in wanted)), values["bore"].shape)
+RULES = (BY_ISO, BY_IDELCHIK, BY_BOTH)
+OF_PLATES = (
+    ("ISO", BY_IDELCHIK), ("ISO", BY_BOTH), ("ISO", BEYOND_ISO), ("reattachment", REATTACHING), ("thick", THICK),
+)  # fmt: skip
+"""Cautions of the kernels that depend on a plate alone."""
 
 
-def _of_geometry(rating: Rating) -> dict[str, Any]:
+def _of_geometry(rating: Rating, caution: Caution) -> Any:
+    """For which plates a caution of the kernels holds."""
     plates = rating.plates
     values = {name: plates.column(name) for name in ("bore", "bore_length", "holes")}
-    return {**values, "pipe": np.full(plates.count, plates.pipe)}
+    values["pipe"] = np.full(plates.count, plates.pipe)
+    wanted = inspect.signature(caution.when).parameters
+    return np.broadcast_to(caution.when(*(values[name] for name in wanted)), (plates.count,))
 
 
 def rules(rating: Rating) -> tuple[str, ...]:
     """Which rule gave the loss of each plate's thin form, in words."""
-    values = _of_geometry(rating)
-    told_by = [(c.text, _holds(c, values)) for c in PLATE_CAUTIONS if c.label == "rule"]
-    return tuple(
-        "; ".join(text for text, holds in told_by if holds[i]) for i in range(rating.plates.count)
-    )  # fmt: skip
+    holding = [(rule.text, _of_geometry(rating, rule)) for rule in RULES]
+    return tuple(next(text for text, holds in holding if holds[i]) for i in range(rating.plates.count))
 
 
 def notes(rating: Rating) -> tuple[Note, ...]:
@@ -68,34 +81,33 @@ def notes(rating: Rating) -> tuple[Note, ...]:
     return (*_each(rating), *_whole(rating))
 
 
-_TOPICS = {"outside ISO": "ISO", "attach": "reattachment", "bore is long": "thick", "plugged": "plugging"}
-
-
-def _topic(text: str) -> str:
-    return next((topic for word, topic in _TOPICS.items() if word in text), "plate")
-
-
 def _each(rating: Rating) -> Iterator[Note]:
-    values = _of_geometry(rating)
-    plugging, system = rating.criteria.plugging, rating.cases.system
-    of_plates = [(_topic(c.text), c.text, _holds(c, values)) for c in PLATE_CAUTIONS if c.label != "rule"]
-    of_plates = [entry for entry in of_plates if entry[0] != "plugging"]
-    outside = (rating.beta < FIT[0] * (1.0 - 1e-9)) | (rating.beta > FIT[1] * (1.0 + 1e-9))
-    thin = np.nan_to_num(values["bore_length"] / values["bore"]) <= 0.1
-    of_plates += [
-        ("plugging", f"the bore is below {told(plugging, 'size', system)} and easily plugged",
-         values["bore"] < plugging),
-        ("limits", f"bore over pipe is outside {FIT[0]:g} to {FIT[1]:g}, for which incipient and constant cavitation "
-         "were measured; the fit's end rule was continued", outside),
-        ("limits", "incipient and constant cavitation were measured on thin plates; with a long bore they begin at a "
-         "higher index: an estimate", ~thin),
-        ("limits", "incipient and constant cavitation were measured on plates with one hole", values["holes"] > 1.0),
-    ]  # fmt: skip
+    found = [(topic, caution.text, _of_geometry(rating, caution)) for topic, caution in OF_PLATES]
+    found += [("plugging", *_plugging(rating)), *(("limits", text, holds) for text, holds in _of_limits(rating))]
     for number in range(rating.plates.count):
-        for topic, text, holds in of_plates:
+        for topic, text, holds in found:
             if holds[number]:
                 yield Note(topic, text, number + 1)
         yield from _in_cases(rating, number)
+
+
+def _plugging(rating: Rating) -> tuple[str, Any]:
+    least = rating.criteria.plugging
+    text = f"the bore is below {told(least, 'size', rating.cases.system)} and easily plugged"
+    return text, rating.plates.column("bore") < least
+
+
+def _of_limits(rating: Rating) -> list[tuple[str, Any]]:
+    """Where the published limits were not measured."""
+    bore, length, holes = (rating.plates.column(name) for name in ("bore", "bore_length", "holes"))
+    outside = (rating.beta < FIT[0] * (1.0 - 1e-9)) | (rating.beta > FIT[1] * (1.0 + 1e-9))
+    return [
+        (f"bore over pipe is outside {FIT[0]:g} to {FIT[1]:g}, for which incipient and constant cavitation were "
+         "measured; the fit's end rule was continued", outside),
+        ("incipient and constant cavitation were measured on thin plates; with a long bore they begin at a higher "
+         "index: an estimate", np.nan_to_num(length / bore) > SHORT),
+        ("incipient and constant cavitation were measured on plates with one hole", holes > 1.0),
+    ]  # fmt: skip
 
 
 def _in_cases(rating: Rating, plate: int) -> Iterator[Note]:
@@ -106,9 +118,9 @@ def _in_cases(rating: Rating, plate: int) -> Iterator[Note]:
         most, limit = told(rating.net_drop[plate].max(), "pressure", system), told(LARGEST_DROP, "pressure", system)
         yield Note("ISO", f"the drop, up to {most}, is above the {limit} of ISO 5167-2", plate + 1,
                    _named(rating, steep))  # fmt: skip
-    bore = rating.plates.plates[plate].bore
-    creeping = np.broadcast_to(slow(cases.reynolds(rating.flow, rating.plates.pipe), bore, rating.plates.pipe),
-                               steep.shape)  # fmt: skip
+    pipe = rating.plates.pipe
+    creeping = slow(cases.reynolds(rating.flow, pipe), rating.plates.plates[plate].bore, pipe)
+    creeping = np.broadcast_to(creeping, steep.shape)
     if creeping.any():
         yield Note("ISO", SLOW_TEXT, plate + 1, _named(rating, creeping))
     if rating.choked[plate].any():
@@ -151,11 +163,9 @@ def _whole(rating: Rating) -> Iterator[Note]:
         yield Note("flashing", "the liquid flashes after the last plate: no plate cures that; raise the back-pressure "
                    "or cool the liquid", 0, _named(rating, flashing))  # fmt: skip
     if plates.line.free_discharge:
-        yield Note(
-            "free discharge",
-            "the last plate discharges freely: nothing is recovered after it, so its drop is "
-            f"that to the vena contracta and it passes only {rating.fl[-1].min():.3g} of the flow (FL)",
-        )
+        text = "the last plate discharges freely: nothing is recovered after it, so its drop is that to the vena "
+        text += f"contracta and it passes only {rating.fl[-1].min():.3g} of the flow (FL)"
+        yield Note("free discharge", text)
     yield from _flow(rating)
 
 

@@ -4,21 +4,19 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from functools import cached_property
-from typing import Any
+from typing import Any, ClassVar
 
 import numpy as np
 
 from lowpoint.design.cases import Cases
 from lowpoint.design.criteria import Criteria
-from lowpoint.design.march import Geometry, march
+from lowpoint.design.march import Geometry, choking_index, march
 from lowpoint.design.notes import Note, notes, rules
 from lowpoint.design.plates import PlateSet
 from lowpoint.physics.orifices import orifice_drop
 from lowpoint.physics.regime import regime_word
 
 __all__ = ["Rating", "State", "rate"]
-
-BASIS = "published, form assumed (Kuroda, Fukuda and Cho 1978, thin plates); choked derived"
 
 
 @dataclass(frozen=True)
@@ -50,6 +48,9 @@ class Rating:
     ``net_drop`` is the permanent drop, ``tap_drop`` what an instrument between the taps shows: never the same thing.
     ``margin`` is ``sigma/limit - 1`` to the limit that the criteria name, 0 and below crossed.
     """
+
+    basis: ClassVar[str] = "published, form assumed (Kuroda, Fukuda and Cho 1978, thin plates); choked derived"
+    """Where the limits come from."""
 
     plates: PlateSet
     cases: Cases
@@ -106,11 +107,6 @@ class Rating:
         plate, case = np.unravel_index(int(np.argmin(self.margin)), self.margin.shape)
         return int(plate), int(case)
 
-    @property
-    def basis(self) -> str:
-        """Where the limits come from."""
-        return BASIS
-
     @cached_property
     def rules(self) -> tuple[str, ...]:
         """(plates): which published equation gave the loss, in words."""
@@ -146,7 +142,7 @@ def rate(plates: PlateSet, cases: Cases, criteria: Criteria | None = None, worn:
     p_in, p_out = gone.pressures[:-1], gone.pressures[1:]
     pv = cases.liquid.pv
     incipient, constant = (np.broadcast_to(geometry.limit(kind), shape) for kind in ("incipient", "constant"))
-    choking = (p_in - pv) / (gone.loss.recovery2 * (p_in - cases.critical_floor))
+    choking = choking_index(gone.loss, p_in, pv, cases.critical_floor)
     sigma = (p_in - pv) / (p_in - p_out)
     # A choked plate is at its limit, on whichever side of it the last bit fell.
     judged = np.where(gone.choked, np.minimum(sigma, choking), sigma)

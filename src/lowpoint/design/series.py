@@ -31,7 +31,7 @@ from lowpoint.design.bores import drill_choices
 from lowpoint.design.cases import Cases, Liquid
 from lowpoint.design.checks import told
 from lowpoint.design.criteria import Criteria
-from lowpoint.design.march import Geometry
+from lowpoint.design.march import Geometry, before_plate, choking_index
 from lowpoint.design.notes import Note
 from lowpoint.design.plates import Construction, Line, Plate, PlateSet
 from lowpoint.design.rating import Rating, rate
@@ -189,34 +189,33 @@ class _Scan:
 
     def margins(self, bores: Any) -> Any:
         """Least margin at each bore, -inf where a flow does not pass."""
-        cases, many = self.cases, len(bores)
-        column = bores[:, None]
-        length = self.construction.likely_length(bores, self.load, self.pipe)
-        geometry = Geometry(
-            self.pipe, column, length[:, None] if length.any() else None, np.full((many, 1), self.construction.holes)
-        )
-        loss = geometry.loss(cases.reynolds(cases.flow, self.pipe))
-        between = np.maximum(cases.p2 + loss.k * cases.dynamic(self.pipe),
-                             cases.critical_floor + loss.fall * cases.dynamic(self.pipe))  # fmt: skip
-        head = between - cases.liquid.pv
-        if self.criteria.kind == "choked":
-            limit = head / (loss.recovery2 * (between - cases.critical_floor))
-        else:
-            limit = geometry.limit(self.criteria.kind)
+        cases, made = self.cases, self.construction
+        length = made.likely_length(bores, self.load, self.pipe)
+        sharp = None if not length.any() else length[:, None]
+        geometry = Geometry(self.pipe, bores[:, None], sharp, np.full((len(bores), 1), made.holes))
+        loss, pv, floor = geometry.loss(cases.reynolds(cases.flow, self.pipe)), cases.liquid.pv, cases.critical_floor
+        between = before_plate(cases.dynamic(self.pipe), loss.k, loss.fall, cases.p2, floor)
+        choked = self.criteria.kind == "choked"
+        limit = choking_index(loss, between, pv, floor) if choked else geometry.limit(self.criteria.kind)
+        plate = (between - pv) / (between - cases.p2) / limit - 1.0
         states = valve_states(self.valve, cases, between.ravel())
-        plate = (head / (between - cases.p2) / limit - 1.0).ravel()
-        both = np.where(_passes(self.valve, cases, states), np.fmin(states.margin, plate), -np.inf)
-        return both.reshape(many, cases.count).min(axis=1)
+        both = np.fmin(states.margin, plate.ravel())
+        least = np.where(_passes(self.valve, cases, states), both, -np.inf)
+        return least.reshape(between.shape).min(axis=1)
+
+    def bore(self, log_share: Any) -> Any:
+        """Bore from the logarithm of the root of the open share."""
+        return self.pipe / np.sqrt(self.construction.holes) * np.exp(log_share)
 
     def best(self) -> tuple[float, float]:
         """The best bore and its least margin."""
         low, high, count = CLOSED, OPEN, FIRST
         for _ in range(ROUNDS):
             shares = np.linspace(low, high, count)
-            margins = self.margins(self.pipe / np.sqrt(self.construction.holes) * np.exp(shares))
+            margins = self.margins(self.bore(shares))
             best = int(np.argmax(margins))
             low, high, count = shares[max(best - 1, 0)], shares[min(best + 1, count - 1)], NEXT
-        return float(self.pipe / np.sqrt(self.construction.holes) * np.exp(shares[best])), float(margins[best])
+        return float(self.bore(shares[best])), float(margins[best])
 
 
 def _rounded(bore: float, scan: _Scan, criteria: Criteria) -> float:

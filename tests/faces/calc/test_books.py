@@ -131,6 +131,25 @@ def test_repair_of_a_copy_that_bypassed_the_job(
     office.close(number)
 
 
+@pytest.mark.parametrize("ending", [".xlsx", ".ods"])
+def test_arrays_are_saved_with_plain_names_and_bind_again(office: Any, tmp_path: Path, ending: str) -> None:
+    path = tmp_path / f"arrays{ending}"
+    number = office.new()
+    office.put_values(number, "A1:A4", [[10.0], [12.0], [None], [14.0]])
+    office.array(number, "B1:B4", "=LP_SIGMA(A1:A4;5;1)")
+    office.array(number, "C1:C4", "=LP_STAGE_PRESSURES(20;5;1;3)")
+    expected = office.cells(number, "B1:C4")
+    assert expected[2][0] == "#N/A"
+    office.save(number, str(path))
+    office.close(number)
+    assert STORED not in formulas_in(path)
+    assert formulas_in(path).count("LP_SIGMA(") == formulas_in(path).count("LP_STAGE_PRESSURES(") == 1
+    number, _ = office.open(str(path))
+    office.recalculate(number)
+    assert office.cells(number, "B1:C4") == expected
+    office.close(number)
+
+
 def test_an_array_follows_its_inputs(office: Any) -> None:
     book = office.new()
     office.put_values(book, "A1:A3", [[10.0], [12.0], [14.0]])
@@ -151,6 +170,7 @@ def test_the_sample_list_shows_what_recalc_computes(office: Any, tmp_path: Path)
     original = tmp_path / "kestrel.xlsx"
     shutil.copy(SAMPLE, original)
     number, _ = office.open(str(original))
+    assert office.modified(number) is False
     saved = tmp_path / "by-calc.xlsx"
     office.save(number, str(saved))
     office.close(number)

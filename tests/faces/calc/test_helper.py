@@ -139,6 +139,13 @@ def test_a_package_that_cannot_be_loaded_into_the_office(made: Made, monkeypatch
     assert "cannot be loaded into the office (numpy is of another make); a helper process is used" in made.log[0]
 
 
+def test_a_numpy_of_the_offices_own_is_not_computed_with(made: Made) -> None:
+    home = installing.own_settings().paths[0]
+    link = made.link(mode="auto", paths=(home,) if not Path(home, "numpy").is_dir() else ("/nowhere",))
+    link.call("LP_SIGMA", SIGMA)
+    assert "the office has a numpy of its own" in made.log[0]
+
+
 # --- crashes ---------------------------------------------------------------------------------------------------------
 
 

@@ -79,7 +79,17 @@ def rebind(book: Any) -> None:
         book.NamedRanges.removeByName(PASSING)
     finally:
         undo.unlock()
-    book.setModified(modified)
+    if not modified:
+        _unmark(book, sheets)
+
+
+def _unmark(book: Any, sheets: list[Any]) -> None:
+    """Nobody changed the book: closing it must not ask. Charts that were drawn anew count as changes of their own."""
+    book.setModified(False)
+    if book.isModified():
+        for sheet in sheets:
+            for index in range(sheet.Charts.Count):
+                sheet.Charts.getByIndex(index).EmbeddedObject.setModified(False)
 
 
 def _respell_cells(sheet: Any) -> None:

@@ -6,6 +6,7 @@ import sys
 import threading
 import time
 from collections.abc import Callable
+from importlib.util import find_spec
 from pathlib import Path
 from typing import Any
 
@@ -94,6 +95,7 @@ class Link:
     def _open_here(self, settings: Settings) -> None:
         # At the end: the office's own modules stay the first to be found.
         sys.path += [path for path in settings.paths if path not in sys.path]
+        _refuse_another_numpy(settings.paths)
         from lowpoint.faces.calc_addin import answers
 
         self._check(answers.greeting(), settings)
@@ -110,6 +112,16 @@ class Link:
             f"nothing is computed. {REMEDY}",
             lasting=True,
         )
+
+
+def _refuse_another_numpy(paths: tuple[str, ...]) -> None:
+    """The package and what it needs were installed with one NumPy; beside another, calls could fail one by one."""
+    spec = find_spec("numpy")
+    if spec is None or spec.origin is None:
+        raise ImportError("there is no numpy in its paths")
+    found = Path(spec.origin).resolve()
+    if not any(found.is_relative_to(Path(path).resolve()) for path in paths):
+        raise ImportError(f"the office has a numpy of its own in {found.parent}")
 
 
 _shared: list[Link] = []

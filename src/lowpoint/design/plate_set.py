@@ -149,9 +149,9 @@ def _fewest(
 
 
 def _too_many(criteria: Criteria, cases: Cases, case: int, count: int, after: float) -> LowpointError:
-    drop = f"{told(cases.p1[case], 'pressure', cases.system)} to {told(cases.p2[case], 'pressure', cases.system)}"
-    name = f"'{cases.names[case]}'"
-    got = f"{count}{' or more' if count >= 100 else ''} for {drop} in case {name}, margin {criteria.margin:g} to {criteria.limit_name}"
+    before, behind = (told(pressure[case], "pressure", cases.system) for pressure in (cases.p1, cases.p2))
+    got = f"{count}{' or more' if count >= 100 else ''} for {before} to {behind} in case '{cases.names[case]}', margin "
+    got += f"{criteria.margin:g} to {criteria.limit_name}"
     # The table's pressure may fall a little short of one that needs a plate more.
     after = max(after, 1.01 * float(cases.p2[case]))
     remedy = (

@@ -159,7 +159,7 @@ def test_settings_name_this_python_and_where_it_looks() -> None:
     settings = installing.own_settings()
     assert settings.python == sys.executable
     assert settings.release == sys.version_info[:2]
-    assert str(Path(installing.__file__).parents[3]) in settings.paths
+    assert str(Path(installing.__file__).resolve().parents[3]) in settings.paths
     assert any(Path(path, "numpy").is_dir() for path in settings.paths)
 
 

@@ -35,6 +35,36 @@ def _out_of_order(incipient: Any, constant: Any, damage: Any) -> Any:
     return (incipient < constant) | (incipient < damage) | (constant < damage)
 
 
+# Each thing that the verdict depends on is one bit; every combination has its word in a table made once.
+FLASHES, AT_CHOKED, AT_VIBRATION, AT_DAMAGE, AT_CONSTANT, AT_INCIPIENT = (1 << bit for bit in range(6))
+OTHER_LIMIT, DAMAGE, CONSTANT, INCIPIENT, WRONG_FORM = (1 << bit for bit in range(6, 11))
+
+
+def _word(state: int) -> str:
+    """The rules, from worst to best, for one combination of bits; empty where there is no verdict."""
+    if state & WRONG_FORM or not state & (OTHER_LIMIT | DAMAGE | CONSTANT | INCIPIENT):
+        return ""
+    for bit, word in ((FLASHES, "flashing"), (AT_CHOKED, "choked"), (AT_VIBRATION, "vibration"), (AT_DAMAGE, "damage")):
+        if state & bit:
+            return word
+    if state & AT_CONSTANT:
+        return "constant" if state & DAMAGE else "cavitating"
+    if state & AT_INCIPIENT:
+        return "incipient" if state & (CONSTANT | DAMAGE) else "cavitating"
+    return "clear" if state & INCIPIENT else "unjudged"
+
+
+WORDS = np.array([_word(state) for state in range(1 << 11)])
+
+
+def _bits(sigma: Any, limit: Any, crossed: int, given: int, must_exceed_one: bool) -> Any:
+    """What one limit adds to the state: whether it is given, whether it is crossed, whether its form is wrong."""
+    if limit is None:
+        return 0
+    bits = (sigma <= limit) * crossed + (limit == limit) * given
+    return bits + (limit <= 1.0) * WRONG_FORM if must_exceed_one else bits
+
+
 @function(
     "REGIME", group="indices and limits", gives="one word for the state of the flow among its limits",
     source_key="definition",
@@ -67,23 +97,12 @@ def regime_word(
     limit is given.
     Source: definition; the order of severity is common practice (ISA-RP75.23).
     """
-    worse_known = _given(damage)
-    incipient_known = _given(constant) | worse_known
-    word = np.select(
-        [
-            sigma <= 1.0,
-            sigma <= _of(choked),
-            sigma <= _of(vibration),
-            sigma <= _of(damage),
-            (sigma <= _of(constant)) & worse_known,
-            sigma <= _of(constant),
-            (sigma <= _of(incipient)) & incipient_known,
-            sigma <= _of(incipient),
-            np.broadcast_to(_given(incipient), sigma.shape),
-        ],
-        ["flashing", "choked", "vibration", "damage", "constant", "cavitating", "incipient", "cavitating", "clear"],
-        "unjudged",
+    state = (
+        (sigma <= 1.0) * FLASHES
+        | _bits(sigma, choked, AT_CHOKED, OTHER_LIMIT, False)
+        | _bits(sigma, vibration, AT_VIBRATION, OTHER_LIMIT, False)
+        | _bits(sigma, damage, AT_DAMAGE, DAMAGE, True)
+        | _bits(sigma, constant, AT_CONSTANT, CONSTANT, True)
+        | _bits(sigma, incipient, AT_INCIPIENT, INCIPIENT, True)
     )
-    wrong = _of_another_form(incipient, constant, damage)
-    unlimited = _no_limit_at_all(incipient, constant, damage, vibration, choked)
-    return np.where(wrong | unlimited, "", word)
+    return WORDS[state]

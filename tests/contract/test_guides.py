@@ -79,3 +79,15 @@ def test_readme_names_only_real_functions_and_commands() -> None:
         assert registry.canonical(name), name
     for command in set(re.findall(r"(?:^|`|bin/)lowpoint ([a-z]+)\b", text, re.MULTILINE)):
         assert command in COMMANDS, command
+
+
+def test_readme_python_blocks_run(capsys: pytest.CaptureFixture[str]) -> None:
+    """The pieces of Python in README.md run as they stand, and say what the page says."""
+    text = (ROOT / "README.md").read_text(encoding="utf-8")
+    blocks = re.findall(r"```python\n(.*?)```", text, re.DOTALL)
+    assert len(blocks) >= 2
+    for block in blocks:
+        exec(block, {})
+    count, bores = capsys.readouterr().out.split(" ", 1)
+    assert count == "5"
+    assert len(json.loads(bores)) == 5

@@ -15,9 +15,13 @@ settings.load_profile("lowpoint")
 
 @pytest.hookimpl(wrapper=True)
 def pytest_runtest_makereport(item: pytest.Item) -> Generator[None, pytest.TestReport, pytest.TestReport]:
-    """With LOWPOINT_STRICT set, a skipped test is a failed one: nothing may be missing there."""
+    """With LOWPOINT_STRICT set, a skipped test is a failed one: nothing may be missing there.
+
+    But for the books made by another program: they are not ours to hand on, so a build server may lack them.
+    """
     report = yield
-    if os.environ.get("LOWPOINT_STRICT") and report.skipped and not hasattr(report, "wasxfail"):
+    skipped = report.skipped and not hasattr(report, "wasxfail") and "LOWPOINT_CORPUS" not in str(report.longrepr)
+    if os.environ.get("LOWPOINT_STRICT") and skipped:
         report.outcome = "failed"
         report.longrepr = f"skipped although LOWPOINT_STRICT is set: {report.longrepr}"
     return report

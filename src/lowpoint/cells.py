@@ -14,8 +14,8 @@ import numpy as np
 
 from lowpoint.checked import Outcome
 from lowpoint.columns import OMITTED, Column
-from lowpoint.problems import CellError
-from lowpoint.registry import Function, canonical, functions
+from lowpoint.problems import CellError, shown
+from lowpoint.registry import Function, canonical, functions, nearest
 
 __all__ = ["OMITTED", "CellError", "Same", "call", "call_many", "reason", "reasons"]
 
@@ -54,6 +54,8 @@ def call(name: str, args: Sequence[Any]) -> Any:
 
 def reason(name: str, args: Sequence[Any]) -> str:
     """The sentence that LP_WHY gives for one call; of a call over ranges, the first that is not "ok"."""
+    if name == "LP_WHY":
+        return _why_not(args)
     said = _why([name, *args])
     if isinstance(said, list):
         return next((words for row in said for words in row if words != "ok"), "ok")
@@ -160,6 +162,22 @@ def _laid_out(argument: Any, shape: tuple[int, int]) -> Any:
     return flat
 
 
+def _why_not(args: Sequence[Any]) -> str:
+    """Why a call of LP_WHY itself errs."""
+    asked = args[0] if args else None
+    if isinstance(_why(args), str | list):
+        return "ok"
+    must = "LP_WHY: function must be the name of a function in quotation marks"
+    near = nearest(asked) if isinstance(asked, str) else []
+    hint = f" Nearest: {', '.join(near)}." if near else ""
+    return f"{must}, got {shown(asked if asked is not OMITTED else None)}.{hint}"
+
+
+def _asked(text: Any) -> str | None:
+    """The function that LP_WHY is asked about; its name may stand without LP_."""
+    return (canonical(text) or canonical(f"LP_{text}")) if isinstance(text, str) else None
+
+
 def _too_many(function: Function, got: int) -> str:
     return f"{function.name}: must have at most {len(function.parameters)} arguments, got {got}."
 
@@ -171,7 +189,7 @@ def _why(args: Sequence[Any]) -> Any:
         return asked
     if asked is None or asked is OMITTED or asked == "":
         return CellError.NA
-    name = canonical(asked) if isinstance(asked, str) else None
+    name = _asked(asked)
     if name is None or name == "LP_WHY":
         return CellError.VALUE
     function = functions[name]
@@ -186,7 +204,7 @@ def _why(args: Sequence[Any]) -> Any:
 
 def _why_many(columns: Sequence[Any], rows: int) -> list[Any]:
     first = columns[0] if columns else Same(None)
-    name = canonical(first.argument) if isinstance(first, Same) and isinstance(first.argument, str) else None
+    name = _asked(first.argument) if isinstance(first, Same) else None
     if name is None or name == "LP_WHY":
         return [_why([c.argument if isinstance(c, Same) else c[row] for c in columns]) for row in range(rows)]
     return reasons(name, columns[1:], rows)

@@ -302,7 +302,7 @@ class Checked:
             mask = np.zeros(len(values), np.bool_)
             mask[good] = among_good & np.asarray(self._looked_at(why.when, arguments, len(good)), np.bool_)
             error = CellError.VALUE if why.value else CellError.NA if why.missing else CellError.NUM
-            ledger.blame(mask, error, messages.sentence(self, why.text))
+            ledger.blame(mask, error, messages.no_answer(self, why.text, _names(why.when), given, good))
         ledger.blame(silent, CellError.NUM, messages.sentence(self, "there is no answer for these values"))
 
     def _looked_at(self, when: Callable[..., Any] | None, arguments: Mapping[str, Any], count: int) -> Any:
@@ -310,8 +310,7 @@ class Checked:
         if when is None:
             return np.ones(count, np.bool_)
         with np.errstate(all="ignore"):
-            names = [name.rstrip("_") for name in messages.argument_names(when)]
-            return np.broadcast_to(np.asarray(when(*[arguments.get(n) for n in names])), count)
+            return np.broadcast_to(np.asarray(when(*[arguments.get(n) for n in _names(when)])), count)
 
     # --- explaining --------------------------------------------------------------------------------------------
 
@@ -332,6 +331,11 @@ class Checked:
             for words in said:
                 words.append(basis)
         return [outcome.ledger.sentence(row) or "; ".join(words) or "ok" for row, words in enumerate(said)]
+
+
+def _names(when: Callable[..., Any] | None) -> list[str]:
+    """Which arguments a predicate looks at; `from_` stands for `from`, a word of Python."""
+    return [] if when is None else [name.rstrip("_") for name in messages.argument_names(when)]
 
 
 def _as_given(text: str) -> str:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import inspect
-from collections.abc import Callable
+from collections.abc import Callable, Mapping, Sequence
 from functools import cache
 from typing import TYPE_CHECKING, Any
 
@@ -18,7 +18,7 @@ if TYPE_CHECKING:
     from lowpoint.checked import Checked
     from lowpoint.columns import Column
 
-__all__ = ["argument_names", "basis", "blank", "needed", "not_understood", "out_of_bounds", "out_of_order",
+__all__ = ["argument_names", "basis", "blank", "needed", "no_answer", "not_understood", "out_of_bounds", "out_of_order",
            "passed_on", "sentence"]  # fmt: skip
 
 Sentence = Callable[[int], str]
@@ -29,13 +29,27 @@ def _at(values: Any, row: int) -> Any:
 
 
 def _with_remedy(text: str, remedy: str) -> str:
-    return f"{text}. {remedy}" if remedy else f"{text}."
+    end = "" if text.endswith("?") else "."
+    return f"{text}{end} {remedy}" if remedy else f"{text}{end}"
 
 
 def sentence(function: Checked, words: str, remedy: str = "") -> Sentence:
     """A finished sentence, the same for every row."""
-    text = f"{function.name}: {words}" if not words.endswith(".") else f"{function.name}: {words[:-1]}"
+    text = f"{function.name}: {words.removesuffix('.')}"
     return lambda row: _with_remedy(text, remedy)
+
+
+def no_answer(function: Checked, words: str, names: Sequence[str], given: Mapping[str, Any], good: Any) -> Sentence:
+    """A reason with the values that it looks at, in the user's units; ``given`` holds those of the rows in ``good``."""
+    numbers = [p for p in function.parameters if p.is_number and p.name in names and given.get(p.name) is not None]
+
+    def text(row: int) -> str:
+        place = int(np.searchsorted(good, row))
+        got = [(p.name, float(_at(given[p.name], place)), function.units[p.name].label) for p in numbers]
+        shown_values = [f"{name} = {shown(value, unit)}" for name, value, unit in got if not np.isnan(value)]
+        return sentence(function, words + (f"; got {', '.join(shown_values)}" if shown_values else ""))(row)
+
+    return text
 
 
 def passed_on(function: Checked, parameter: Parameter, error: CellError) -> Sentence:
@@ -64,7 +78,10 @@ def not_understood(function: Checked, parameter: Parameter, column: Column) -> S
             must = "a number" + (f" in {unit}" if unit else "")
         else:
             must = "one of " + ", ".join(kind.words) if isinstance(kind, Word) else "a word"
-        return _with_remedy(f"{function.name}: {parameter.name} must be {must}, got {shown(got)}", kind.remedy)
+        remedy = kind.remedy
+        if isinstance(kind, Quantity) and isinstance(got, str) and any(character.isdigit() for character in got):
+            remedy = f"The cell holds text: type a number, with your program's own decimal sign. {remedy}".rstrip()
+        return _with_remedy(f"{function.name}: {parameter.name} must be {must}, got {shown(got)}", remedy)
 
     return text
 

@@ -85,7 +85,9 @@ def shown(value: object, unit: str = "") -> str:
         return str(value)
     if isinstance(value, str):
         text = value if len(value) <= 40 else value[:37] + "..."
-        return f"the text '{text}'"
+        # A no-break space or another sign that nobody sees is shown by its code.
+        seen = "".join(x if x.isprintable() else x.encode("unicode_escape").decode() for x in text)
+        return f"the text '{seen}'"
     if isinstance(value, bool):
         return str(value).upper()
     if isinstance(value, int | float | np.floating | np.integer):

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import difflib
 import inspect
 from collections.abc import Iterable
 from typing import Any
@@ -10,7 +9,7 @@ from typing import Any
 from lowpoint.declare import GROUPS, Parameter, SameAs
 from lowpoint.errors import LowpointError
 from lowpoint.quantities import Quantity, Table, Text, Word
-from lowpoint.registry import Function, canonical, functions
+from lowpoint.registry import Function, canonical, functions, nearest
 
 __all__ = ["as_data", "as_page", "as_text", "find", "overview"]
 
@@ -21,9 +20,17 @@ def find(name: str) -> Function:
         known = canonical(spelling)
         if known is not None:
             return functions[known]
-    near = difflib.get_close_matches(name.upper().replace(".", "_"), functions, n=3, cutoff=0.5)
+    near = meaning(name) or nearest(name)
     remedy = f"Nearest: {', '.join(near)}." if near else "'lowpoint functions' lists them all."
     raise LowpointError("functions", "NAME must be the name of a function", f"'{name}'", remedy)
+
+
+def meaning(words: str) -> list[str]:
+    """The functions whose summary holds all the words, those in one set of units only."""
+    wanted = words.casefold().split()
+    return [
+        f.name for f in functions.values() if f.system != "us" and all(word in f.summary.casefold() for word in wanted)
+    ]
 
 
 def signature(function: Function) -> str:
@@ -146,7 +153,9 @@ def overview() -> str:
 def _argument_lines(argument: dict[str, Any]) -> list[str]:
     details = "; ".join(x for x in (argument["unit"], argument["bounds"], argument["default"]) if x)
     lines = [f"  {argument['name']:<15} {argument['meaning']} ({details})"]
-    if argument["words"]:
+    if any("," in word for word in argument["words"]):
+        lines += [f"  {'':<15} one of:", *(f"  {'':<17} {word}" for word in argument["words"])]
+    elif argument["words"]:
         lines.append(f"  {'':<15} words: " + ", ".join(argument["words"]))
     return lines
 

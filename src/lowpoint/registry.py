@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import difflib
 import importlib
 import re
 from collections.abc import Mapping, Sequence
@@ -17,7 +18,7 @@ from lowpoint.errors import LowpointError
 from lowpoint.quantities import Text, Word
 from lowpoint.scalar import bind_scalar
 
-__all__ = ["Function", "canonical", "functions"]
+__all__ = ["Function", "canonical", "functions", "nearest"]
 
 _KERNEL_MODULES = (
     "liquids", "site", "conversion", "sizing", "travel", "typical", "flashing", "indices", "limits", "regime", "noise",
@@ -119,7 +120,7 @@ class Why(Function):
     def __call__(self, *args: Any, **named: Any) -> Any:
         if not args:
             raise LowpointError("LP_WHY", "must be given the name of a function", None)
-        asked = canonical(str(args[0]))
+        asked = canonical(str(args[0])) or canonical(f"LP_{args[0]}")
         if asked is None or asked == "LP_WHY":
             raise LowpointError("LP_WHY", "function must be the name of a function", f"'{args[0]}'")
         return functions[asked].why(*args[1:], **named)
@@ -161,3 +162,8 @@ def canonical(name: str) -> str | None:
         return spelled
     # A function whose units cancel exists once; its name with the US prefix is a slip that must not pass.
     return None
+
+
+def nearest(name: str, most: int = 3) -> list[str]:
+    """The functions whose names are spelled most like a text."""
+    return difflib.get_close_matches(name.upper().replace(".", "_"), functions, n=most, cutoff=0.5)

@@ -131,17 +131,22 @@ def test_the_report_as_data_is_plain_json(tmp_path: Path) -> None:
 
 def test_the_report_in_words(tmp_path: Path) -> None:
     report = Report("list.xlsx", "list-recalc.xlsx", recomputed=3, calls=1, untouched=1, seconds=0.12)
-    report.changed = [Change("List", "F2", None, 1.5)]
+    report.changed = [
+        Change("List", "F2", None, 1.5), Change("List", "E2", 2.0, 2.5), Change("List", "E3", "clear", "damage"),
+        Change("List", "E4", 0.1 + 0.2, 0.3), Change("List", "E5", 1.0, 1.001),
+    ]  # fmt: skip
     report.unfed = [Change("List", "G2", "old", CellError.NA)]
     report.failed = [Failure("List", f"F{row}", "LP_SIGMA", "#NUM!", SWAPPED) for row in range(2, 5)]
     report.kept = [Kept("List", "H2", "it uses NOSUCH")]
     report.warnings = ["mind the gap"]
     assert report.text(limit=2) == "\n".join((
-        "list.xlsx: 3 formula cells worked out, 1 LP_ call in them; 2 changed, 1 were right already (0.1 s).",
-        "3 LP_ calls gave an error:",
-        f"  List!F2 #NUM!  {SWAPPED}",
-        f"  List!F3 #NUM!  {SWAPPED}",
+        "list.xlsx: 3 formula cells worked out, 1 LP_ call in them; 6 changed (1 of them only behind the 14th digit), "
+        "1 were right already (0.1 s).",
+        '  List!E3  "clear" -> "damage"',
+        "  List!E2  2.0 -> 2.5",
         "  ... and 1 more (--json lists all)",
+        "3 LP_ calls gave an error:",
+        f"  List!F2, F3, F4 #NUM!  {SWAPPED}",
         "1 cell could not be refreshed and kept the old value:",
         "  List!H2  it uses NOSUCH",
         "1 cell changed although no LP_ call feeds it (look at this):",

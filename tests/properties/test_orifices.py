@@ -157,8 +157,8 @@ def test_beyond_the_last_length_friction_alone_grows(plate: Plate, ratio: float,
 @given(plates(), st.floats(1.0, 4999.0))
 def test_below_a_reynolds_number_of_5000_the_loss_is_that_at_5000(plate: Plate, reynolds: float) -> None:
     assert loss(plate, reynolds) == loss(plate, 5000.0)
-    assume(0.1 < plate.bore / plate.pipe < 0.75 and plate.pipe > 50.0 and plate.holes == 1)
-    assert loss(plate, 5000.0) != loss(plate, 5100.0)
+    if 0.1 < plate.bore / plate.pipe < 0.75 and plate.pipe > 50.0 and plate.holes == 1:
+        assert loss(plate, 5000.0) != loss(plate, 5100.0)
 
 
 @given(plates(), services())

@@ -295,6 +295,7 @@ def _same_file(one: Path, other: Path) -> bool:
 # Lock files
 
 _SOMEONE = "someone whose name is not in the lock file"
+LONGEST_NAME = 60
 
 
 def locked(path: str | os.PathLike[str]) -> str | None:
@@ -339,4 +340,6 @@ def _lock_owner(data: bytes) -> str:
 
 
 def _printable(text: str) -> str:
-    return "".join(char for char in text if char.isprintable()).strip()
+    """A name as a lock file holds it, empty where it looks like no name: a broken file may hold anything."""
+    name = "".join(char for char in text if char.isprintable()).strip()
+    return name if len(name) <= LONGEST_NAME else ""

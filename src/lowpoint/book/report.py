@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field
 from enum import Enum
@@ -11,6 +12,11 @@ from lowpoint.problems import PASSED_ON
 
 __all__ = ["Change", "Failure", "Kept", "Report"]
 
+MOST_CHANGES = 10
+"""Changes told in words; the data have all of them."""
+MOST_CELLS = 6
+"""Cells named for one reason."""
+
 
 class Change(NamedTuple):
     """A cell whose stored value was replaced; ``old`` is None where none was stored."""
@@ -19,6 +25,18 @@ class Change(NamedTuple):
     cell: str
     old: Any
     new: Any
+
+    @property
+    def rounding(self) -> bool:
+        """Are old and new the same number but for digits that some programs do not store?"""
+        return _is_number(self.old) and _is_number(self.new) and f"{self.old:.14g}" == f"{self.new:.14g}"
+
+    @property
+    def size(self) -> float:
+        """How large the change is: relative for numbers, infinite where a word or an error is in it."""
+        if not (_is_number(self.old) and _is_number(self.new)):
+            return math.inf
+        return abs(self.new - self.old) / max(abs(self.new), abs(self.old))
 
 
 @dataclass(frozen=True, slots=True)
@@ -114,6 +132,11 @@ class Report:
             "exit_code": self.exit_code,
         }
 
+    def _in_last_digits(self) -> str:
+        """How many changes are of the digits only that a program does not store."""
+        number = sum(c.rounding for c in (*self.changed, *self.unfed))
+        return f" ({number} of them only behind the 14th digit)" if number else ""
+
     def text(self, limit: int = 20) -> str:
         """A few lines for a terminal; of each list at most ``limit`` items."""
         return "\n".join(self._lines(limit))
@@ -121,15 +144,17 @@ class Report:
     def _lines(self, limit: int) -> Iterator[str]:
         yield (
             f"{self.book}: {_many(self.recomputed, 'formula cell')} worked out, {_many(self.calls, 'LP_ call')} in "
-            f"them; {len(self.changed) + len(self.unfed)} changed, {self.untouched} were right already "
-            f"({self.seconds:.1f} s)."
+            f"them; {len(self.changed) + len(self.unfed)} changed{self._in_last_digits()}, {self.untouched} were "
+            f"right already ({self.seconds:.1f} s)."
         )
+        if self.changed:
+            yield from _cut([_turn(c) for c in _telling(self.changed)], min(limit, MOST_CHANGES))
         if self.failed:
             first = [f for f in self.failed if not f.passed_on]
             rest = [f for f in self.failed if f.passed_on]
             only = f", {len(rest)} of them only because they read another cell's error" if rest else ""
             yield f"{_many(len(self.failed), 'LP_ call')} gave an error{only}:"
-            yield from _cut([f"{_at(f.sheet, f.cell)} {f.error}  {f.reason}" for f in first + rest], limit)
+            yield from _cut([*_gathered(first), *_gathered(rest)], limit)
         if self.kept:
             yield f"{_many(len(self.kept), 'cell')} could not be refreshed and kept the old value:"
             yield from _cut([f"{_at(k.sheet, k.cell)}  {k.reason}" for k in self.kept], limit)
@@ -144,8 +169,34 @@ class Report:
             yield f"Written: {self.output}"
 
 
+def _telling(changes: Sequence[Change]) -> list[Change]:
+    """The changes worth a line: of words and errors first, then of numbers, the largest first; no mere rounding."""
+    return sorted((c for c in changes if c.old is not None and not c.rounding), key=lambda c: -c.size)
+
+
+def _turn(change: Change) -> str:
+    return f"{_at(change.sheet, change.cell)}  {_said(change.old)} -> {_said(change.new)}"
+
+
+def _gathered(failures: Sequence[Failure]) -> Iterator[str]:
+    """Failures of one reason in one line, with their cells."""
+    by_reason: dict[tuple[str, str, str], list[str]] = {}
+    for f in failures:
+        by_reason.setdefault((f.sheet, f.error, f.reason), []).append(f.cell)
+    for (sheet, error, reason), cells in by_reason.items():
+        distinct = list(dict.fromkeys(cells))
+        where = ", ".join(distinct[:MOST_CELLS]) + (
+            f" and {len(distinct) - MOST_CELLS} more" if len(distinct) > MOST_CELLS else ""
+        )
+        yield f"{_at(sheet, where)} {error}  {reason}"
+
+
 def _change(change: Change) -> dict[str, Any]:
     return {"sheet": change.sheet, "cell": change.cell, "old": _bare(change.old), "new": _bare(change.new)}
+
+
+def _is_number(value: Any) -> bool:
+    return isinstance(value, int | float) and not isinstance(value, bool)
 
 
 def _bare(value: Any) -> Any:

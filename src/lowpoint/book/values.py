@@ -257,7 +257,7 @@ def _lacking_drawings(package: Package, workbook: Any) -> Iterator[str]:
             hint = " (with Pillow installed they would be)" if kind == "image" and not find_spec("PIL") else ""
             yield f"{there - carried} of {there} {what} are not in the copy{hint}"
         elif kind == "chart" and there:
-            yield "charts are redrawn: data tables, secondary axes and finer points of looks may be missing"
+            yield "finer points of the charts, which are drawn anew (data tables, secondary axes, looks)"
 
 
 def _still_calling(workbook: Any) -> Iterator[str]:

@@ -39,7 +39,8 @@ def fill(parser: argparse.ArgumentParser) -> None:
     parser.epilog = (
         "examples:\n  lowpoint recalc valves.xlsx                  writes valves-recalc.xlsx\n"
         "  lowpoint recalc nightly/ -o done/ --jobs 2   every workbook of a folder\n\n"
-        "exit code 1: an LP_ call gave an error, a cell could not be refreshed, or a book of several failed"
+        "exit code 1: an LP_ call gave an error, a cell could not be refreshed, or a book of several failed\n"
+        "--json: an object for one book, a list for several books or a folder (sub-folders are not opened)"
     )
 
 
@@ -74,14 +75,20 @@ def jobs_of(books: Sequence[Path], out: str | None, *, in_place: bool, values: b
 
 
 def _opened(given: Path) -> Iterator[Path]:
-    """A file as it is; the workbooks of a folder, without lock files and our own earlier outputs."""
+    """A file as it is; the workbooks of a folder, without lock files and our own earlier outputs beside it."""
     if not given.is_dir():
         yield given
         return
     for path in sorted(given.iterdir()):
-        ours = path.suffix.lower() in SUFFIXES and path.is_file()
-        if ours and not path.name.startswith(("~$", ".")) and not path.stem.endswith(MARK):
+        book = path.suffix.lower() in SUFFIXES and path.is_file() and not path.name.startswith(("~$", "."))
+        if book and not _own_output(path):
             yield path
+
+
+def _own_output(path: Path) -> bool:
+    """Was a workbook made by an earlier run, from another one beside it?"""
+    source = path.stem.removesuffix(MARK)
+    return source != path.stem and any(path.with_name(source + suffix).exists() for suffix in SUFFIXES)
 
 
 def _target(book: Path, out: str | None, values: bool, several: bool) -> Path:
@@ -90,7 +97,7 @@ def _target(book: Path, out: str | None, values: bool, several: bool) -> Path:
         return book.with_name(f"{book.stem}{MARK}{suffix}")
     target = Path(out)
     if several:
-        if target.exists() and not target.is_dir():
+        if target.suffix.lower() in SUFFIXES or (target.exists() and not target.is_dir()):
             raise LowpointError(out, "must be a folder, for several books", "a file", "Name a folder with -o.")
         return target / f"{book.stem}{suffix}"
     if target.is_dir() or out.endswith(("/", "\\")):
@@ -174,7 +181,8 @@ def _batch(jobs: Sequence[Job], workers: int, as_json: bool) -> int:
         _print_json(found)
     else:
         failed = sum("error" in data for data in found)
-        print(f"{len(jobs)} books: {codes.count(0)} without findings, {len(jobs) - failed} written, {failed} failed.")
+        noun = "book" if len(jobs) == 1 else "books"
+        print(f"{len(jobs)} {noun}: {codes.count(0)} without findings, {len(jobs) - failed} written, {failed} failed.")
     return max(codes)
 
 

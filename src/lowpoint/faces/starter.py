@@ -22,7 +22,7 @@ NAMES = {False: "valves.xlsx", True: "valves-us.xlsx"}
 
 def fill(parser: argparse.ArgumentParser) -> None:
     add = parser.add_argument
-    add("kind", choices=KINDS, metavar="KIND", help="; ".join(f"{kind}: {what}" for kind, what in KINDS.items()))
+    add("kind", choices=KINDS, metavar="KIND", help="; ".join(f"{kind}: {KINDS[kind]}" for kind in MADE))
     add("-o", "--out", type=Path, metavar="OUT", help=f"the file to write, or its folder (default: {NAMES[False]})")
     add("--us", action="store_true", help=f"US customary units, LPU_ functions (default name: {NAMES[True]})")
     add("--overwrite", action="store_true", help="replace a file of that name")

@@ -105,6 +105,23 @@ def no_valve_passes(
     return (energy / (p1 - p2) * total >= 1.0) | (energy / head * inlet >= 1.0)
 
 
+def _sized_choked(
+    result: Any, p1: Any, p2: Any, pv: Any, pc: Any, fl: Any, valve_size: Any, pipe_in: Any, pipe_out: Any
+) -> Any:
+    """Where the required coefficient is that of the choked drop."""
+    total, inlet = fitting_losses(valve_size, pipe_in, pipe_out)
+    head = p1 - critical_pressure_factor(pv, pc) * pv
+    coefficient = None if valve_size is None else np.where(np.isnan(valve_size), np.nan, result)
+    return p1 - p2 >= choked_drop_of(head, fl, coefficient, total, inlet) * (1.0 - 1e-12)
+
+
+FLASHES = Caution("p2 is at or below pv: the liquid flashes", lambda p2, pv: p2 <= pv)
+SIZED_CHOKED = Caution(
+    "the flow is choked: the valve is sized on the choked drop, and the outlet pressure does not rule the flow",
+    _sized_choked,
+)
+
+
 @function(
     "COEFFICIENT", group="valves", gives="required flow coefficient", source_key="closed form",
     equation="max(C_free, C_choked), C_free = sqrt(A/(1 - A S)), C_choked = sqrt(B/(1 - B S1))/FL; with viscosity "
@@ -116,7 +133,7 @@ def no_valve_passes(
                  "valve_size", no_valve_passes),
         nonturbulent.NO_ROOT,
     ),
-    cautions=(fittings.LINE_SIZE, fittings.LARGE_RESULT, nonturbulent.SLOW),
+    cautions=(FLASHES, SIZED_CHOKED, fittings.LINE_SIZE, fittings.LARGE_RESULT, nonturbulent.SLOW),
 )  # fmt: skip
 def required_coefficient(
     flow: q.Flow, p1: q.P1, p2: q.P2, pv: q.PV, pc: q.PC, density: q.Density, fl: q.FL,

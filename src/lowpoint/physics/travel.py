@@ -10,7 +10,7 @@ from lowpoint import quantities as q
 from lowpoint.declare import Caution, NoAnswer, SameAs, function
 from lowpoint.physics import fittings
 from lowpoint.physics.fittings import fitting_losses
-from lowpoint.physics.sizing import BOILS, CRITICAL, OUTLET, critical_pressure_factor, no_valve_passes
+from lowpoint.physics.sizing import BOILS, CRITICAL, FLASHES, OUTLET, critical_pressure_factor, no_valve_passes
 from lowpoint.quantities import Floats
 
 __all__ = ["operating_travel", "value_at_travel", "valve_travel"]
@@ -168,6 +168,7 @@ def _too_small(
         NoAnswer("the valve would have to be less open than the table's first row; nothing is extrapolated"),
     ),
     cautions=(
+        FLASHES,
         fittings.LINE_SIZE,
         Caution("the opening is outside 10 to 90 per cent of travel", lambda result: (result < 0.1) | (result > 0.9)),
     ),

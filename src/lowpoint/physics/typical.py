@@ -30,8 +30,8 @@ def _table() -> dict[str, list[Row]]:
 
 
 def styles() -> Iterable[str]:
-    """Every style, as it is spelled in cells."""
-    return _table()
+    """Every style, as it is spelled in cells, with its flow directions in brackets."""
+    return [f"{style}  ({' / '.join(d for row in rows for d in _directions(row))})" for style, rows in _table().items()]
 
 
 def _key(text: str) -> str:
@@ -47,7 +47,8 @@ def resolve_style(text: str) -> str:
     """The table's spelling of a style; case, spaces and commas do not matter."""
     style = _spellings().get(_key(text))
     if style is None:
-        near = difflib.get_close_matches(text.casefold(), _table(), n=3, cutoff=0.3)
+        begun = [known for known in _table() if text.strip() and known.casefold().startswith(text.strip().casefold())]
+        near = begun or difflib.get_close_matches(text.casefold(), _table(), n=3, cutoff=0.3)
         nearest = f"; nearest: {' / '.join(near)}" if near else ""
         raise ValueError(f"style must be one that 'lowpoint functions LP_TYPICAL' lists, got '{text}'{nearest}")
     return style
@@ -102,7 +103,7 @@ def _absent(word: str | None) -> bool:
     no_answer=(
         NoAnswer("direction must be given for this style: its value depends on the flow direction; 'lowpoint "
                  "functions LP_TYPICAL' lists the words", _undirected, missing=True),
-        NoAnswer("direction must be one that the style has; 'lowpoint functions LP_TYPICAL' lists them",
+        NoAnswer("direction must be one that the style has; 'lowpoint functions LP_TYPICAL' lists them beside it",
                  _misdirected, value=True),
         NoAnswer("the table has no such value for this style; ask the vendor for it"),
     ),

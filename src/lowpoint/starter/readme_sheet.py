@@ -8,7 +8,7 @@ from lowpoint.starter import style
 from lowpoint.starter.plant import Plant
 from lowpoint.units import DIMENSIONS
 
-__all__ = ["write"]
+__all__ = ["section", "write"]
 
 _STATES = (
     ("flashing", "The outlet is at or below the vapour pressure: vapour leaves the valve. No index makes that better."),
@@ -54,7 +54,7 @@ def write(book: Any, plant: Plant) -> None:
     style.title(sheet, f"{plant.name}: cavitation of control valves in liquid service", f"A valve list that computes "
                 f"itself: {len(plant.items)} items of an invented utility, each with its operating cases.")  # fmt: skip
     sheet.column_dimensions["A"].width, sheet.column_dimensions["B"].width = 18, 112
-    row = _section(sheet, 4, "The sheets", (
+    row = section(sheet, 4, "The sheets", (
         ("Summary", "Counts by state of the flow and by area, the worst ten items, every case without an answer."),
         ("Items", "One row an item, judged by the worst of its cases. This is the sheet to issue."),
         ("List", "One row an item and case: inputs, then every intermediate value. Notes on the headings tell more."),
@@ -63,12 +63,12 @@ def write(book: Any, plant: Plant) -> None:
         ("Site", "Elevation and barometric pressure of the areas; gauge readings made absolute."),
         ("Words", "What cells are chosen from."),
     ))  # fmt: skip
-    row = _section(sheet, row, "Cautions", [("", text) for text in _CAUTIONS])
-    row = _section(sheet, row, "Make it yours", [(f"step {n}", text) for n, text in enumerate(_STEPS, start=1)])
-    row = _section(sheet, row, "Units", _units(plant.system))
-    row = _section(sheet, row, "State of the flow", _STATES)
-    row = _section(sheet, row, "Basis of a value", _BASES)
-    _section(sheet, row, "Mistakes in it", (
+    row = section(sheet, row, "Cautions", [("", text) for text in _CAUTIONS])
+    row = section(sheet, row, "Make it yours", [(f"step {n}", text) for n, text in enumerate(_STEPS, start=1)])
+    row = section(sheet, row, "Units", _units(plant.system))
+    row = section(sheet, row, "State of the flow", _STATES)
+    row = section(sheet, row, "Basis of a value", _BASES)
+    section(sheet, row, "Mistakes in it", (
         ("planted", "Rows whose remark begins with 'planted' carry mistakes that people make. Their cells show true "
          "errors (#N/A, #NUM!, #VALUE!), and the column Why says what is wrong and what to do."),
     ))  # fmt: skip
@@ -86,7 +86,8 @@ def _units(system: str) -> list[tuple[str, str]]:
     ]
 
 
-def _section(sheet: Any, row: int, title: str, lines: Any) -> int:
+def section(sheet: Any, row: int, title: str, lines: Any) -> int:
+    """A title with lines of a word and a text below it; gives the row for the next title."""
     sheet.cell(row, 1, title).font = style.BAND
     for column in (1, 2):
         sheet.cell(row, column).fill = style.fill("mist")

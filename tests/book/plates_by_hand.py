@@ -62,7 +62,8 @@ class Line:
         def kt(length: float) -> float:
             phi = 0.25 + 0.535 * length**8 / (0.05 + length**7)
             closed = 1.0 - (bore / self.pipe) ** 2
-            return (0.5 * closed**0.75 + (2.4 - length) * 10.0**-phi * closed**1.375 + closed**2 + 0.02 * length)  # fmt: skip
+            tau = (2.4 - length) * 10.0**-phi
+            return 0.5 * closed**0.75 + tau * closed**1.375 + closed**2 + 0.02 * length
 
         return self.thin(bore) * kt(self.edge / bore) / kt(0.0)
 

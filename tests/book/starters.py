@@ -87,6 +87,11 @@ def committed(system: str) -> Path:
     return WORKBOOKS / NAMES[system]
 
 
+def formula_of(cell: Any) -> str:
+    """The text of a formula; an array formula stands as an object in its first cell."""
+    return str(getattr(cell.value, "text", cell.value))
+
+
 def is_error(value: Any) -> bool:
     """Is a stored value a true error of a cell? (As text it would be one too: no cell holds such a word.)"""
     return isinstance(value, str) and value.startswith("#")

@@ -12,7 +12,7 @@ import pytest
 from openpyxl.formula import Tokenizer
 from openpyxl.utils import get_column_letter
 
-from book.starters import SYSTEMS, Sample, committed, is_error, made
+from book.starters import SYSTEMS, Sample, committed, formula_of, is_error, made
 from lowpoint import registry
 from lowpoint.starter import sheet_bytes
 from lowpoint.starter.chart_sheet import CASES
@@ -25,7 +25,7 @@ from lowpoint.starter.summary_sheet import STATES, UNANSWERED, WORST
 
 ORDINARY = {
     "AND", "CHOOSE", "COUNT", "COUNTA", "COUNTIF", "COUNTIFS", "IF", "INDEX", "ISBLANK", "ISERROR", "ISNUMBER", "MATCH",
-    "NA", "OR", "ROW", "SMALL", "SUM", "SUMPRODUCT", "_xlfn.MINIFS",
+    "MIN", "NA", "OR", "ROW", "SMALL", "SUM", "SUMPRODUCT", "_xlfn.MINIFS",
 }  # fmt: skip
 """What both spreadsheet programs know, the older one from 2019 on; no XLOOKUP, FILTER or LET."""
 
@@ -38,7 +38,7 @@ def formulas(book: Any) -> Iterator[tuple[str, str, str]]:
         for row in sheet.iter_rows():
             for cell in row:
                 if cell.data_type == "f":
-                    yield sheet.title, cell.coordinate, cell.value
+                    yield sheet.title, cell.coordinate, formula_of(cell)
 
 
 def functions_in(formula: str) -> list[str]:
@@ -219,9 +219,15 @@ def test_the_committed_book_is_what_the_script_writes(system: str) -> None:
             for cell in row:
                 old_cell = kept.formulas[sheet.title][cell.coordinate]
                 place = f"{sheet.title}!{cell.coordinate} is stale: run python workbooks/build.py"
-                assert (old_cell.value, old_cell.number_format) == (cell.value, cell.number_format), place
+                assert _as_text(old_cell) == _as_text(cell), place
                 a, b = (s.values[sheet.title][cell.coordinate].value for s in (kept, fresh))
                 assert a == (pytest.approx(b, rel=1e-9, abs=1e-12) if isinstance(b, float) else b), place
+
+
+def _as_text(cell: Any) -> tuple[Any, ...]:
+    """What the book holds in a cell, an array formula as its range and text; and how it is shown."""
+    area = getattr(cell.value, "ref", None)
+    return area, formula_of(cell) if area else cell.value, cell.number_format
 
 
 # --- mistakes ---------------------------------------------------------------------------------------------------

@@ -15,7 +15,7 @@ from openpyxl.formula import Tokenizer
 
 from book import independent
 from book.office import needs_office, recalculated
-from book.starters import NAMES, SYSTEMS, WORKBOOKS, Sample, is_error, made
+from book.starters import NAMES, SYSTEMS, WORKBOOKS, Sample, formula_of, is_error, made
 from lowpoint import cells
 from lowpoint.cells import OMITTED, CellError
 from lowpoint.starter.columns import COLUMNS
@@ -203,8 +203,9 @@ def test_margins_worked_out_a_second_way() -> None:
 
 
 def expected_rows() -> list[dict[str, str]]:
+    """Of the valve lists; the book of plates has tests of its own."""
     with (WORKBOOKS / "expected.csv").open(encoding="utf-8", newline="") as source:
-        return list(csv.DictReader(source))
+        return [line for line in csv.DictReader(source) if line["book"] in NAMES.values()]
 
 
 @pytest.mark.parametrize("line", expected_rows(), ids=lambda e: f"{e['tag']} {e['case']} {e['heading']}")
@@ -276,7 +277,7 @@ def test_ordinary_formulas_as_libreoffice_computes_them(system: str, tmp_path: P
             for cell in row:
                 if cell.data_type != "f":
                     continue
-                if re.search(r"\bLPU?_", cell.value):
+                if re.search(r"\bLPU?_", formula_of(cell)):
                     _put(cell, sample.values[sheet.title][cell.coordinate])
                 else:
                     ordinary.append((sheet.title, cell.coordinate))

@@ -6,7 +6,15 @@ from typing import Any
 
 import openpyxl
 
-from lowpoint.starter import chart_sheet, items_sheet, list_sheet, readme_sheet, site_sheets, summary_sheet
+from lowpoint.starter import (
+    chart_sheet,
+    items_sheet,
+    list_sheet,
+    long_list_sheet,
+    readme_sheet,
+    site_sheets,
+    summary_sheet,
+)
 from lowpoint.starter.plant import Plant
 
 __all__ = ["assembled"]
@@ -21,6 +29,8 @@ def assembled(plant: Plant) -> Any:
     items_sheet.write(book, plant)
     list_sheet.write(book, plant)
     chart_sheet.write(book, plant)
+    if plant.readings is not None:
+        long_list_sheet.write(book, plant, plant.readings)
     site_sheets.write_valves(book, plant)
     site_sheets.write_site(book, plant)
     site_sheets.write_words(book, plant)

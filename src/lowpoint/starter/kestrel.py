@@ -6,6 +6,7 @@ Flow m3/h, pressures bar gauge (thermal desalination: absolute), temperature deg
 from __future__ import annotations
 
 from lowpoint.starter import trims
+from lowpoint.starter.kestrel_readings import HILL_TOP
 from lowpoint.starter.plant import Area, Item, Plant, Table, maximum, minimum, normal, start_up
 
 __all__ = ["PLANT"]
@@ -239,4 +240,5 @@ AMMONIA_ITEMS = (
 PLANT = Plant(
     "Kestrel Bay", "metric", AREAS, (INTAKE_600, RETURN_200, STORE_150),
     INTAKE_ITEMS + OSMOSIS_ITEMS + THERMAL_ITEMS + BOILER_ITEMS + HEATING_ITEMS + JETTY_ITEMS + AMMONIA_ITEMS,
+    HILL_TOP,
 )  # fmt: skip

@@ -6,7 +6,8 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from typing import Any
 
-__all__ = ["Area", "Case", "Item", "Plant", "Table", "Trim", "maximum", "minimum", "normal", "start_up"]
+__all__ = ["Area", "Case", "Item", "Plant", "Reading", "Readings", "Table", "Trim", "maximum", "minimum", "normal",
+           "start_up"]  # fmt: skip
 
 
 @dataclass(frozen=True, slots=True)
@@ -119,11 +120,31 @@ class Item:
 
 
 @dataclass(frozen=True, slots=True)
+class Reading:
+    """What the instruments at one valve showed in one hour; pressures absolute, in the units of the list."""
+
+    hour: int
+    flow: float
+    p1: float
+    p2: float
+    t: float
+
+
+@dataclass(frozen=True, slots=True)
+class Readings:
+    """A long list of readings of the item with this tag."""
+
+    tag: str
+    rows: Sequence[Reading]
+
+
+@dataclass(frozen=True, slots=True)
 class Plant:
-    """Everything that a sample book shows, in one set of units."""
+    """Everything that a sample book shows, in one set of units; ``readings`` where it has a long list too."""
 
     name: str
     system: str
     areas: Sequence[Area]
     tables: Sequence[Table]
     items: Sequence[Item]
+    readings: Readings | None = None

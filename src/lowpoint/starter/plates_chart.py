@@ -9,16 +9,19 @@ from openpyxl.chart.layout import Layout, ManualLayout
 from openpyxl.chart.marker import Marker
 from openpyxl.chart.shapes import GraphicalProperties
 from openpyxl.drawing.line import LineProperties
+from openpyxl.drawing.spreadsheet_drawing import AnchorMarker, TwoCellAnchor
 
 from lowpoint.starter import style
 from lowpoint.starter.frame import Head, put_headings
 from lowpoint.starter.plates_columns import DESIGN, MOST, OTHER
-from lowpoint.starter.plates_page import Page, letters_of
+from lowpoint.starter.plates_page import WIDE, Page, letters_of
 
 __all__ = ["HEADINGS", "STEPS", "write"]
 
 STEPS = 2 * MOST + 4
 """Points of a line of steps: two a plate, one more plate that may flash, and one before and after them all."""
+_LEFT, _TOP = 4, 3
+"""Where the chart begins: column and row, counted from 0. It ends with the cells, whatever their font makes of them."""
 HEADINGS = (
     "Point", "Place, design case", "Equal index, design case", "Place, other case", "As drilled, other case",
     "Vapour pressure, design case", "Vapour pressure, other case", "Plate", "Lowest in the jet, design case",
@@ -39,14 +42,21 @@ def write(page: Page, row: int) -> int:
         row,
         "Points of the chart (working): a place is the number of the plate; beyond the last one the end is repeated",
     )
-    put_headings(page.sheet, row, [Head(text, 9.5) for text in HEADINGS])
+    put_headings(page.sheet, row, [Head(text, 11.0) for text in HEADINGS])
     page.sheet.row_dimensions[row].height = 52
     first = row + 1
     for point in range(STEPS):
         _point(page, first + point, point)
     _jets(page, first)
-    page.sheet.add_chart(_chart(page, row), "E4")
+    chart = _chart(page, row)
+    chart.anchor = TwoCellAnchor(_from=_corner(_LEFT, _TOP), to=_corner(WIDE, page.design_first - 4))
+    page.sheet.add_chart(chart)
     return first + STEPS - 1
+
+
+def _corner(column: int, row: int) -> AnchorMarker:
+    """The upper left corner of a cell, counted from 0."""
+    return AnchorMarker(col=column, row=row)
 
 
 def _point(page: Page, row: int, point: int) -> None:
@@ -54,13 +64,13 @@ def _point(page: Page, row: int, point: int) -> None:
     plate, side = (point + 1) // 2, (point + 1) // 2 - point % 2
     flash = "+1" if page.flash_row is not None else ""
     inlet, letters = page.design_first - 1, letters_of(OTHER)
-    steps = f"({page.places['plates']}{flash})"
+    steps = f"({_shown(page)}{flash})"
     bores = f"COUNT(${letters['bore']}${page.other_first}:${letters['bore']}${page.other_first + MOST - 1})"
     page.put(row, 1, point, "whole")
     for column, count in ((2, steps), (4, bores)):
         page.put(row, column, f"=IF({plate}>{count},{count}+0.5,{max(plate, 0.5)})", "working")
     design = f"INDEX($B${inlet}:$B${inlet + MOST},{side + 1})" if side <= MOST else page.places["end"]
-    page.put(row, 3, f"=IF({side}>{page.places['plates']},{page.places['end']},{design})", "pressure")
+    page.put(row, 3, f"=IF({side}>{_shown(page)},{page.places['end']},{design})", "pressure")
     after = f"${letters['after']}{page.other_first + side - 1}" if side else page.places["p1_other"]
     after = after if side <= MOST else page.places["end_other"]
     page.put(row, 5, f"=IF({side}>{bores},{page.places['end_other']},{after})", "pressure")
@@ -68,19 +78,24 @@ def _point(page: Page, row: int, point: int) -> None:
     page.put(row, 7, f"={page.places['pv_other']}", "fine")
 
 
+def _shown(page: Page) -> str:
+    """Plates of equal index that the table shows."""
+    return f"MIN({page.places['plates']},{MOST})"
+
+
 def _jets(page: Page, first: int) -> None:
     """The lowest pressure in the jet of each plate; beyond the last plate the last one again."""
     jet, top = letters_of(DESIGN)["jet"], page.design_first
     for number in range(1, MOST + 2):
         row = first + number - 1
-        beyond = f"{number}>{page.places['plates']}"
+        beyond = f"{number}>{_shown(page)}"
         if page.flash_row is None:
             place, pressure = (
                 page.places["plates"],
-                f"INDEX(${jet}${top}:${jet}${top + MOST - 1},{page.places['plates']})",
+                f"INDEX(${jet}${top}:${jet}${top + MOST - 1},{_shown(page)})",
             )
         else:
-            place, pressure = f"{page.places['plates']}+1", f"${jet}${page.flash_row}"
+            place, pressure = f"{_shown(page)}+1", f"${jet}${page.flash_row}"
         own = f"${jet}{top + number - 1}" if number <= MOST else pressure
         page.put(row, 8, f"=IF({beyond},{place},{number})", "whole")
         page.put(row, 9, f"=IF({beyond},{pressure},{own})", "pressure")
@@ -125,4 +140,3 @@ def _axes(chart: Any, page: Page) -> None:
     chart.x_axis.delete = chart.y_axis.delete = False
     chart.legend.position = "b"
     chart.layout = Layout(manualLayout=ManualLayout(x=0.04, y=0.09, w=0.94, h=0.7))
-    chart.width, chart.height = 28, 14.8

@@ -16,7 +16,7 @@ MOST = 8
 
 
 def _column(key: str, heading: str, of: str = "", dimension: str = "", fmt: str = "text", formula: str = "",
-            note: str = "", width: float = 9.5) -> Column:  # fmt: skip
+            note: str = "", width: float = 11.0) -> Column:  # fmt: skip
     return Column(key, "", heading, of, dimension, fmt, width, note, formula)
 
 
@@ -84,7 +84,7 @@ def _judged(before: str, after: str, pv: str, pc: str) -> tuple[Column, ...]:
         ),
         _column("margin", "Margin to the limit to keep", "LP_MARGIN", "", "percent", _KEPT,
                 "Index over the limit to keep, less one. At or below 0 the limit is crossed."),
-        _column("state", "State of the flow", "LP_REGIME", "", "verdict", _STATE, width=11),
+        _column("state", "State of the flow", "LP_REGIME", "", "verdict", _STATE),
     )  # fmt: skip
 
 
@@ -99,7 +99,8 @@ DESIGN: tuple[Column, ...] = (
             "Permanent: from well before the plate to where the jet has spread."),
     _column("bore", "Bore", "LP_ORIFICE_BORE", "size", "working",
             "LP_ORIFICE_BORE({flow},{before},{after},{pipe},{density},{pv},{pc},,{edge})"),
-    _column("beta", "Bore over pipe", "", "", "index", "{bore}/{pipe}"),
+    _column("beta", "Bore over pipe", "", "", "index", "{bore}/{pipe}",
+            "Diameter ratio beta; ISO 5167-2 holds from 0.1 to 0.75."),
     _column("k", "Loss coefficient K", "LP_ORIFICE_LOSS", "", "flow", "LP_ORIFICE_LOSS({bore},{pipe},{edge})"),
     _column("fl", "FL", "LP_ORIFICE_FL", "", "index", "LP_ORIFICE_FL({bore},{pipe},{edge})"),
     _column("net", "Net drop of that bore", "LP_ORIFICE_DROP", "pressure", "pressure", _NET,

@@ -29,7 +29,7 @@ __all__ = ["COLUMNS", "Designed", "designed", "write"]
 
 
 def _both(key: str, heading: str, dimension: str, fmt: str) -> tuple[Column, Column]:
-    design, other = (Column(key + tail, "", f"{heading},\n{case}", "", dimension, fmt, 9.5)
+    design, other = (Column(key + tail, "", f"{heading},\n{case}", "", dimension, fmt, 11.0)
                      for tail, case in (("", "design"), ("_other", "other")))  # fmt: skip
     return design, other
 
@@ -41,10 +41,10 @@ _JUDGED = (
 )  # fmt: skip
 COLUMNS: tuple[Column, ...] = (
     Column("plate", "", "Plate", fmt="whole"),
-    Column("bore", "", "Bore, drilled", dimension="size", fmt="working", width=9.5),
-    Column("thickness", "", "Thickness as made", dimension="size", fmt="one", width=9.5),
-    Column("k", "", "Loss coefficient K", fmt="flow", width=9.5),
-    Column("fl", "", "FL", fmt="index", width=9.5),
+    Column("bore", "", "Bore, drilled", dimension="size", fmt="working", width=11.0),
+    Column("thickness", "", "Thickness as made", dimension="size", fmt="one", width=11.0),
+    Column("k", "", "Loss coefficient K", fmt="flow", width=11.0),
+    Column("fl", "", "FL", fmt="index", width=11.0),
     *(pair[0] for pair in _JUDGED),
     *(pair[1] for pair in _JUDGED),
 )

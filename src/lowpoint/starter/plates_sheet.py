@@ -29,7 +29,7 @@ from lowpoint.starter.plates_page import FORMATS, WIDE, Page, letters_of
 __all__ = ["write"]
 
 _CASES_ROW = 6
-_TABLE_ROW = 35
+_TABLE_ROW = 33
 """Row of the headings of the first table; the chart stands beside the inputs above it."""
 _FIELDS = {"case": "name"}
 """Fields of a flow case that are not named as their row."""
@@ -45,7 +45,10 @@ def write(book: Any, duty: Duty) -> Page:
     _typed(page)
     row = _design(page)
     sheet.row_breaks.append(Break(id=row - 1))
-    row = plates_march.write(page, row)
+    row = page.band(row, "What practice does")
+    for line in duty.advice:
+        row = page.text(row, line)
+    row = plates_march.write(page, row + 1)
     _computed(page)
     row = plates_margin.write(page, row + 1)
     sheet.row_breaks.append(Break(id=row - 1))
@@ -75,7 +78,7 @@ def _typed(page: Page) -> None:
                 page.put(row, 2 + bool(tail), value, column.fmt, typed=value is not None)
     for cell in page.sheet[_CASES_ROW][1:3]:
         cell.alignment = style.CENTRE
-    page.sheet.row_dimensions[_CASES_ROW].height = 52
+    page.sheet.row_dimensions[_CASES_ROW].height = 40
     end = "p2" if duty.design.vessel is None else "vessel"
     page.places |= {"end": page.places[end], "end_other": page.places[f"{end}_other"]}
     row = page.band(_CASES_ROW + len(cases) + 1, "Plates and liquid", 3)
@@ -127,9 +130,6 @@ def _design(page: Page) -> int:
             page.label(at, column)
             page.put(at, 2, page.formula(column.formula), column.fmt)
         row += len(FLASHED) + 1
-    row = page.band(row + 1, "What practice does")
-    for line in page.duty.advice:
-        row = page.text(row, line)
     return row + 1
 
 
@@ -144,7 +144,7 @@ def _staged(page: Page, inlet: int) -> str:
         cell = sheet.cell(row, WIDE + 1)
         cell.number_format, cell.font = FORMATS["pressure"], style.PLAIN
     sheet.conditional_formatting.add(area, style.rule(f"ISERROR({letter}{inlet})", ink="quiet"))
-    sheet.cell(last + 1, WIDE + 1, "#N/A is beyond the last").font = style.NOTE
+    sheet.cell(last + 1, WIDE + 1, "beyond the last plate: #N/A").font = style.NOTE
     return letter
 
 

@@ -54,11 +54,14 @@ def write(book: Any, plant: Plant) -> None:
     style.title(sheet, f"{plant.name}: cavitation of control valves in liquid service", f"A valve list that computes "
                 f"itself: {len(plant.items)} items of an invented utility, each with its operating cases.")  # fmt: skip
     sheet.column_dimensions["A"].width, sheet.column_dimensions["B"].width = 18, 112
+    long_list = (("Long list", "Hourly readings of one valve: one array formula a column, the quick form for long "
+                  "lists."),) if plant.readings else ()
     row = section(sheet, 4, "The sheets", (
         ("Summary", "Counts by state of the flow and by area, the worst ten items, every case without an answer."),
         ("Items", "One row an item, judged by the worst of its cases. This is the sheet to issue."),
         ("List", "One row an item and case: inputs, then every intermediate value. Notes on the headings tell more."),
         ("Chart", "Index against limits of the worst cases."),
+        *long_list,
         ("Valves", "Vendors' tables of coefficient, FL and incipient index over the opening."),
         ("Site", "Elevation and barometric pressure of the areas; gauge readings made absolute."),
         ("Words", "What cells are chosen from."),

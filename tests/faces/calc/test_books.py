@@ -6,6 +6,7 @@ import json
 import re
 import shutil
 import zipfile
+from collections.abc import Iterator
 from pathlib import Path
 from typing import Any
 
@@ -14,6 +15,7 @@ import pytest
 from openpyxl.formatting.rule import FormulaRule
 from openpyxl.styles import PatternFill
 from openpyxl.workbook.defined_name import DefinedName
+from openpyxl.worksheet.formula import ArrayFormula
 
 from lowpoint import cells
 from lowpoint.faces import cli
@@ -184,23 +186,34 @@ def test_the_sample_list_shows_what_recalc_computes(office: Any, tmp_path: Path)
         if "LP" not in formulas_of(sheet):
             continue
         shown = office.cells(number, f"{sheet.title}!A1:{sheet.cell(sheet.max_row, sheet.max_column).coordinate}")
-        for row in sheet.iter_rows():
-            for cell in row:
-                if isinstance(cell.value, str) and "LP" in cell.value and cell.value.startswith("="):
-                    tried += 1
-                    want = stored[sheet.title][cell.coordinate].value
-                    got = shown[cell.row - 1][cell.column - 1]
-                    if not alike(got, want):
-                        differ.append(
-                            f"{sheet.title}!{cell.coordinate} {cell.value[:80]}: Calc {got!r}, recalc {want!r}"
-                        )
+        for cell, formula in lowpoint_cells(sheet):
+            tried += 1
+            want = stored[sheet.title][cell.coordinate].value
+            got = shown[cell.row - 1][cell.column - 1]
+            if not alike(got, want):
+                differ.append(f"{sheet.title}!{cell.coordinate} {formula[:80]}: Calc {got!r}, recalc {want!r}")
     office.close(number)
     assert not differ, f"{len(differ)} of {tried}:\n" + "\n".join(differ[:20])
     assert tried > 1000
+    # The sheet with one array formula a column counts with every cell of its columns.
+    assert sum(1 for _ in lowpoint_cells(formulas["Long list"])) > 1500
 
 
 def formulas_of(sheet: Any) -> str:
-    return "".join(str(c.value) for row in sheet.iter_rows() for c in row if str(c.value).startswith("="))
+    return "".join(formula for _, formula in lowpoint_cells(sheet))
+
+
+def lowpoint_cells(sheet: Any) -> Iterator[tuple[Any, str]]:
+    """Every cell whose value an LP_ function had a part in, with its formula; of an array formula all its cells."""
+    for row in sheet.iter_rows():
+        for cell in row:
+            if isinstance(cell.value, ArrayFormula):
+                text = str(cell.value.text)
+                block = sheet[cell.value.ref]
+                block = block if isinstance(block, tuple) else ((block,),)
+                yield from ((one, text) for line in block for one in line if "LP" in text)
+            elif isinstance(cell.value, str) and "LP" in cell.value and cell.value.startswith("="):
+                yield cell, cell.value
 
 
 def alike(got: Any, want: Any) -> bool:

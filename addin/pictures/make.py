@@ -22,6 +22,8 @@ from typing import Any
 HERE = Path(__file__).resolve().parent
 BOOK = HERE.parents[1] / "workbooks" / "kestrel-bay.xlsx"
 SIZE = "1240x740"
+HEADINGS = 5
+"""The row of the headings on the sheet List."""
 LARGEST = 120_000
 """Bytes of a picture, at most."""
 NEEDED = ("Xvfb", "openbox", "xdotool", "import", "pngquant", "soffice")
@@ -76,6 +78,7 @@ def take(work: Path) -> None:
             context = connected(pipe, process)
             settle(context)
             book = Book(context, work / BOOK.name)
+            book.without_filter("List")
             the_list(book)
             the_wizard(book)
             book.end()
@@ -132,24 +135,35 @@ class Book:
     def do(self, command: str) -> None:
         self.dispatcher.executeDispatch(self.view.Frame, f".uno:{command}", "", 0, ())
 
-    def show(self, title: str, first: str, cell: str, zoom: int) -> None:
-        """A sheet from this cell on, with the cursor on that cell."""
+    def show(self, title: str, heading: str, cell_under: str, row: int, zoom: int) -> None:
+        """A sheet scrolled to the column of this heading, with the cursor in a row of the column of another one."""
         sheet = self.book.Sheets.getByName(title)
         self.view.setActiveSheet(sheet)
-        self.view.ZoomType, self.view.ZoomValue = 3, zoom
-        corner = sheet.getCellRangeByName(first).RangeAddress
-        for pane in range(self.view.Count):
-            area = self.view.getByIndex(pane)
-            if pane == self.view.Count - 1:
-                area.FirstVisibleColumn, area.FirstVisibleRow = corner.StartColumn, corner.StartRow
-        self.view.select(sheet.getCellRangeByName(cell))
+        self.view.ZoomType, self.view.ZoomValue = 3, zoom  # by value
+        right_below = self.view.getByIndex(self.view.Count - 1)
+        right_below.FirstVisibleRow, right_below.FirstVisibleColumn = HEADINGS, column(sheet, heading)
+        self.view.select(sheet.getCellByPosition(column(sheet, cell_under), row - 1))
+        right_below.FirstVisibleColumn = column(sheet, heading)
         time.sleep(2)
+
+    def without_filter(self, title: str) -> None:
+        """Take the filter's buttons off a sheet: they take the room of the headings' words."""
+        self.view.setActiveSheet(self.book.Sheets.getByName(title))
+        self.do("DataFilterAutoFilter")
 
     def end(self) -> None:
         self.book.setModified(False)
         self.book.close(True)
         with contextlib.suppress(Exception):
             self.desktop.terminate()
+
+
+def column(sheet: Any, heading: str) -> int:
+    """Where the heading stands that begins with these words."""
+    found = [at for at in range(100) if sheet.getCellByPosition(at, HEADINGS - 1).String.startswith(heading)]
+    if not found:
+        raise LookupError(f"no heading {heading} in the sheet {sheet.Name}")
+    return found[0]
 
 
 def keys(*words: str) -> None:
@@ -173,19 +187,18 @@ def photograph(name: str) -> None:
 
 def the_list(book: Book) -> None:
     """The verdicts beside what they rest on."""
-    book.show("List", "E6", "D6", 85)
+    book.show("List", "Inlet pressure p1", "Index sigma", 21, 80)
     photograph("calc-list.png")
 
 
 def the_wizard(book: Book) -> None:
-    """The function wizard on the required coefficient of the first row."""
-    from lowpoint_letters import COEFFICIENT  # placeholder, replaced below
-
-    book.show("List", "E6", COEFFICIENT, 85)
+    """The function wizard on the required coefficient of a row."""
+    book.show("List", "Inlet pressure p1", "Required coefficient", 21, 80)
     book.do("FunctionDialog")
-    time.sleep(3)
+    time.sleep(4)
     photograph("calc-wizard.png")
     keys("key", "Escape")
+    time.sleep(1)
 
 
 if __name__ == "__main__":

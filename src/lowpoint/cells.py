@@ -14,7 +14,7 @@ import numpy as np
 
 from lowpoint.checked import Outcome
 from lowpoint.columns import OMITTED, Column
-from lowpoint.problems import CellError, shown
+from lowpoint.problems import PASSED_ON, CellError, shown
 from lowpoint.registry import Function, canonical, functions, nearest
 
 __all__ = ["OMITTED", "CellError", "Same", "call", "call_many", "reason", "reasons"]
@@ -53,13 +53,16 @@ def call(name: str, args: Sequence[Any]) -> Any:
 
 
 def reason(name: str, args: Sequence[Any]) -> str:
-    """The sentence that LP_WHY gives for one call; of a call over ranges, the first that is not "ok"."""
+    """The sentence that LP_WHY gives for one call; of a call over ranges that of the first error, else the first."""
     if name == "LP_WHY":
         return _why_not(args)
     said = _why([name, *args])
-    if isinstance(said, list):
-        return next((words for row in said for words in row if words != "ok"), "ok")
-    return str(said)
+    if not isinstance(said, list):
+        return str(said)
+    sentences = [words for row in said for words in row]
+    # The sentence of an error begins with the function's name; cautions and bases do not.
+    failed = (words for words in sentences if words.startswith(f"{name}: "))
+    return next(failed, next((words for words in sentences if words != "ok"), "ok"))
 
 
 def call_many(name: str, columns: Sequence[Any], rows: int) -> list[Any]:
@@ -165,8 +168,11 @@ def _laid_out(argument: Any, shape: tuple[int, int]) -> Any:
 def _why_not(args: Sequence[Any]) -> str:
     """Why a call of LP_WHY itself errs."""
     asked = args[0] if args else None
-    if isinstance(_why(args), str | list):
+    answer = _why(args)
+    if not isinstance(answer, CellError):
         return "ok"
+    if isinstance(asked, CellError):
+        return f"LP_WHY: function is {asked}, {PASSED_ON}; ask about the call by its name, in quotation marks."
     must = "LP_WHY: function must be the name of a function in quotation marks"
     near = nearest(asked) if isinstance(asked, str) else []
     hint = f" Nearest: {', '.join(near)}." if near else ""

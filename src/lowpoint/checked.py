@@ -11,7 +11,7 @@ import numpy as np
 import numpy.typing as npt
 
 from lowpoint import messages
-from lowpoint.columns import Column, closed_word, number_column, read_table, word_column
+from lowpoint.columns import Column, closed_word, first_error, number_column, read_table, word_column
 from lowpoint.declare import Declaration, Parameter, SameAs
 from lowpoint.problems import CellError, Ledger
 from lowpoint.quantities import Quantity, Table, Text, Word
@@ -97,7 +97,7 @@ class Checked:
     def evaluate(self, columns: Mapping[str, Column], tables: Mapping[str, Any], rows: int) -> Outcome:
         """Check, convert and compute ``rows`` rows; ``tables`` holds each table argument as it was passed."""
         ledger = Ledger(rows)
-        self._errors_in(columns, ledger)
+        self._errors_in(columns, tables, ledger)
         read = self._read_tables(tables, ledger)
         user = {p.name: self._check(p, columns.get(p.name), ledger) for p in self.parameters if not p.is_table}
         self._check_relations(user, ledger)
@@ -108,13 +108,15 @@ class Checked:
         self._no_answer(values, given, good, ledger)
         return Outcome(values, ledger, good, given)
 
-    def _errors_in(self, columns: Mapping[str, Column], ledger: Ledger) -> None:
+    def _errors_in(self, columns: Mapping[str, Column], tables: Mapping[str, Any], ledger: Ledger) -> None:
+        """Errors passed in, the leftmost first, before anything else is looked at."""
         for parameter in self.parameters:
-            column = columns.get(parameter.name)
-            if column is None or not column.errors:
-                continue
-            for error in dict.fromkeys(column.errors.values()):
-                mask = _mask(column.size, [place for place, e in column.errors.items() if e is error])
+            if parameter.is_table:
+                error = first_error(tables.get(parameter.name))
+                found = {} if error is None else {error: np.ones(1, np.bool_)}
+            else:
+                found = _by_error(columns.get(parameter.name))
+            for error, mask in found.items():
                 ledger.blame(mask, error, messages.passed_on(self, parameter, error))
 
     def _read_tables(self, tables: Mapping[str, Any], ledger: Ledger) -> dict[str, Any]:
@@ -124,6 +126,8 @@ class Checked:
             if not parameter.is_table:
                 continue
             cells = tables.get(parameter.name)
+            if first_error(cells) is not None:
+                continue
             if cells is None or (isinstance(cells, str) and not cells):
                 if parameter.required:
                     ledger.blame(everything, CellError.NA, messages.blank(self, parameter))
@@ -331,6 +335,16 @@ class Checked:
             for words in said:
                 words.append(basis)
         return [outcome.ledger.sentence(row) or "; ".join(words) or "ok" for row, words in enumerate(said)]
+
+
+def _by_error(column: Column | None) -> dict[CellError, npt.NDArray[np.bool_]]:
+    """For each error of a column the mask of its rows."""
+    if column is None or not column.errors:
+        return {}
+    return {
+        error: _mask(column.size, [place for place, e in column.errors.items() if e is error])
+        for error in dict.fromkeys(column.errors.values())
+    }
 
 
 def _names(when: Callable[..., Any] | None) -> list[str]:

@@ -14,10 +14,10 @@ import numpy as np
 import numpy.typing as npt
 
 from lowpoint.declare import Parameter
-from lowpoint.problems import PASSED_ON, CellError
+from lowpoint.problems import CellError
 from lowpoint.quantities import Table, Word
 
-__all__ = ["OMITTED", "Column", "number_column", "read_table", "word_column"]
+__all__ = ["OMITTED", "Column", "first_error", "number_column", "read_table", "word_column"]
 
 
 class _Omitted:
@@ -109,7 +109,7 @@ def word_column(cells: Any, resolve: Callable[[str], str], default: str | None) 
             column.errors[place] = cell
             continue
         # 0 is no word: it is how a spreadsheet's add-in is shown a single blank cell.
-        if cell is None or cell is OMITTED or cell == "" or cell == 0 or cell != cell:
+        if cell is None or cell is OMITTED or cell == "" or (cell == 0 and cell is not False) or cell != cell:
             words[place] = default
             continue
         if not isinstance(cell, str):
@@ -144,10 +144,19 @@ def closed_word(kind: Word | Table) -> Callable[[str], str]:
     return resolve
 
 
+def first_error(cells: Any) -> CellError | None:
+    """The first error among the cells of a table argument, row by row."""
+    if isinstance(cells, np.ndarray):
+        cells = cells.ravel().tolist() if cells.dtype == object else []
+    if isinstance(cells, list | tuple):
+        return next((found for found in map(first_error, cells) if found is not None), None)
+    return cells if isinstance(cells, CellError) else None
+
+
 def read_table(parameter: Parameter, cells: Any) -> tuple[Any, CellError | None, str]:
     """A table argument: (array of ``width`` columns or a word, None, '') or (None, error, what is wrong).
 
-    Blank cells stay NaN here: rows that are blank in every table of a call are dropped by the caller.
+    Blank cells stay NaN here: the caller, who has looked for errors already, drops rows blank in all tables of a call.
     """
     kind = parameter.kind
     assert isinstance(kind, Table)
@@ -166,9 +175,6 @@ def read_table(parameter: Parameter, cells: Any) -> tuple[Any, CellError | None,
     if any(len(row) != kind.width for row in rows):
         return None, CellError.VALUE, f"{name} must be a table of {kind.width} columns"
     flat = number_column([cell for row in rows for cell in row])
-    if flat.errors:
-        first = flat.errors[min(flat.errors)]
-        return None, first, f"{name} holds {first}, {PASSED_ON}"
     if flat.texts:
         return None, CellError.VALUE, f"{name} must hold numbers only, got '{flat.texts[min(flat.texts)]}'"
     assert flat.numbers is not None

@@ -192,10 +192,14 @@ def _check(item: Declaration) -> None:
     def wrong(must: str, got: object) -> DeclarationError:
         return DeclarationError(label, must, repr(got))
 
-    if not re.fullmatch(r"[A-Z][A-Z_]*[A-Z]", item.name) or re.fullmatch(r"[A-Z]{1,3}[0-9]+", label):
-        raise wrong("must be upper-case words that no cell address can be taken for", item.name)
-    if item.name in declarations or f"LPU_{item.name}" in {f"LP_{n}" for n in declarations}:
-        raise wrong("must be declared once", item.name)
+    # LP_ and letters only: no cell address (letters and digits) can be taken for it.
+    if not re.fullmatch(r"(?=..)[A-Z]+(_[A-Z]+)*", item.name):
+        raise wrong("must be upper-case words without digits, one underscore between two", item.name)
+    if item.name in declarations or item.name == "WHY":
+        raise wrong("must be declared once (LP_WHY is made by the registry)", item.name)
+    kinds = {p.kind for p in inspect.signature(item.kernel).parameters.values()}
+    if kinds & {inspect.Parameter.VAR_POSITIONAL, inspect.Parameter.VAR_KEYWORD}:
+        raise wrong("must name every argument", "*args or **kwargs")
     if item.group not in GROUPS or item.basis not in BASES:
         raise wrong(f"must have a group of {GROUPS} and a basis of {BASES}", (item.group, item.basis))
     if not item.gives or not (item.kernel.__doc__ or "").strip():

@@ -45,7 +45,7 @@ def test_a_good_declaration_returns_the_kernel_itself() -> None:
 
 @pytest.mark.parametrize("name", ["trial", "TRIAL1", "_TRIAL", "TR-IAL", "T", ""])
 def test_bad_names(name: str) -> None:
-    with pytest.raises(DeclarationError, match="cell address"):
+    with pytest.raises(DeclarationError, match="upper-case words"):
         _declare(name)(good)
 
 

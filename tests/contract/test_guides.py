@@ -27,6 +27,8 @@ def _block(page: str, mark: str) -> str:
 @pytest.fixture
 def _declarations_restored() -> Iterator[None]:
     before = dict(declarations)
+    # Who follows the guide has it among the kernels already.
+    declarations.pop("HEAD_LOSS", None)
     yield
     declarations.clear()
     declarations.update(before)

@@ -143,6 +143,34 @@ def test_error_in_comes_out_unchanged(name: str, error: CellError) -> None:
 
 
 @pytest.mark.parametrize("name", names())
+def test_the_leftmost_of_several_errors_wins_in_tables_too(name: str) -> None:
+    """Whatever else is wrong: two errors in any two arguments, scalars, tables, tables of one cell or a wrong width."""
+    parameters = functions[name].parameters
+    shapes = (lambda e: e, lambda e: [[e], [1.0]], lambda e: [[1.0, 2.0, 3.0], [e, None, "x"]])
+    for i, j in itertools.combinations(range(len(parameters)), 2):
+        for shape in shapes:
+            args: list[object] = [None] * len(parameters)
+            args[i] = shape(CellError.REF) if parameters[i].is_table else CellError.REF
+            args[j] = shape(CellError.DIV0) if parameters[j].is_table else CellError.DIV0
+            assert call(name, args) is CellError.REF, (parameters[i].name, parameters[j].name)
+
+
+def test_a_logical_is_no_word() -> None:
+    """FALSE is not the blank cell that 0 may stand for."""
+    assert call("LP_SIGMA", [10.0, 4.0, 0.02, False]) is CellError.VALUE
+    assert call("LP_SIGMA", [10.0, 4.0, 0.02, True]) is CellError.VALUE
+    assert call("LP_SIGMA", [10.0, 4.0, 0.02, 0.0]) == call("LP_SIGMA", [10.0, 4.0, 0.02])
+
+
+def test_the_reason_of_a_range_is_that_of_its_error() -> None:
+    said = reason("LP_REGIME", [[[2.0], [None]], [[1.5], [1.5]]])
+    assert said.startswith("LP_REGIME: sigma")
+    assert reason("LP_WHY", ["LP_SIGMAA", 1.0]).startswith("LP_WHY: function must be the name of a function")
+    assert "Nearest: LP_SIGMA" in reason("LP_WHY", ["LP_SIGMAA", 1.0])
+    assert call("LP_WHY", ["SIGMA", 10.0, 5.0, 1.0]) == "ok"
+
+
+@pytest.mark.parametrize("name", names())
 def test_ranges_spill_and_short_ranges_are_na(name: str) -> None:
     function, args = functions[name], example(name)
     scalars = [i for i, p in enumerate(function.parameters) if not p.is_table]

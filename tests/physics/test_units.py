@@ -147,3 +147,12 @@ def test_units_may_change_from_row_to_row() -> None:
     said = functions["LP_UNIT"].why(np.array([1.0, 1.0]), np.array(["m3/h", "bar"], object), "kPa")
     assert "different kinds" in said[0]
     assert said[1] == "ok"
+
+
+@pytest.mark.parametrize(("value", "from_", "to", "expected"), [
+    (0, "deg C", "deg F", 32), (212, "deg F", "deg C", 100), (20, "deg C", "deg F", 68), (-40, "deg F", "deg C", -40),
+    (0, "deg C", "K", 273.15), (32, "deg F", "K", 273.15),
+])  # fmt: skip
+def test_whole_degrees_stay_whole(value: float, from_: str, to: str, expected: float) -> None:
+    """A cell that is compared with = must meet its number (definitions of the scales)."""
+    assert functions["LP_UNIT"](value, from_, to) == expected

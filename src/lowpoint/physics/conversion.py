@@ -10,9 +10,12 @@ import numpy as np
 
 from lowpoint import quantities as q
 from lowpoint.declare import Caution, NoAnswer, function
-from lowpoint.physics.unitnames import LISTED, PRESSURE, RELATIVE_DENSITY, TEMPERATURE, meaning
+from lowpoint.physics.unitnames import LISTED, PRESSURE, RELATIVE_DENSITY, TEMPERATURE, Meaning, meaning
 
 __all__ = ["convert", "unit_words"]
+
+ICE_POINT = 273.15
+"""K."""
 
 
 class _Side(NamedTuple):
@@ -24,6 +27,9 @@ class _Side(NamedTuple):
     dimension: Any
     bottom: Any
     """Whether nothing lies below the absolute zero of this kind of quantity."""
+    ice: Any
+    """What the unit reads at the ice point, 0 for what is no temperature: scales are counted from there, so that whole
+    degrees stay whole."""
 
 
 def unit_words() -> Iterable[str]:
@@ -44,8 +50,12 @@ def _resolver(symbol: str) -> Callable[[str], str]:
 
 def _columns(words: Iterable[str]) -> _Side:
     known = [meaning(word) for word in words]
-    rows = [(m.factor, m.zero, m.gauge, m.dimension, m.dimension in (PRESSURE, TEMPERATURE)) for m in known]
+    rows = [(m.factor, m.zero, m.gauge, m.dimension, m.dimension in (PRESSURE, TEMPERATURE), _ice(m)) for m in known]
     return _Side(*map(np.array, zip(*rows, strict=True)))
+
+
+def _ice(unit: Meaning) -> float:
+    return round(ICE_POINT / unit.factor - unit.zero, 9) if unit.dimension == TEMPERATURE else 0.0
 
 
 @lru_cache(512)
@@ -86,7 +96,8 @@ def _below_zero(value: Any, from_: Any, atmosphere: Any) -> Any:
 
 @function(
     "UNIT", group="liquids", gives="a value in another unit", source_key="SI brochure",
-    equation="((value + zero_from) factor_from [+ atmosphere] [- atmosphere])/factor_to - zero_to",
+    equation="((value - zero_from) factor_from [+ atmosphere] [- atmosphere])/factor_to + zero_to, temperatures from "
+    "the ice point",
     no_answer=(
         NoAnswer("from and to are units of different kinds of quantity (mass and volume flow differ by the density, "
                  "dynamic and kinematic viscosity too)", _of_two_kinds, value=True),
@@ -113,7 +124,8 @@ def convert(
     one, other = _side(from_), _side(to)
     ambient = 0.0 if atmosphere is None else np.nan_to_num(atmosphere)
     si = _absolute(value, one, ambient)
-    answer = (si - other.gauge * ambient) / other.factor - other.zero
+    from_ice = (value - one.ice) * one.factor + (one.gauge * ambient - other.gauge * ambient)
+    answer = from_ice / other.factor + other.ice
     # One unit to itself gives the value itself, not a neighbour of it.
     same = (one.factor == other.factor) & (one.zero == other.zero) & (one.gauge == other.gauge)
     answer = np.where(same, value, answer)

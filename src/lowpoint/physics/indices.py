@@ -89,10 +89,20 @@ def choked_index(
     return (p1 - pv) / choked_drop_of(head, fl, coefficient, total, inlet)
 
 
+LOW_LIMIT = Caution(
+    "the limit is at or below 1, which only a choking limit of a liquid close to boiling can be: was another form meant "
+    "(LP_SIGMA_FORM carries it over)?", lambda limit: limit <= 1.0,
+)  # fmt: skip
+
+
 @function(
     "MARGIN", group="indices and limits", gives="margin of an index to a limit, both in upstream form",
     source_key="definition", equation="sigma/limit - 1", any_unit=True,
-    cautions=(Caution("the index is at or beyond the limit", lambda result: result <= 0.0),),
+    cautions=(
+        Caution("sigma is at or below 1: the liquid flashes, whatever the margin", lambda sigma: sigma <= 1.0),
+        LOW_LIMIT,
+        Caution("the index is at or beyond the limit", lambda result: result <= 0.0),
+    ),
 )  # fmt: skip
 def margin(sigma: q.Sigma, limit: q.Limit) -> q.Ratio:
     """Margin, ``sigma/limit - 1 = dp_allowed/dp - 1``; 0 and below is crossed.

@@ -8,6 +8,7 @@ from lowpoint import quantities as q
 from lowpoint.declare import Caution, NoAnswer, function
 from lowpoint.physics import fittings
 from lowpoint.physics.fittings import fitting_losses, geometry_factor2
+from lowpoint.physics.indices import LOW_LIMIT
 from lowpoint.units import CV_PER_KV, KV
 
 __all__ = ["inception_estimate", "installed_limit", "scaled_limit"]
@@ -58,7 +59,11 @@ def scaled_limit(
     "LIMIT_INSTALLED", group="indices and limits",
     gives="limit of the bare valve as it holds for the valve between its reducers, upstream form",
     source_key="closed form", equation="FP^2 (limit + (K1+KB1) (C/d^2)^2/N2)",
-    no_answer=(fittings.TOO_LARGE, fittings.GAIN), cautions=(fittings.LINE_SIZE, fittings.LARGE_CAPACITY),
+    no_answer=(fittings.TOO_LARGE, fittings.GAIN),
+    cautions=(
+        LOW_LIMIT,
+        fittings.LINE_SIZE, fittings.LARGE_CAPACITY,
+    ),
 )  # fmt: skip
 def installed_limit(
     limit: q.Limit, coefficient: q.Coefficient, valve_size: q.ValveSize, pipe_in: q.PipeIn, pipe_out: q.PipeOut

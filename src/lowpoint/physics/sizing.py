@@ -105,6 +105,16 @@ def no_valve_passes(
     return (energy / (p1 - p2) * total >= 1.0) | (energy / head * inlet >= 1.0)
 
 
+def _gain_too_large(
+    flow: Any, p1: Any, p2: Any, pv: Any, pc: Any, density: Any, fl: Any, valve_size: Any, pipe_in: Any, pipe_out: Any
+) -> Any:
+    """Where the valve that would pass the flow regains more in its expander than all losses are."""
+    total, inlet = fitting_losses(valve_size, pipe_in, pipe_out)
+    energy = flow * flow * density
+    c = _for_both(energy / (p1 - p2), energy / (p1 - critical_pressure_factor(pv, pc) * pv), fl, total, inlet)
+    return 1.0 + total * c * c <= 0.0
+
+
 def _sized_choked(
     result: Any, p1: Any, p2: Any, pv: Any, pc: Any, fl: Any, valve_size: Any, pipe_in: Any, pipe_out: Any
 ) -> Any:
@@ -131,6 +141,7 @@ SIZED_CHOKED = Caution(
         fittings.TOO_LARGE,
         NoAnswer("no valve of this size passes the flow: the fittings alone take the whole drop; choose a larger "
                  "valve_size", no_valve_passes),
+        NoAnswer(fittings.GAIN.text, _gain_too_large),
         nonturbulent.NO_ROOT,
     ),
     cautions=(FLASHES, SIZED_CHOKED, fittings.LINE_SIZE, fittings.LARGE_RESULT, nonturbulent.SLOW),
@@ -152,6 +163,8 @@ def required_coefficient(
     dp = p1 - p2
     head = p1 - critical_pressure_factor(pv, pc) * pv
     c = _for_both(energy / dp, energy / head, fl, total, inlet)
+    if not isinstance(total, float):
+        c = np.where(1.0 + total * c * c > 0.0, c, np.nan)
     rows = nonturbulent.rows_with(viscosity)
     if rows is not None:
         slow = nonturbulent.picked(rows, trim, flow, dp, density, fl, valve_size, pipe_in, viscosity, fd)

@@ -54,8 +54,11 @@ def write(book: Any, plant: Plant) -> None:
     style.title(sheet, f"{plant.name}: cavitation of control valves in liquid service", f"A valve list that computes "
                 f"itself: {len(plant.items)} items of an invented utility, each with its operating cases.")  # fmt: skip
     sheet.column_dimensions["A"].width, sheet.column_dimensions["B"].width = 18, 112
-    long_list = (("Long list", "Hourly readings of one valve: one array formula a column, the quick form for long "
-                  "lists."),) if plant.readings else ()
+    long_list = (
+        (("Long list", "Hourly readings of one valve: one array formula a column, the quick form for long lists."),)
+        if plant.readings
+        else ()
+    )
     row = section(sheet, 4, "The sheets", (
         ("Summary", "Counts by state of the flow and by area, the worst ten items, every case without an answer."),
         ("Items", "One row an item, judged by the worst of its cases. This is the sheet to issue."),

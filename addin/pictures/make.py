@@ -148,7 +148,9 @@ class Book:
 
     def without_filter(self, title: str) -> None:
         """Take the filter's buttons off a sheet: they take the room of the headings' words."""
-        self.view.setActiveSheet(self.book.Sheets.getByName(title))
+        sheet = self.book.Sheets.getByName(title)
+        self.view.setActiveSheet(sheet)
+        self.view.select(sheet.getCellByPosition(0, HEADINGS))
         self.do("DataFilterAutoFilter")
 
     def end(self) -> None:

@@ -12,9 +12,10 @@ import numpy.typing as npt
 
 from lowpoint import messages
 from lowpoint.columns import Column, closed_word, first_error, number_column, read_table, word_column
-from lowpoint.declare import Declaration, Parameter, SameAs
+from lowpoint.declare import Declaration, Parameter
 from lowpoint.problems import CellError, Ledger
 from lowpoint.quantities import Quantity, Table, Text, Word
+from lowpoint.rows import from_si, numbers_block, table_fault, to_si, with_default, words_block
 from lowpoint.units import Unit, dimension
 
 __all__ = ["Checked", "Outcome"]
@@ -157,7 +158,7 @@ class Checked:
             if parameter.name not in arrays:
                 continue
             table = read[parameter.name] = arrays[parameter.name][kept]
-            error, words = _table_fault(parameter, table)
+            error, words = table_fault(parameter, table)
             if error is not None:
                 ledger.blame(everything, error, messages.sentence(self, words, parameter.kind.remedy))
 
@@ -165,7 +166,7 @@ class Checked:
         if not isinstance(table, np.ndarray):
             return table
         table = table[:, 0] if table.shape[1] == 1 else table
-        return _to_si(table, self.units[name])
+        return to_si(table, self.units[name])
 
     def _check(self, parameter: Parameter, column: Column | None, ledger: Ledger) -> Any:
         """One argument's values in the user's unit, faults entered; None where it is wholly omitted."""
@@ -232,7 +233,7 @@ class Checked:
             if good is not None and isinstance(x, np.ndarray) and len(x) > 1:
                 x = x[good]
             if isinstance(parameter.kind, Quantity):
-                x = _with_default(parameter, x, filled)
+                x = with_default(parameter, x, filled)
             elif isinstance(x, np.ndarray):
                 x = x.astype(str)
             filled[name] = x
@@ -241,7 +242,7 @@ class Checked:
     def _si(self, given: Mapping[str, Any]) -> dict[str, Any]:
         """The kernel's arguments: numbers in SI."""
         return {
-            name: _to_si(x, self.units[name]) if isinstance(x, np.ndarray) and x.dtype.kind == "f" and x.ndim == 1
+            name: to_si(x, self.units[name]) if isinstance(x, np.ndarray) and x.dtype.kind == "f" and x.ndim == 1
             and not self._is_table[name] else x
             for name, x in given.items()
         }  # fmt: skip
@@ -276,9 +277,9 @@ class Checked:
         for parameter in self.parameters:
             x = given[parameter.name]
             if parameter.is_number and x is not None:
-                x = _numbers_block(x, self.units[parameter.name], start, stop, count)
+                x = numbers_block(x, self.units[parameter.name], start, stop, count)
             elif parameter.is_text and isinstance(x, np.ndarray):
-                x = _words_block(x, start, stop, count)
+                x = words_block(x, start, stop, count)
             block.append(x)
         return block
 
@@ -287,7 +288,7 @@ class Checked:
             words = np.asarray(answer, object)
             words[words == ""] = None
             return words
-        return _from_si(answer, self.unit)
+        return from_si(answer, self.unit)
 
     def _no_answer(
         self, values: npt.NDArray[Any], given: dict[str, Any], good: npt.NDArray[np.intp], ledger: Ledger
@@ -325,7 +326,7 @@ class Checked:
             return [outcome.ledger.sentence(row) or "ok" for row in range(len(said))]
         arguments = self._si(outcome.given)
         if not self.returns_text:
-            arguments["result"] = _to_si(np.asarray(outcome.values[outcome.good], np.float64), self.unit)
+            arguments["result"] = to_si(np.asarray(outcome.values[outcome.good], np.float64), self.unit)
         for caution in self.declaration.cautions:
             mask = self._looked_at(caution.when, arguments, len(outcome.good))
             for row in outcome.good[np.asarray(mask, np.bool_)]:
@@ -362,14 +363,6 @@ def _carried(bound: float, metric: Unit, mine: Unit) -> float:
     return float(f"{mine.from_si(metric.to_si(bound)):.12g}")
 
 
-def _to_si(x: npt.NDArray[np.float64], unit: Unit) -> npt.NDArray[np.float64]:
-    return x if unit.plain else x * unit.factor + unit.offset
-
-
-def _from_si(x: Any, unit: Unit) -> Any:
-    return x if unit.plain else (x - unit.offset) / unit.factor
-
-
 def _mask(size: int, places: Sequence[int]) -> npt.NDArray[np.bool_]:
     mask = np.zeros(size, np.bool_)
     mask[list(places)] = True
@@ -382,48 +375,3 @@ def _present(x: Any) -> npt.NDArray[np.bool_]:
     if x.dtype == object:
         return np.asarray(x != None, np.bool_)  # noqa: E711
     return np.asarray(~np.isnan(x), np.bool_)
-
-
-def _with_default(parameter: Parameter, x: Any, filled: Mapping[str, Any]) -> Any:
-    default = parameter.default
-    if default is None:
-        return x
-    fill = filled[default.symbol] if isinstance(default, SameAs) else np.array([float(default)])
-    if x is None or fill is None:
-        return fill if x is None else x
-    absent = np.isnan(x)
-    return np.where(absent, fill, x) if absent.any() else x
-
-
-def _numbers_block(x: npt.NDArray[np.float64], unit: Unit, start: int, stop: int, count: int) -> Any:
-    """One argument's rows of a block in SI, of the block's length; None where all are blank.
-
-    A value for all rows stays one in memory (a stride of 0), so that kernels can tell and compute with it once.
-    """
-    if len(x) == 1 and count > 1:
-        one = _to_si(x, unit)
-        return None if np.isnan(one[0]) else np.ndarray((stop - start,), np.float64, one, 0, (0,))
-    part = _to_si(x[start:stop], unit)
-    return None if np.isnan(part[0]) and np.isnan(part).all() else part
-
-
-def _words_block(x: npt.NDArray[Any], start: int, stop: int, count: int) -> Any:
-    """One argument's words of a block, one str where all are equal."""
-    if len(x) == 1 and count > 1:
-        return str(x[0])
-    part = x[start:stop]
-    return str(part[0]) if (part == part[0]).all() else part
-
-
-def _table_fault(parameter: Parameter, table: npt.NDArray[np.float64]) -> tuple[CellError | None, str]:
-    kind, name = parameter.kind, parameter.name
-    assert isinstance(kind, Table)
-    if len(table) < 2:
-        return CellError.NA, f"{name} must hold at least two rows"
-    if np.isnan(table).any():
-        return CellError.NA, f"{name} must have no blank between its rows"
-    if (table < kind.low).any() or not np.isfinite(table).all():
-        return CellError.NUM, f"{name} must hold finite numbers from {kind.low:g} up"
-    if kind.increasing and not (np.diff(table, axis=0) > 0).all():
-        return CellError.NUM, f"{name} must increase from row to row"
-    return None, ""

@@ -118,3 +118,16 @@ def test_module_runs_as_a_program(tmp_path: Path) -> None:
     )
     assert done.returncode == 0
     assert "0.96 - 0.28 sqrt(pv/pc)" in done.stdout
+
+
+def test_output_that_cannot_be_printed_is_no_bug() -> None:
+    """A full disk behind a redirected output: said so, and nothing untrue about files."""
+    full = Path("/dev/full")
+    if not full.exists():
+        pytest.skip("no device here that is always full")
+    with full.open("w") as stream:
+        words = [sys.executable, "-m", "lowpoint", "functions"]
+        done = subprocess.run(words, stdout=stream, stderr=subprocess.PIPE, text=True, check=False)
+    assert done.returncode == 1
+    assert "could not be printed (No space left on device)" in done.stderr
+    assert "our bug" not in done.stderr

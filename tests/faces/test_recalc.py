@@ -77,6 +77,18 @@ def test_in_place_is_refused_while_a_lock_file_stands(tmp_path: Path, capsys: St
     assert source.read_bytes() == before
 
 
+@pytest.mark.parametrize("more", [[], ["-o", "other.xlsx"]])
+def test_a_copy_that_somebody_has_open_is_not_replaced(tmp_path: Path, more: list[str], capsys: Streams) -> None:
+    source = book(tmp_path / "valves.xlsx")
+    target = tmp_path / (more[1] if more else "valves-recalc.xlsx")
+    target.write_bytes(b"open elsewhere")
+    (tmp_path / f"~${target.name}").write_bytes(b"\x04Anna" + b" " * 49)
+    words = ["recalc", str(source), *(["-o", str(target)] if more else [])]
+    assert cli.main(words) == 2
+    assert f"{target.name}: is open: Anna has it" in capsys.readouterr().err
+    assert target.read_bytes() == b"open elsewhere"
+
+
 @pytest.mark.parametrize("more", [["-o", "x.xlsx"], ["--values"]])
 def test_in_place_excludes(tmp_path: Path, more: list[str], capsys: Streams) -> None:
     source = book(tmp_path / "valves.xlsx")

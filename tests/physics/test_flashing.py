@@ -49,10 +49,16 @@ def test_no_answer(name: str, args: list[Any], words: str) -> None:
 
 @pytest.mark.parametrize("name", BOTH)
 def test_salt_is_not_covered(name: str) -> None:
-    assert call(name, ["sea water", 110.0, 3.0, 1.0]) is CellError.VALUE
+    assert call(name, ["sea water", 110.0, 3.0, 1.0]) is CellError.NUM
     said = reason(name, ["sea water", 110.0, 3.0, 1.0])
     assert "salt" in said
     assert "'water'" in said
+
+
+def test_sea_water_that_does_not_flash_has_no_vapour() -> None:
+    assert call("LP_FLASH", ["sea water", 20.0, 5.0, 2.0]) == 0.0
+    assert call("LP_FLASH_DENSITY", ["sea water", 20.0, 5.0, 2.0]) == call("LP_DENSITY", ["sea water", 20.0, 2.0])
+    assert "35 g/kg" in reason("LP_FLASH", ["sea water", 20.0, 5.0, 2.0])
 
 
 def test_no_flash_is_exactly_none() -> None:

@@ -74,14 +74,17 @@ def recalculate(
 
 
 def output_path(path: PathLike, out: PathLike | None, in_place: bool) -> Path:
-    """Where the result goes. Raises BookError where that would be the input unasked, or an input that is open."""
+    """Where the result goes. Raises BookError where that would be the input unasked, or a book that is open."""
     source = Path(path)
-    if in_place:
-        owner = locked(source)
-        if owner is not None:
-            must = f"is open: {owner} has it"
-            raise BookError(str(path), must, remedy="Close it there, or name another output with -o.")
-        return source
+    target = source if in_place else _copy_path(source, out)
+    owner = locked(target)
+    if owner is not None:
+        must = f"is open: {owner} has it"
+        raise BookError(str(target), must, remedy="Close it there, or name another output with -o.")
+    return target
+
+
+def _copy_path(source: Path, out: PathLike | None) -> Path:
     target = Path(out) if out is not None else source.with_name(f"{source.stem}-recalc{source.suffix}")
     if os.path.realpath(source) == os.path.realpath(target):
         must = "the output must be another file than the input"

@@ -79,8 +79,21 @@ def main(arguments: Sequence[str] | None = None) -> int:
         # The reader (head, less) went away; that is no fault. Keep the interpreter from complaining at its exit.
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         return 0
+    except OSError as trouble:
+        # A stream has no file name: the disk behind a redirected output is full, or gone.
+        return _our_bug(trouble) if trouble.filename else _unheard(trouble)
     except Exception as bug:
         return _our_bug(bug)
+
+
+def _unheard(trouble: OSError) -> int:
+    os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+    print(
+        f"lowpoint: the output could not be printed ({trouble.strerror}); files named on the command line may have "
+        "been written all the same.",
+        file=sys.stderr,
+    )
+    return 1
 
 
 def _our_bug(bug: Exception) -> int:
@@ -88,7 +101,7 @@ def _our_bug(bug: Exception) -> int:
 
     traceback.print_exception(bug, file=sys.stderr)
     print(
-        f"lowpoint: this is our bug ({type(bug).__name__}); nothing was written over. "
+        f"lowpoint: this is our bug ({type(bug).__name__}); a file is written whole or not at all. "
         f"Please report the lines above with 'lowpoint --version' ({__version__}).",
         file=sys.stderr,
     )

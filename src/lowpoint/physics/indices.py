@@ -90,8 +90,8 @@ def choked_index(
 
 
 LOW_LIMIT = Caution(
-    "the limit is at or below 1, which only a choking limit of a liquid close to boiling can be: was another form meant "
-    "(LP_SIGMA_FORM carries it over)?", lambda limit: limit <= 1.0,
+    "the limit is at or below 1, which only a choking limit of a liquid close to boiling can be: was another form "
+    "meant (LP_SIGMA_FORM carries it over)?", lambda limit: limit <= 1.0,
 )  # fmt: skip
 
 

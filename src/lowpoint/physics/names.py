@@ -14,7 +14,7 @@ from functools import cache
 from importlib import resources
 from typing import NamedTuple
 
-__all__ = ["Name", "is_salty", "key_of", "known_names", "resolve", "resolve_pure"]
+__all__ = ["Name", "is_salty", "key_of", "known_names", "resolve"]
 
 GIVE_PV = "give pv, pc and density yourself from its data sheet"
 LONGEST = 60
@@ -90,17 +90,6 @@ def resolve(text: str) -> str:
     if entry.kind == "not covered":
         raise ValueError(f"fluid '{text}' has no equation of state at hand: {GIVE_PV}")
     return entry.name
-
-
-def resolve_pure(text: str) -> str:
-    """As :func:`resolve`, for what is defined for pure liquids only."""
-    name = resolve(text)
-    if is_salty(name):
-        raise ValueError(
-            f"fluid '{text}' leaves its salt in the liquid as it boils, which is not covered; ask for 'water' where "
-            "that will do as an estimate"
-        )
-    return name
 
 
 def _unknown(text: str) -> str:

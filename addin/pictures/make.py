@@ -10,11 +10,13 @@ from __future__ import annotations
 
 import contextlib
 import os
+import re
 import shutil
 import subprocess
 import sys
 import tempfile
 import time
+import zipfile
 from collections.abc import Iterator
 from pathlib import Path
 from typing import Any
@@ -41,11 +43,23 @@ def main() -> None:
         sys.exit(f"missing: {', '.join(missing)}")
     with tempfile.TemporaryDirectory(prefix="lowpoint-pictures-") as folder:
         work = Path(folder)
-        shutil.copy(BOOK, work)
+        copy_without_filters(BOOK, work / BOOK.name)
         install = [sys.executable, "-m", "lowpoint", "calc", "install", "--profile", str(work / "profile")]
         subprocess.run(install, check=True)
         clean = {name: value for name, value in os.environ.items() if not name.startswith("PYTHON")}
         subprocess.run(["/usr/bin/python3", __file__, "--in", folder], check=True, env=clean)
+
+
+def copy_without_filters(source: Path, target: Path) -> None:
+    """The book without the buttons of its filters: in Calc they take the room of the headings' words."""
+    with zipfile.ZipFile(source) as old, zipfile.ZipFile(target, "w", zipfile.ZIP_DEFLATED) as new:
+        for name in old.namelist():
+            data = old.read(name)
+            if name.startswith("xl/worksheets/sheet"):
+                data = re.sub(rb"<autoFilter[^>]*(/>|>.*?</autoFilter>)", b"", data)
+            elif name == "xl/workbook.xml":
+                data = re.sub(rb"<definedName [^>]*_FilterDatabase[^>]*>[^<]*</definedName>", b"", data)
+            new.writestr(name, data)
 
 
 # --- from here on in a Python that has `uno` ----------------------------------------------------------------------
@@ -78,7 +92,6 @@ def take(work: Path) -> None:
             context = connected(pipe, process)
             settle(context)
             book = Book(context, work / BOOK.name)
-            book.without_filter("List")
             the_list(book)
             the_wizard(book)
             book.end()
@@ -145,13 +158,6 @@ class Book:
         self.view.select(sheet.getCellByPosition(column(sheet, cell_under), row - 1))
         right_below.FirstVisibleColumn = column(sheet, heading)
         time.sleep(2)
-
-    def without_filter(self, title: str) -> None:
-        """Take the filter's buttons off a sheet: they take the room of the headings' words."""
-        sheet = self.book.Sheets.getByName(title)
-        self.view.setActiveSheet(sheet)
-        self.view.select(sheet.getCellByPosition(0, HEADINGS))
-        self.do("DataFilterAutoFilter")
 
     def end(self) -> None:
         self.book.setModified(False)

@@ -22,6 +22,14 @@ def _worst(key: str) -> str:
     return '=IF({order}="",NA(),' + _MATCHED.replace("{0}", key) + ")"
 
 
+# An item is called good only when all its cases have an answer; what is known to be bad is said at once.
+_STATE = (
+    '=IF({order}="","no answer",IF(AND({open}>0,OR(' + ",".join(
+        _MATCHED.replace("{0}", "regime") + f'="{word}"' for word in ("incipient", "unjudged", "clear")
+    ) + ')),"incomplete",' + _MATCHED.replace("{0}", "regime") + "))"
+)  # fmt: skip
+
+
 def _first(key: str) -> str:
     return _FIRST_ROW.replace("{0}", key)
 
@@ -37,7 +45,8 @@ _COLUMNS: tuple[tuple[str, str, str, str, float, str], ...] = (
     ("open", "Cases without an answer", "", "whole", 10, '=COUNTIFS(List_tag,{tag},List_errors,">0")'),
     ("crossed", "Cases below the limit to keep", "", "whole", 11, '=COUNTIFS(List_tag,{tag},List_kept,"no")'),
     ("verdict", "Verdict, worst case", "", "verdict", 32,
-     '=IF({order}="","no answer",IF({open}>0,"incomplete: ","")&' + _MATCHED.replace("{0}", "verdict") + ")"),
+     '=IF({order}="","no answer",IF({regime}="incomplete","incomplete: "&{open}&" of "&{cases}&" without an answer",'
+     + _MATCHED.replace("{0}", "verdict") + '&IF({open}>0,", others without an answer","")))'),
     ("worst", "Worst case", "", "text", 10, _worst("case")),
     ("margin", "Margin", "ratio", "percent", 9, _worst("margin")),
     ("sigma", "Index sigma", "ratio", "index", 9, _worst("sigma")),
@@ -45,7 +54,7 @@ _COLUMNS: tuple[tuple[str, str, str, str, float, str], ...] = (
     ("limit", "Its value", "ratio", "index", 9, _worst("limit")),
     ("drop", "Drop p1-p2", "pressure", "pressure", 9, _worst("drop")),
     ("allowed", "Largest drop that keeps it", "pressure", "pressure", 11, _worst("allowed_drop")),
-    ("regime", "State of the flow (working)", "", "text", 12, _worst("regime")),
+    ("regime", "State of the flow (working)", "", "text", 12, _STATE),
     ("order", "Order (working)", "", "working", 10,
      '=IF(COUNTIFS(List_tag,{tag},List_rank,"<1E+99")=0,"",_xlfn.MINIFS(List_rank,List_tag,{tag}))'),
 )  # fmt: skip
@@ -54,7 +63,7 @@ _NOTES = {
     "tag": "Type the tag of every item of sheet List once; copy the formulas of a row for a new one.",
     "open": "Cases with an error in a computed cell; sheet List says why, row by row.",
     "verdict": "The verdict of the case with the least margin to the limit that the item must keep, and the basis of "
-    "that verdict. incomplete: another case has no answer. no answer: no case has one.",
+    "that verdict. incomplete: what has an answer is good, but another case has none. no answer: no case has one.",
     "worst": "The case with the least margin.",
     "margin": "Index over the limit to keep, less one; at or below 0 it is crossed.",
     "order": "The least margin of the item, with a trace of its row number; empty where there is none.",

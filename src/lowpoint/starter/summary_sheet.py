@@ -69,9 +69,14 @@ def _states(sheet: Any, formats: dict[str, str]) -> int:
     column = 4
     cell = sheet.cell(4, column, "By state of the flow, worst first")
     cell.font = style.BAND
+    first, last = _TOP + 1, _TOP + len(STATES)
     rows = [
         (state, f"=COUNTIF(List_regime,D{row})", f"=COUNTIF(Items_regime,D{row})")
-        for row, state in enumerate(STATES, start=_TOP + 1)
+        for row, state in enumerate(STATES, start=first)
+    ]
+    rows += [
+        ("incomplete", 0, f"=COUNTIF(Items_regime,D{last + 1})"),
+        ("no answer", f"=COUNTA(List_tag)-SUM(E{first}:E{last})", f"=COUNTIF(Items_regime,D{last + 2})"),
     ]
     heads = [Head("State", 13), Head("Cases", 11, "whole"), Head("Items, worst case", 11, "whole")]
     last = put_table(sheet, _TOP, heads, rows, formats, column) - 1

@@ -18,6 +18,7 @@ from pathlib import Path
 HERE = Path(__file__).parent
 sys.path.insert(0, str(HERE))
 
+import bench_calc  # noqa: E402
 import bench_design  # noqa: E402
 import bench_kernels  # noqa: E402
 import bench_orifices  # noqa: E402
@@ -31,6 +32,7 @@ SUITES: dict[str, Callable[[bool], Iterator[Figure]]] = {
     "design": bench_design.figures,
     "recalc": bench_recalc.figures,
     "start": bench_start.figures,
+    "calc": bench_calc.figures,
 }
 
 

@@ -37,7 +37,7 @@ COLUMNS: tuple[Column, ...] = (
     Column("flow", "", "Flow", "LP_COEFFICIENT.flow", "flow", "flow", 9),
     Column("p1", "", "Inlet pressure p1, absolute", "LP_COEFFICIENT.p1", "pressure", "pressure", 10),
     Column("p2", "", "Outlet pressure p2, absolute", "LP_COEFFICIENT.p2", "pressure", "pressure", 10),
-    Column("t", "", "Temperature", "LP_VAPOUR_PRESSURE.t", "temperature", "one", 11),
+    Column("t", "", "Temperature", "LP_VAPOUR_PRESSURE.t", "temperature", "one", 12),
     Column("pv", "", "Vapour pressure pv", "LP_VAPOUR_PRESSURE", "pressure", "fine", 9.5, _ONCE,
            "=LP_VAPOUR_PRESSURE({fluid},{t})"),
     Column("density", "", "Density", "LP_DENSITY", "density", "density", 9, _ONCE, "=LP_DENSITY({fluid},{t},{p1})"),
@@ -48,9 +48,11 @@ COLUMNS: tuple[Column, ...] = (
     *(Column(name, "", f"{name.capitalize()}, installed", "LP_LIMIT_INSTALLED", "ratio", "index", 9.5,
              f"The limit as tested, carried to this size and to the p1-pv of each row by LP_SIGMA_SCALED. {_ONCE}",
              _limit(name)) for name in LIMITS),
-    Column("regime", "", "State of the flow", "LP_REGIME", "", "verdict", 12, _ONCE,
+    # Calc compares no word that an add-in gave in an array, not even with itself; joined to an empty text it does.
+    Column("regime", "", "State of the flow", "LP_REGIME", "", "verdict", 12,
+           f'{_ONCE} The &"" lets Calc count the words.',
            "=LP_REGIME({sigma},{incipient},{constant},{damage},,"
-           "LP_SIGMA_CHOKED({p1},{pv},{pc},{fl},{coefficient},{valve_size},{pipe_in},{pipe_out}))"),
+           'LP_SIGMA_CHOKED({p1},{pv},{pc},{fl},{coefficient},{valve_size},{pipe_in},{pipe_out}))&""'),
     Column("margin", "", "Margin to the limit of damage", "LP_MARGIN", "", "percent", 10.5, _ONCE,
            "=LP_MARGIN({sigma},{damage})"),
 )  # fmt: skip
@@ -124,7 +126,7 @@ def _valve(sheet: Any, item: Item, system: str) -> dict[str, str]:
         "size_ref": trim.size_ref, "head_ref": trim.head_ref,
         "size_exponent": trim.exponents[0], "head_exponent": trim.exponents[1],
     }  # fmt: skip
-    put_headings(sheet, HEADINGS, [Head("The valve", 29), Head("The same in every row", 20)], _BESIDE)
+    put_headings(sheet, HEADINGS, [Head("The valve", 29), Head("The same in every row", 22)], _BESIDE)
     for row, key in enumerate(VALVE, start=FIRST):
         column = BY_KEY[key]
         words = f"{column.heading}, as tested" if key.removesuffix("_ref") in LIMITS else _label(column, system, ", ")
@@ -148,7 +150,7 @@ def _hours(sheet: Any, places: Mapping[str, str], formats: Mapping[str, str]) ->
     row = FIRST + len(VALVE) + 1
     letter = get_column_letter(_BESIDE)
     rows = [(state, f"=COUNTIF({places['regime']},{letter}{at})") for at, state in enumerate(STATES, start=row + 1)]
-    rows.append(("least margin", f"=MIN({places['margin']})"))
+    rows.append(("least margin to damage", f"=MIN({places['margin']})"))
     last = put_table(sheet, row, [Head("State of the flow"), Head("Hours in it", fmt="whole")], rows, formats, _BESIDE)
     sheet.cell(last - 1, _BESIDE + 1).number_format = formats["percent"]
     style.mark_verdicts(sheet, f"{letter}{row + 1}:{letter}{last - 2}", f"{letter}{row + 1}")

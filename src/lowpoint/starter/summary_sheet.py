@@ -70,7 +70,7 @@ def _states(sheet: Any, formats: dict[str, str]) -> int:
     cell = sheet.cell(4, column, "By state of the flow, worst first")
     cell.font = style.BAND
     first, last = _TOP + 1, _TOP + len(STATES)
-    rows = [
+    rows: list[tuple[str, Any, str]] = [
         (state, f"=COUNTIF(List_regime,D{row})", f"=COUNTIF(Items_regime,D{row})")
         for row, state in enumerate(STATES, start=first)
     ]

@@ -199,6 +199,38 @@ def test_the_sample_list_shows_what_recalc_computes(office: Any, tmp_path: Path)
     assert sum(1 for _ in lowpoint_cells(formulas["Long list"])) > 1500
 
 
+def test_hours_of_the_long_list_are_counted_in_calc(office: Any, tmp_path: Path) -> None:
+    """Ordinary formulas over the words of an array formula: the counts that recalc stored, and of new readings too."""
+    number, _ = office.open(str(shutil.copy(SAMPLE, tmp_path)))
+    office.recalculate(number)
+    stored = openpyxl.load_workbook(SAMPLE, data_only=True)["Long list"]
+    (heading,) = (cell for row in stored.iter_rows() for cell in row if cell.value == "Hours in it")
+    place = f"Long list!{stored.cell(heading.row + 1, heading.column - 1).coordinate}:"
+    place += stored.cell(heading.row + 6, heading.column).coordinate
+    counted = dict(office.cells(number, place))
+    assert counted == {
+        stored.cell(row, heading.column - 1).value: stored.cell(row, heading.column).value
+        for row in range(heading.row + 1, heading.row + 7)
+    }
+    assert sum(counted.values()) == 200
+    # An outlet far below the vapour pressure in the first two hours: counted as flashing by definition.
+    office.put_values(number, "Long list!D6:D7", [[0.1], [0.1]])
+    assert dict(office.cells(number, place))["flashing"] == counted["flashing"] + 2
+    office.close(number)
+
+
+def test_a_word_from_an_array_needs_an_empty_text_to_compare(office: Any) -> None:
+    """The way round that the guide tells, where Calc does not take the bare words for equal to a text."""
+    book = office.new()
+    office.put_values(book, "A1:A2", [[3.0], [1.5]])
+    office.array(book, "B1:B2", "=LP_REGIME(A1:A2;2)")
+    office.array(book, "C1:C2", '=LP_REGIME(A1:A2;2)&""')
+    office.put(book, "D1:D2", [['=COUNTIF(C1:C2;"clear")'], ['=C1="clear"']])
+    assert office.cells(book, "B1:C2") == [["clear", "clear"], ["cavitating", "cavitating"]]
+    assert office.cells(book, "D1:D2") == [[1.0], [1.0]]
+    office.close(book)
+
+
 def formulas_of(sheet: Any) -> str:
     return "".join(formula for _, formula in lowpoint_cells(sheet))
 

@@ -116,7 +116,7 @@ def stored(path: Path) -> dict[str, Any]:
 
 def _plain(cell: Any) -> Any:
     if cell.data_type == "e":
-        return CellError(cell.value)
+        return {e.value: e for e in CellError}.get(cell.value, cell.value)
     return float(cell.value) if type(cell.value) is int else cell.value
 
 

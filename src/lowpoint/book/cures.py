@@ -17,6 +17,8 @@ from dataclasses import dataclass, replace
 from functools import lru_cache
 from itertools import pairwise
 
+from lowpoint.registry import functions
+
 from .engine import knows, unreadable
 from .expression import (
     Atom,
@@ -34,6 +36,7 @@ from .expression import (
 from .formulas import LONGEST, lp_name
 from .helpers import HELPERS, PREFIX
 from .kinds import kind_of, makes_array, scalar_places
+from .padding import ELEMENTWISE, FIRST_STAND_IN, answered, common, padded, sizes_matter
 from .rules_text import ruled
 
 __all__ = ["Prepared", "Writer", "prepare"]
@@ -77,7 +80,8 @@ class Writer:
         if {left.kind, right.kind} & {"zero", "text", "logical"} or left.kind == right.kind == "literal":
             return self._plain(items)
         self.note("difference-snap")
-        return _snapped(left, operator.text, right)
+        text = self._made_fit([left, right], lambda two: _snapped(two[0], operator.text, two[1]))
+        return Piece(text, left.array or right.array, "number", *common([left, right]))
 
     def expression(self, items: Expression) -> Piece:
         """Comparisons bind weakest and from the left, then ``&``."""
@@ -90,17 +94,27 @@ class Writer:
     def _compared(self, left: Piece, operator: str, right: Piece) -> Piece:
         array = left.array or right.array
         if {left.kind, right.kind} & {"text", "logical", "zero"} or (left.kind in _PLAIN and right.kind in _PLAIN):
-            return Piece(f"{left.text}{operator}{right.text}", array, "logical")
-        self.note("equality-15-digits")
-        return Piece(_equal(left, operator, right), array, "logical")
+            text = self._made_fit([left, right], lambda two: f"{two[0].text}{operator}{two[1].text}")
+        else:
+            self.note("equality-15-digits")
+            text = self._made_fit([left, right], lambda two: _equal(two[0], operator, two[1]))
+        return Piece(text, array, "logical", *common([left, right]))
+
+    def _made_fit(self, pieces: Sequence[Piece], write: Callable[[Sequence[Piece]], str]) -> str:
+        """What ``write`` makes of the pieces of one operation, arrays of unequal size filled up first."""
+        fit = padded(pieces, write)
+        if fit is None:
+            return write(pieces)
+        self.note("arrays-of-unequal-size")
+        return fit
 
     def _joined(self, items: Expression) -> Piece:
         parts, _ = _split(items, frozenset({"&"}))
         if len(parts) == 1:
             return self._plain(items)
         pieces = [self._plain(part) for part in parts]
-        texts = [self.as_text(piece).text for piece in pieces]
-        return Piece("&".join(texts), any(piece.array for piece in pieces), "text")
+        text = self._made_fit(pieces, lambda fit: "&".join(self.as_text(piece).text for piece in fit))
+        return Piece(text, any(piece.array for piece in pieces), "text", *common(pieces))
 
     def as_text(self, piece: Piece) -> Piece:
         """A piece that text is made of: numbers in at most 15 digits."""
@@ -129,7 +143,9 @@ class Writer:
         if not operators:
             return replace(pieces[0], text=text) if pieces else Piece("")
         signs = all(operator.place == "prefix" for operator in operators) and len(pieces) == len(operators) + 1
-        return Piece(text, array, pieces[-1].kind if signs and pieces[-1].kind in _PLAIN else "number")
+        text = self._made_fit(pieces, lambda fit: "".join(piece.text for piece in fit))
+        kind = pieces[-1].kind if signs and pieces[-1].kind in _PLAIN else "number"
+        return Piece(text, array, kind, *common(pieces))
 
     def _refuse_sets(self, items: Expression) -> None:
         for before, item in pairwise(items):
@@ -147,7 +163,7 @@ class Writer:
             return Piece(item.text)
         if isinstance(item, Group):
             inside = self.expression(item.inside)
-            return replace(inside, text=f"({inside.text})")
+            return replace(inside, text=f"({inside.text})", size=common([inside])[0])
         if isinstance(item, Call):
             return self.call(item)
         return self._atom(item)
@@ -184,8 +200,9 @@ class Writer:
         if name == "LAMBDA":
             raise BlockedError("lambda", "uses LAMBDA, which the recalculator's engine does not have")
         pieces = [self.expression(argument) if argument else None for argument in call.arguments]
-        if _OURS.search(call.name) and lp_name(call.name) is not None:
-            return Piece(_written(call.name, pieces), any(p is not None and p.array for p in pieces))
+        ours = lp_name(call.name) if _OURS.search(call.name) else None
+        if ours is not None:
+            return answered(pieces, _written(call.name, pieces), functions[ours].column)
         if name not in HELPERS and not knows(name):
             raise BlockedError("unknown-function", f"uses {name}, which the recalculator's engine does not have")
         done = ruled(self, name, pieces)
@@ -201,7 +218,10 @@ class Writer:
         """A call as it stands, or over ranges where the function takes single values."""
         places, possible = scalar_places(name, len(pieces))
         if not any(piece is not None and piece.array for place in places if (piece := pieces[place])):
-            return Piece(_written(stored, pieces), makes_array(name, pieces), kind_of(name))
+            if name not in ELEMENTWISE or pieces[0] is None or not pieces[0].array or None in pieces:
+                return Piece(_written(stored, pieces), makes_array(name, pieces), kind_of(name))
+            given = [piece for piece in pieces if piece is not None]
+            return Piece(self._made_fit(given, lambda fit: _written(stored, fit)), True, "any", *common(given))
         if not possible or any(piece is None for piece in pieces):
             raise BlockedError("range-for-single-value", f"gives {name} a range where it takes a single value")
         return self.over_cells(name, pieces, kind_of(name))
@@ -209,7 +229,8 @@ class Writer:
     def over_cells(self, name: str, pieces: Sequence[Piece | None], kind: str) -> Piece:
         """A call for every combination of the single values in its ranges."""
         self.note("single-value-over-range")
-        return Piece(f'{PREFIX}LIFT("{name}",{_arguments(pieces)})', True, kind)
+        size = common(pieces[place] for place in scalar_places(name, len(pieces))[0])
+        return Piece(f'{PREFIX}LIFT("{name}",{_arguments(pieces)})', True, kind, *size)
 
     def bound(self, piece: Piece, write: Callable[[str], str]) -> str:
         """``write`` over the piece, computed once."""
@@ -217,7 +238,9 @@ class Writer:
 
     def helper(self, name: str, pieces: Iterable[Piece | None], array: bool = False, kind: str = "any") -> Piece:
         """A call of our own helper instead."""
-        return Piece(f"{PREFIX}{name}({_arguments(pieces)})", array, kind)
+        given = list(pieces)
+        loose = array and any(piece is not None and piece.loose for piece in given)
+        return Piece(f"{PREFIX}{name}({_arguments(given)})", array, kind, None, loose)
 
     def _let(self, call: Call) -> Piece:
         outer = dict(self.names)
@@ -287,19 +310,18 @@ def _equal(left: Piece, operator: str, right: Piece) -> str:
     return _both(left, right, write)
 
 
-def _snapped(left: Piece, operator: str, right: Piece) -> Piece:
+def _snapped(left: Piece, operator: str, right: Piece) -> str:
     array = left.array or right.array
 
     def write(x: str, y: str) -> str:
         plain, other = f"{x}{operator}{y}", y if operator == "-" else f"(-{y})"
         return f"IF({_numbers(x, y, array)},IF({_agree(x, other, array)},0,{plain}),{plain})"
 
-    return Piece(_both(left, right, write), array, "number")
+    return _both(left, right, write)
 
 
 _CELL_ROW = re.compile(r"(?<![\w.$])(\$?[A-Za-z]{1,3}\$?)(\d{1,7})(?![\w.(!])")
 _STAND_IN = re.compile(r"104\d{4}")
-_FIRST_STAND_IN = 1_040_000  # rows that no workbook fills stand for the rows of a formula, in order of appearance
 
 
 def prepare(formula: str, hiding: int = 0) -> Prepared:
@@ -310,12 +332,12 @@ def prepare(formula: str, hiding: int = 0) -> Prepared:
     >>> prepare("=B2&$C$3").met
     ('number-text-15-digits',)
     """
-    if _STAND_IN.search(formula):
+    if _STAND_IN.search(formula) or sizes_matter(formula):
         return _prepared(formula, hiding)
     stand_ins: dict[str, str] = {}
 
     def stand_in(cell: re.Match[str]) -> str:
-        return cell[1] + stand_ins.setdefault(cell[2], str(_FIRST_STAND_IN + len(stand_ins)))
+        return cell[1] + stand_ins.setdefault(cell[2], str(FIRST_STAND_IN + len(stand_ins)))
 
     done = _prepared(_CELL_ROW.sub(stand_in, formula), hiding)
     if done.blocked is not None:

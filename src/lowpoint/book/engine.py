@@ -316,7 +316,7 @@ class Engine:
         text = str(trouble)
         if "deadline" in text or "CANCELLED" in text:
             return BookError(
-                "the workbook", f"must be evaluated within {self._seconds:g} s", "more", "Raise the limit or split it."
+                "the workbook", f"must be evaluated within {self._seconds:g} s", "more", "Split the workbook."
             )
         return BookError("the workbook", "must be evaluated by the engine", _short(trouble), "Please report it.")
 

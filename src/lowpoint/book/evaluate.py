@@ -3,16 +3,18 @@
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Hashable, Mapping, Sequence
+from collections.abc import Callable, Hashable, Mapping, Sequence
 from itertools import groupby
 from typing import TYPE_CHECKING, Any
 
 from lowpoint import cells
 from lowpoint.cells import OMITTED, CellError, Same
+from lowpoint.registry import functions
 
 from .curing import instance
 from .plan import Entry, Plan
 from .sites import FIT, Arg, Cells, Computed, Literal, Result, Site, formula_of, text_of
+from .stale import Place
 
 if TYPE_CHECKING:
     from .engine import Engine
@@ -28,12 +30,23 @@ Call = tuple[Entry, Site]
 class Run:
     """One evaluation of a plan on a loaded engine. Afterwards: values of every entry, and the calls that failed."""
 
-    def __init__(self, engine: Engine, plan: Plan, titles: Mapping[str, str]) -> None:
+    def __init__(
+        self,
+        engine: Engine,
+        plan: Plan,
+        titles: Mapping[str, str],
+        bottom: Callable[[], int],
+        constants: Mapping[Place, CellError],
+    ) -> None:
         self.engine, self.plan, self.titles = engine, plan, titles
+        self.bottom = bottom  # the last row with a stored cell
+        self.constants = constants  # errors in cells that the engine's load could not take
         self.results: dict[int, list[Any]] = {}  # by site, in the order of the group's rows
         self.failed: dict[tuple[int, int], tuple[list[Any], CellError]] = {}  # (site, row): arguments and error
+        self.shortened: set[tuple[int, int]] = set()  # (site, row): of several answers the cell shows the first
         self.settled = True
         self.plan_sites = plan.sites
+        self._last: int | None = None
         self._columns: dict[tuple[str, int, int, int], list[Any]] = {}
         self._own: dict[tuple[str, int], list[Entry]] = defaultdict(list)
         for entry in plan.entries:
@@ -46,6 +59,10 @@ class Run:
     def go(self) -> None:
         """Evaluate everything."""
         self.engine.evaluate()
+        for (sheet, row, column), error in self.constants.items():
+            self.engine.set_values(sheet, row, column, [[error]])
+        if self.constants:
+            self.engine.evaluate()
         for _ in range(MOST_PASSES):
             before = dict(self.results)
             for level in self.plan.levels:
@@ -89,6 +106,7 @@ class Run:
 
     def _level(self, level: Sequence[Call]) -> None:
         self._columns.clear()
+        self._last = None
         for batch in _batches(level):
             self._batch(batch)
         self._columns.clear()
@@ -141,8 +159,22 @@ class Run:
 
     def _range(self, arg: Cells, row: int) -> list[list[Any]]:
         place = arg.ref.at(row)
+        if arg.cut:
+            place = place._replace(r2=self._last_row())
         columns = [self._read(arg.ref.sheet or "", c, place.r1, place.r2) for c in range(place.c1, place.c2 + 1)]
         return [list(line) for line in zip(*columns, strict=True)]
+
+    def _last_row(self) -> int:
+        """The last row with a cell, on any sheet, stored or filled by an array."""
+        if self._last is None:
+            filled = (
+                row + self.engine.spill(entry.group.sheet, row, entry.group.column)[0] - 1
+                for entry in self.plan.entries
+                if entry.group.kind == "dynamic" and entry.own is None and not entry.work.single
+                for row in entry.group.rows
+            )
+            self._last = max(self.bottom(), *filled, 1)
+        return self._last
 
     def _picked(self, sheet: str, column: int, rows: Sequence[int]) -> list[Any]:
         first, last = min(rows), max(rows)
@@ -192,9 +224,13 @@ class Run:
     def _called(self, number: float, row: float, *given: Any) -> Any:
         _, site = self.plan_sites[int(number)]
         args = [_vouched(a) if present else OMITTED for a, present in zip(given, site.given, strict=True)]
+        _even_out(args, site.columns)
         result = cells.call(site.name, args)
         key = (int(number), int(row))
-        error = _first_error(result)
+        self.shortened.discard(key)
+        error = _first_error(result[0][0] if site.first and _several(result) else result)
+        if site.first and _several(result) and not functions[site.name].column:
+            self.shortened.add(key)
         if error is not None:
             self.failed[key] = args, error
         else:
@@ -247,6 +283,18 @@ def _vouched(value: Any) -> Any:
     if not hasattr(value, "reason"):
         return value
     return CellError.SPILL if value.kind == "spill" else CellError.NAME
+
+
+def _even_out(args: list[Any], columns: Sequence[int]) -> None:
+    """Tables that are whole columns made equally long: the engine cuts each off behind its own last cell."""
+    tables = [args[place] or [[None]] if isinstance(args[place], list) else [[args[place]]] for place in columns]
+    most = max(map(len, tables), default=0)
+    for place, table in zip(columns, tables, strict=True):
+        args[place] = table + [[None] * len(table[0])] * (most - len(table))
+
+
+def _several(result: Any) -> bool:
+    return isinstance(result, list) and sum(map(len, result)) > 1
 
 
 def _first_error(result: Any) -> CellError | None:

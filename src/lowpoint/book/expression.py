@@ -72,12 +72,15 @@ Expression = tuple[Item, ...]
 class Piece:
     """Part of a formula written anew: whether it is an array, and what kind of value it is sure to give.
 
-    Kinds: text, logical, zero, literal, whole (a whole number), rounded, number, reference, any.
+    Kinds: text, logical, zero, literal, whole (a whole number), rounded, number, reference, any. ``size`` are an
+    array's rows and columns where they are known; ``loose`` marks the answer of an LP_ call where they are not.
     """
 
     text: str
     array: bool = False
     kind: str = "any"
+    size: tuple[int, int] | None = None
+    loose: bool = False
 
 
 class BlockedError(Exception):

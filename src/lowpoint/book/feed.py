@@ -12,12 +12,16 @@ from collections import defaultdict
 from collections.abc import Iterable, Mapping, Sequence
 from html import escape
 
+from lowpoint.cells import CellError
+
 from .curing import instance
+from .foreign import LOADABLE, Foreign
 from .package import Package
 from .plan import Entry, Plan
 from .refs import column_letters
 from .sheet import Group, SheetPart
 from .sites import formula_of, text_of
+from .stored import with_value
 
 __all__ = ["engine_bytes"]
 
@@ -28,10 +32,15 @@ _STRINGS = "xl/sharedStrings.xml"
 _OPENING = re.compile(rb"<(?:[\w.-]+:)?worksheet\b[^>]*>")
 
 
-def engine_bytes(package: Package, sheets: Sequence[SheetPart], plan: Plan) -> bytes:
-    """A package for the engine's load: the sheets' cells, the shared strings, the scratch sheets."""
+def engine_bytes(
+    package: Package, sheets: Sequence[SheetPart], plan: Plan, foreign: Mapping[str, Sequence[Foreign]]
+) -> bytes:
+    """A package for the engine's load: the sheets' cells, the shared strings, the scratch sheets.
+
+    ``foreign`` cells, by sheet, are given in a form that it can load; errors among them as #VALUE!.
+    """
     entries = {entry.group: entry for entry in plan.entries}
-    contents = {sheet.title: _sheet_xml(sheet, entries, plan.uncertain) for sheet in sheets}
+    contents = {sheet.title: _sheet_xml(sheet, entries, plan.uncertain, foreign[sheet.title]) for sheet in sheets}
     for title, computed in plan.scratch.items():
         columns = [(entry.group.rows, slot.slot.column, text_of(slot.pieces)) for entry, slot in computed]
         contents[title] = _scratch_xml(columns)
@@ -39,7 +48,7 @@ def engine_bytes(package: Package, sheets: Sequence[SheetPart], plan: Plan) -> b
     return _packed(contents, package.read(strings) if strings in package else b"", package.date1904)
 
 
-def _sheet_xml(sheet: SheetPart, entries: Mapping[Group, Entry], spilling: bool) -> bytes:
+def _sheet_xml(sheet: SheetPart, entries: Mapping[Group, Entry], spilling: bool, foreign: Sequence[Foreign]) -> bytes:
     """The sheet's root and cells; formulas that the engine reads as they are keep their bytes.
 
     Where results may spill, a call that was taken out leaves a number in its cell: it is in the way of others.
@@ -58,6 +67,9 @@ def _sheet_xml(sheet: SheetPart, entries: Mapping[Group, Entry], spilling: bool)
         else:
             edits.append((start, end, _cell(sheet.prefix, row, sheet.columns[i], instance(text, row))))
     edits += _cleared(sheet, entries)
+    if foreign:
+        done = {start for start, _, _ in edits}
+        edits += [(cell.start, cell.end, _loadable(sheet, cell)) for cell in foreign if cell.start not in done]
     edits.sort()
     return _edited(sheet, edits)
 
@@ -86,6 +98,12 @@ def _poisoned(sheet: SheetPart, row: int, column: int) -> bytes:
     """A cell that keeps its old value: an error here, so that whatever reads it, by any way, cannot pass for fresh."""
     p = sheet.prefix.decode()
     return f'<{p}c r="{column_letters(column)}{row}" t="e"><{p}v>#NAME?</{p}v></{p}c>'.encode()
+
+
+def _loadable(sheet: SheetPart, cell: Foreign) -> bytes:
+    """A formula's old value is not asked for: any will do, for it is worked out anew."""
+    value = cell.value if isinstance(cell.value, float) or cell.value in LOADABLE else CellError.VALUE
+    return with_value(sheet.scanned[cell.start : cell.end], sheet.prefix, value)
 
 
 def _cleared(sheet: SheetPart, entries: Mapping[Group, Entry]) -> list[tuple[int, int, bytes]]:

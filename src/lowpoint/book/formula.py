@@ -199,6 +199,7 @@ def read(tokens: Sequence[Token], place: Place, names: Names, tables: Tables) ->
     """Read a formula at one of its places. Raises Unreadable with the reason why it cannot be evaluated."""
     plain = tables.expand(tokens, place)
     plain = tables.expand(names.expand(plain, place), place)
+    plain = list(_joined(plain, place.sheet.casefold()))
     while plain and plain[-1].kind == "blank":
         plain.pop()
     while plain and plain[0].kind == "blank":
@@ -208,6 +209,27 @@ def read(tokens: Sequence[Token], place: Place, names: Names, tables: Tables) ->
         if call.name and number not in formula.lp:
             _refuse(call.name)
     return formula
+
+
+def _joined(tokens: Sequence[Token], own: str) -> Iterator[Token]:
+    """The tokens with ``List!G2:List!G5``, two cells of one sheet and what lies between them, as one reference."""
+    i = 0
+    while i < len(tokens):
+        one = tokens[i].ref
+        two = tokens[i + 2].ref if len(tokens) > i + 2 and tokens[i + 1].text == ":" else None
+        if one is None or two is None:
+            yield tokens[i]
+            i += 1
+            continue
+        if (one.sheet or own).casefold() != (two.sheet or own).casefold():
+            raise Unreadable("it builds a range from cells of two sheets")
+        if one.single and two.single:
+            yield Token("ref", "", one._replace(c2=two.c1, r2=two.r1))
+        elif one.sheet is None and two.sheet is None:
+            yield from tokens[i : i + 3]
+        else:
+            raise Unreadable("it builds a range from ranges of another sheet")
+        i += 3
 
 
 def _refuse(name: str) -> None:

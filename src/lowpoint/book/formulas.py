@@ -39,7 +39,7 @@ DEEPEST = 100
 OWN_ROW = "\x01"  # stands for the formula's own row number in the text that equal formulas of a column share
 
 _WORD = r"[^\W\d]|[_\\]"
-_SHEET = r"(?:'(?:[^']|'')*+'|(?:\[[^\[\]]*+\])?+[\w.\\?]*+(?::[\w.\\?]++)?+)!"
+_SHEET = r"(?:'(?:[^']|'')*+'|(?!:)(?:\[[^\[\]]*+\])?+[\w.\\?]*+(?::[\w.\\?]++)?+)!"
 _ROW = rf"(?:\d{{1,7}}|{OWN_ROW})"
 _CELL = rf"\$?[A-Za-z]{{1,3}}\$?{_ROW}"
 _BODY = rf"{_CELL}:{_CELL}|{_CELL}|\$?[A-Za-z]{{1,3}}:\$?[A-Za-z]{{1,3}}|\$?{_ROW}:\$?{_ROW}"
@@ -64,6 +64,7 @@ _SCANNER = re.compile(
     """,
     re.VERBOSE | re.DOTALL,
 )
+_AFTER = re.compile(r"[ \t\r\n]+\(")
 _CELL_PARTS = re.compile(rf"(\$?)([A-Za-z]{{1,3}})(\$?)({_ROW})")
 _PREFIX = re.compile(r"(?:_xlfn|_xlws|_xll|_xludf)\.", re.IGNORECASE)
 _SERVICE = "ORG.LOWPOINT.FUNCTIONS."
@@ -113,8 +114,12 @@ def tokenise(text: str, row: int | None = None) -> list[Token]:
             raise Unreadable(f"the formula cannot be read at {text[place : place + 12]!r}")
         kind = found.lastgroup or ""
         kind = "call" if found["call"] else "ref" if found["ref"] else kind
-        tokens.append(_reference(found, row) if kind == "ref" else Token(kind, found[0]))
-        place = found.end()
+        bracket = _AFTER.match(text, found.end()) if kind in ("name", "away") and lp_name(found[0]) else None
+        if bracket:  # a blank before the bracket, which spreadsheet programs take away when the formula is typed
+            tokens.append(Token("call", f"{found[0]}("))
+        else:
+            tokens.append(_reference(found, row) if kind == "ref" else Token(kind, found[0]))
+        place = bracket.end() if bracket else found.end()
     return tokens
 
 

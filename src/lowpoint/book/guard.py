@@ -66,7 +66,8 @@ def load(path: str | os.PathLike[str], limits: Limits = DEFAULT_LIMITS) -> bytes
         if not stat.S_ISREG(state.st_mode):
             raise BookError(name, MUST, "something that is not a regular file", "Name a file.")
         with open(path, "rb") as source:
-            data = source.read(limits.file_bytes + 1)
+            # One byte more than there should be tells a file that grew; asking for the limit would set it all aside.
+            data = source.read(min(state.st_size, limits.file_bytes) + 1)
     except FileNotFoundError:
         raise BookError(name, "must be an existing file", "nothing there", "Check the name and the folder.") from None
     except PermissionError:
@@ -259,7 +260,8 @@ def _distrust(name: str, what: str) -> NoReturn:
 
 
 def _too_much(name: str, must: str, got: str) -> NoReturn:
-    raise BookError(name, f"must {must}", got, "Split the workbook, or raise the limits if you trust its maker.")
+    remedy = "Split the workbook, or take out what it does not need, such as pictures and unused sheets."
+    raise BookError(name, f"must {must}", got, remedy)
 
 
 def _size(count: int) -> str:

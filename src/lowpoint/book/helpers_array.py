@@ -86,6 +86,17 @@ def _count(value: Any) -> int:
 
 
 @helper
+def _pad(array: Any, *others: Any) -> Any:
+    """An array filled up with #N/A to the size of the largest; one row or one column is left for repeating."""
+    grid = grid_of(array)
+    grids = [grid, *map(grid_of, others)]
+    rows = max(map(len, grids)) if len(grid) > 1 else 1
+    columns = max(len(each[0]) for each in grids) if len(grid[0]) > 1 else 1
+    filled = [[*line, *[CellError.NA] * (columns - len(line))] for line in grid]
+    return filled + [[CellError.NA] * columns for _ in range(rows - len(grid))]
+
+
+@helper
 def _expand(array: Any, rows: Any, columns: Any, pad: Any = CellError.NA) -> Any:
     grid = grid_of(array)
     wrong = _wrong_count(rows, columns)

@@ -84,6 +84,12 @@ def _clock(value: Any) -> Any:
 
 
 @each
+def _hyperlink(target: Any, shown: Any) -> Any:
+    """What the cell shows, in the kind it has: a link's number is a number. An error in the target goes through."""
+    return 0.0 if shown is None else shown
+
+
+@each
 def _logical(value: Any) -> Any:
     """The words TRUE and FALSE as logicals; other text is #VALUE!."""
     if not isinstance(value, str):

@@ -63,7 +63,9 @@ class _Lowering:
         args = self._args(number) if self.batch and not gives_array(name) else None
         inner = [site for n, site in self.done.items() if self.f.calls[n].stop <= call.stop]
         slot = self.supply.slot() if args is not None else None
-        return Site(name, self.supply.number(), args, given, slot=slot, inner=inner)
+        first = self.kind == "plain" and self._shows_first(number)
+        columns = self._whole_columns(number)
+        return Site(name, self.supply.number(), args, given, slot=slot, inner=inner, first=first, columns=columns)
 
     def _args(self, number: int) -> list[Arg] | None:
         args: list[Arg] = []
@@ -86,7 +88,8 @@ class _Lowering:
         if len(tokens) == 1 and tokens[0].ref is not None:
             ref = tokens[0].ref
             if ref.single or self._is_table(number, place):
-                return Cells(ref._replace(sheet=ref.sheet or self.sheet), whole=not ref.single)
+                cut = ref.whole and place in self._whole_columns(number)
+                return Cells(ref._replace(sheet=ref.sheet or self.sheet), whole=not ref.single, cut=cut)
             return None
         inner = self.f.whole_call(span)
         if inner in self.done:
@@ -95,6 +98,27 @@ class _Lowering:
         if not self.f.scalar(span, results) or not self._anywhere(span):
             return None
         return Computed(self.supply.slot(), self._with_blanks(span))
+
+    def _shows_first(self, number: int) -> bool:
+        """Whether nothing around a call takes an array whole, so that the cell shows the first value of one."""
+        call = self.f.calls[number]
+        while call.parent is not None:
+            name = self.f.name(call.parent)
+            if call.parent in self.f.lp:
+                whole = self._is_table(call.parent, call.place)
+            else:
+                whole = name != "SINGLE" and classes.place_class(name, call.place) not in "VT"
+            if whole:
+                return False
+            call = self.f.calls[call.parent]
+        return True
+
+    def _whole_columns(self, number: int) -> tuple[int, ...]:
+        """The places of a call's tables, where all of them are whole columns: none is longer than another then."""
+        args = [(place, *self.f.solid(span)) for place, span in enumerate(self.f.calls[number].args)]
+        tables = [(place, self.f.tokens[i:j]) for place, i, j in args if i < j and self._is_table(number, place)]
+        whole = all(len(found) == 1 and found[0].ref is not None and found[0].ref.whole for _, found in tables)
+        return tuple(place for place, _ in tables) if whole else ()
 
     def _is_table(self, number: int, place: int) -> bool:
         from lowpoint.registry import functions

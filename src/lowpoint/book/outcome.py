@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Mapping, Sequence
+from collections.abc import Container, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from typing import TYPE_CHECKING, Any
 
@@ -22,6 +22,10 @@ if TYPE_CHECKING:
 
 __all__ = ["Outcome", "outcome_of"]
 
+_NO_ROOM = (
+    "the answer fills several cells, and one of them is not empty. Clear the cells below and beside this one, or move "
+    "the formula."
+)
 _NOT_STILL = "its array results push each other about without end"
 
 
@@ -34,6 +38,7 @@ class Outcome:
     spills: dict[str, list[Spill]] = field(default_factory=dict)
     fed: set[Group] = field(default_factory=set)
     failed: list[Failure] = field(default_factory=list)
+    shortened: list[Place] = field(default_factory=list)  # of a range's answers such a cell shows the first only
 
     @property
     def kept(self) -> list[Kept]:
@@ -45,7 +50,7 @@ def outcome_of(engine: Engine, run: Run, plan: Plan, groups: Sequence[Group], ti
     """Collect the results of a finished run; afterwards the engine holds other values."""
     result = Outcome()
     doubts = Doubts()
-    full = any(_no_room(engine, entry) for entry in plan.entries)
+    full = CellError.SPILL in run.constants.values() or any(_no_room(engine, entry) for entry in plan.entries)
     spills: list[tuple[Entry, Spill]] = []
     for entry in plan.entries:
         values = run.values(entry)
@@ -65,7 +70,21 @@ def outcome_of(engine: Engine, run: Run, plan: Plan, groups: Sequence[Group], ti
         if (entry.group.sheet, spill.row, spill.column) not in result.stale:
             result.spills.setdefault(entry.group.sheet, []).append(replace(spill, fed=entry.fed))
     result.failed = _reported(run, failures, result.stale)
+    result.failed += _with_no_room(plan, result.values, {place for place, _ in failures} | result.stale.keys())
+    cut = ((run.plan_sites[site][0].group, row) for site, row in run.shortened)
+    result.shortened = sorted({(group.sheet, row, group.column) for group, row in cut} - result.stale.keys())
     return result
+
+
+def _with_no_room(plan: Plan, values: Mapping[Group, Sequence[Any]], known: Container[Place]) -> Iterator[Failure]:
+    """The calls whose array answer has something in its way: the cell shows #SPILL!, which no call gave."""
+    for entry in plan.entries:
+        group, names = entry.group, list(entry.formula.lp.values())
+        if group.kind == "dynamic" and names and entry.own is None:
+            for row, value in zip(group.rows, values[group], strict=True):
+                if value is CellError.SPILL and (group.sheet, row, group.column) not in known:
+                    why = f"{names[0]}: {_NO_ROOM}"
+                    yield Failure(group.sheet, address(row, group.column), names[0], CellError.SPILL.value, why)
 
 
 def _mark_fed(plan: Plan, spills: Iterable[tuple[Entry, Spill]]) -> None:

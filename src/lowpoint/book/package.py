@@ -180,6 +180,11 @@ class Package:
         """Whether circular references are meant, solved by iteration."""
         return _is_true(self._property("calcPr", "iterate"))
 
+    @property
+    def rounds_as_shown(self) -> bool:
+        """Whether calculation is to use numbers as their formats show them, rounded (precision as displayed)."""
+        return self._property("calcPr", "fullPrecision") in ("0", "false")
+
     def _property(self, element: str, attribute: str) -> str:
         found = next((item for item in self._frame if local_name(item.tag) == element), None)
         return "" if found is None else found.get(attribute, "")

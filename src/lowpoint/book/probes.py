@@ -50,6 +50,7 @@ KNOWN: dict[str, tuple[str, str]] = {
     "text-of-words": ("cured", "TEXT makes numbers of logicals, and an error of words that look like dates"),
     "case-of-accents": ("cured", "letters with accents keep their case"),
     "value-of-text": ("cured", "VALUE does not know thousands commas"),
+    "link-of-number": ("cured", "HYPERLINK makes text of the number or logical that it shows"),
     "date-from-text": ("cured", "a date written as text is not a date"),
     "time-from-text": ("cured", "a time written as text is not a time"),
     "logical-from-text": ("cured", "IF and NOT do not take the words TRUE and FALSE"),
@@ -63,6 +64,7 @@ KNOWN: dict[str, tuple[str, str]] = {
     "convert-units": ("cured", "CONVERT lacks pressure, power, energy and other units"),
     "array-functions": ("cured", "MMULT, MINVERSE, MDETERM, EXPAND, WRAPROWS and WRAPCOLS are missing"),
     "stack-unequal": ("cured", "VSTACK and HSTACK of unequal sizes are refused"),
+    "arrays-of-unequal-size": ("cured", "arrays of unequal size give #VALUE! as a whole, not #N/A where one ends"),
     "unique-case": ("cured", "UNIQUE tells capitals from small letters"),
     "filter-columns": ("cured", "FILTER of columns keeps them all"),
     "sort-keys": ("cured", "SORT and SORTBY look at the first key only, and sort accents behind z"),
@@ -101,7 +103,7 @@ KNOWN: dict[str, tuple[str, str]] = {
     "number-in-text": ("stands", "text such as 1,000 in a sum or product is no number"),
     "order-of-accents": ("stands", "letters with accents are greater than z in comparisons"),
     "exact-lookup-slack": ("stands", "an exact lookup finds a number that differs below the 12th digit"),
-    "arrays-of-unequal-size": ("stands", "arrays that do not fit give #VALUE! as a whole"),
+    "array-of-open-size": ("stands", "an array of a size that shows only in the end is not filled up to another's"),
 }
 
 _MS = "Microsoft function reference (from memory), "
@@ -134,6 +136,9 @@ PROBES: tuple[Probe, ...] = tuple(
         ("text-of-words", '=TEXT(C2,"0")', "TRUE", "common practice: TEXT leaves a logical as it is", "1"),
         ("case-of-accents", '=UPPER("équilibré")', "ÉQUILIBRÉ", "LibreOffice 7.4", "éQUILIBRé"),
         ("value-of-text", '=VALUE("1,234.5")', 1234.5, _MS + 'VALUE (example "$1,000")', "#VALUE!"),
+        ("link-of-number", '=HYPERLINK("#FV-101",5)', 5.0, _OF + "HYPERLINK: Text or Number", "5"),
+        ("link-of-number", '=IF(HYPERLINK("#FV-101",A1)>9,"high","low")', "low", _OF + "HYPERLINK", "high"),
+        ("link-of-number", '=HYPERLINK("#FV-101",C2)', True, "common practice: a logical stays one", "TRUE"),
         ("date-from-text", "=YEAR(C1)", 2024.0, _OF + "YEAR: a date parameter takes text", "#VALUE!"),
         ("time-from-text", '=HOUR("13:45")', 13.0, _OF + "HOUR: a time parameter takes text", "#VALUE!"),
         ("time-from-text", '=MINUTE("2024-03-15 6:30 PM")', 30.0, _OF + "MINUTE", "#VALUE!"),
@@ -159,6 +164,10 @@ PROBES: tuple[Probe, ...] = tuple(
         ("array-functions", "=SUM(INDEX(WRAPROWS({1,2,3,4},2),2,0))", 7.0, _MS + "WRAPROWS", "name"),
         ("array-functions", "=SUM(INDEX(WRAPCOLS({1,2,3,4},2),2,0))", 6.0, _MS + "WRAPCOLS", "name"),
         ("stack-unequal", "=COUNT(VSTACK({1,2},{3}))", 3.0, _MS + "VSTACK: padded with #N/A", "#VALUE!"),
+        ("arrays-of-unequal-size", "=IFERROR(INDEX({1,2,3}+{10,20},1),0)", 11.0, _OF + "array calculation", 0.0),
+        ("arrays-of-unequal-size", "=COUNT(IF(A1:A3>1.5,{7;8},9))", 2.0, _OF + "array calculation", "#VALUE!"),
+        ("arrays-of-unequal-size", '=INDEX(A1:A3&{"x";"y"},2)', "2.7y", _OF + "array calculation", "#REF!"),
+        ("arrays-of-unequal-size", "=ISNA(INDEX({1;2;3}={1;2},3))", True, _OF + "array calculation", False),
         ("unique-case", '=ROWS(UNIQUE({"a";"A";"b"}))', 2.0, "common practice: UNIQUE is not case-sensitive", 3.0),
         ("filter-columns", "=SUM(FILTER({1,2,3},{1,0,1}))", 4.0, _MS + "FILTER: by columns", 6.0),
         ("sort-keys", "=INDEX(SORT({1,2;1,1;0,5},{1,2}),2,2)", 1.0, _MS + "SORT: sort_index of several", 2.0),
@@ -222,7 +231,7 @@ PROBES: tuple[Probe, ...] = tuple(
         ("number-in-text", '="1,000"+0', 1000.0, "LibreOffice 7.4; common practice", "#VALUE!"),
         ("order-of-accents", '="é">"f"', False, "LibreOffice 7.4", True),
         ("exact-lookup-slack", "=MATCH(0.1+0.2,{0.1,0.2,0.3},0)", "#N/A", "LibreOffice 7.4; common practice", 3.0),
-        ("arrays-of-unequal-size", "=IFERROR(INDEX({1,2,3}+{10,20},1),0)", 11.0, _OF + "array calculation", 0.0),
+        ("array-of-open-size", "=IFERROR(INDEX(UNIQUE({1;1;2})+{10;20;30},1),0)", 11.0, _OF + "array calculation", 0.0),
     )
 )
 

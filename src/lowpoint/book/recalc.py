@@ -5,7 +5,7 @@ from __future__ import annotations
 import os
 import re
 import time
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from functools import partial
 from pathlib import Path
 from typing import Any
@@ -13,6 +13,7 @@ from typing import Any
 from lowpoint.errors import BookError
 
 from .curing import cure
+from .foreign import foreign_cells, late_errors
 from .guard import DEFAULT_LIMITS, Limits
 from .hiding import hiding_of
 from .names import names_of
@@ -20,7 +21,8 @@ from .outcome import Outcome, outcome_of
 from .package import Package, locked
 from .patch import patch_sheet
 from .plan import Context, make_plan
-from .report import Report
+from .refs import address, quoted
+from .report import MOST_CELLS, Report
 from .sheet import Group, SheetPart
 from .stored import strings_of
 from .tables import tables_of
@@ -112,6 +114,10 @@ class Book:
         fit = partial(cure, hiding=hiding_of(self.package, self.sheets))
         return Context(names_of(self.package), tables_of(self.package), titles, frozenset(self.titles), fit)
 
+    def last_row(self) -> int:
+        """The last row of any sheet that holds a cell."""
+        return max((max(sheet.row_spans, default=1) for sheet in self.sheets), default=1)
+
     def strings(self) -> list[str]:
         """The shared strings."""
         links = self.package.relations(self.package.main)
@@ -127,11 +133,12 @@ def _evaluated(book: Book, report: Report, per_cell: bool) -> Outcome:
     from .lifting import register
 
     plan = make_plan(book.groups, book.context, per_cell)
-    data = engine_bytes(book.package, book.sheets, plan)
+    foreign = {sheet.title: foreign_cells(sheet, book.package.date1904) for sheet in book.sheets}
+    data = engine_bytes(book.package, book.sheets, plan, foreign)
     engine = Engine.load(data, date1904=book.package.date1904, name=book.package.name)
     began = time.perf_counter()
     register(engine)
-    run = Run(engine, plan, book.titles)
+    run = Run(engine, plan, book.titles, book.last_row, late_errors(book.sheets, foreign))
     run.go()
     report.evaluation_seconds = time.perf_counter() - began
     outcome = outcome_of(engine, run, plan, book.groups, book.titles)
@@ -141,7 +148,19 @@ def _evaluated(book: Book, report: Report, per_cell: bool) -> Outcome:
     report.calls = sum(len(entry.formula.lp) * len(entry.group.rows) for entry in plan.entries)
     report.failed, report.kept = outcome.failed, outcome.kept
     report.differences = _differences(plan.met)
+    if outcome.shortened:
+        report.warnings.append(_shortened([f"{quoted(s)}!{address(r, c)}" for s, r, c in outcome.shortened]))
     return outcome
+
+
+def _shortened(cells: Sequence[str]) -> str:
+    """The note on plain cells with a range where a call takes one value."""
+    named = ", ".join(cells[:MOST_CELLS])
+    more = f" and {len(cells) - MOST_CELLS} more" if len(cells) > MOST_CELLS else ""
+    return (
+        f"in {named}{more} an LP_ call is given a range where it takes one value, and the cell shows the answer for "
+        "the range's first cell: name the one cell that is meant, or enter an array formula"
+    )
 
 
 def _differences(met: set[str]) -> list[dict[str, Any]]:
@@ -200,6 +219,11 @@ def _warn(book: Book, report: Report, values: bool, changed: bool) -> None:
         report.warnings.append("the digital signature of the workbook does not survive the new values: sign it anew")
     if package.iterates:
         report.warnings.append("the workbook asks for iteration over circular references; such cells keep their values")
+    if package.rounds_as_shown:
+        report.warnings.append(
+            "the workbook calculates with the precision as displayed (fullPrecision): here every digit counts, so that "
+            "its own program may give other values"
+        )
     for sheet in package.sheets:
         if sheet.kind in ("dialogsheet", "macrosheet") and _FORMULA.search(package.read(sheet.path)):
             report.warnings.append(f"the sheet {sheet.title!r} is a {sheet.kind}, which is not recalculated")

@@ -60,6 +60,11 @@ class Ref(NamedTuple):
         """One cell only."""
         return self.c1 == self.c2 and self.r1 == self.r2
 
+    @property
+    def whole(self) -> bool:
+        """Whole columns."""
+        return (self.r1, self.r2) == (Row(False, 1), Row(False, LAST_ROW))
+
     def at(self, row: int) -> Area:
         """The rectangle it means for a formula in ``row``."""
         first, last = self.r1.at(row), self.r2.at(row)

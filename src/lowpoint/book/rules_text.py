@@ -83,6 +83,16 @@ def _plain_pattern(pattern: str) -> bool:
     return re.fullmatch(rf"{one}(?:;{one}(?:;(?:{one}|[ ]*))?)?", bare) is not None
 
 
+def _link(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
+    """A link with words of its own, or a number, to show."""
+    if len(pieces) != 2 or any_array(pieces):
+        return None
+    writer.note("link-of-number")
+    shown = filled(pieces, '""', "0")
+    kind = shown[1].kind if shown[1] is not None else "any"
+    return writer.helper(name, shown, False, kind if kind in {"text", "logical"} else "any")
+
+
 def _text_places(writer: Writer, name: str, pieces: Pieces) -> Piece | None:
     """Numbers that a text function reads become text of at most 15 digits first."""
     places = _TEXT_PLACES[name]
@@ -149,6 +159,7 @@ _ALL: dict[str, Rule] = {
     "TRIM": always("no-break-space"),
     "REPLACE": always("replace-at-end"),
     "VALUE": _value,
+    "HYPERLINK": _link,
     "TEXT": _text,
     **dict.fromkeys(_TEXT_PLACES, _text_places),
     **dict.fromkeys(("CONCAT", "TEXTJOIN"), _joining),

@@ -51,10 +51,14 @@ class Literal:
 
 @dataclass(frozen=True, slots=True)
 class Cells:
-    """An argument read from one cell a row, or from a whole range where the parameter is a table."""
+    """An argument read from one cell a row, or from a ``whole`` range where the parameter is a table.
+
+    ``cut`` marks whole columns that need no blank rows behind the last cell of the workbook.
+    """
 
     ref: Ref
     whole: bool = False
+    cut: bool = False
 
 
 @dataclass(slots=True, eq=False)
@@ -85,6 +89,8 @@ class Site:
     given: tuple[bool, ...]
     own: bool = False  # its result is the cell's own value
     slot: Slot | None = None  # scratch column of a nested batched call
+    first: bool = False  # a plain cell shows only the first value of an array answer
+    columns: tuple[int, ...] = ()  # places of tables, where all of them are whole columns
     guard: Computed | None = None  # of a batched call: 1 where it is really made; None when it always is
     inner: list[Site] = field(default_factory=list)  # the calls inside this one
     level: int = 0

@@ -5,6 +5,7 @@ Source: ISO/IEC 29500-1, 18.3.1.4 (cells), 18.18.11 (cell types), 22.9.2.19 (esc
 
 from __future__ import annotations
 
+import datetime
 import re
 from collections.abc import Sequence
 from html import escape, unescape
@@ -14,7 +15,17 @@ from lowpoint.cells import CellError
 
 from .sheet import attribute
 
-__all__ = ["FILE_SPELLING", "Edit", "new_attributes", "old_value", "same", "strings_of", "value_element", "with_value"]
+__all__ = [
+    "FILE_SPELLING",
+    "Edit",
+    "new_attributes",
+    "old_value",
+    "same",
+    "serial_of",
+    "strings_of",
+    "value_element",
+    "with_value",
+]
 
 Edit = tuple[int, int, bytes]
 """Bytes from one place to another, and what takes their place."""
@@ -61,6 +72,24 @@ def old_value(kind: bytes, value: bytes | None, rest: bytes, strings: Sequence[s
         return float(text)
     except ValueError:
         return text
+
+
+def serial_of(text: str, date1904: bool = False) -> float | None:
+    """The serial number of a date, or a date and time, in the words of ISO 8601; None for other text.
+
+    The system of 1900 counts a 29 February 1900 that never was: days before it have one less.
+
+    >>> serial_of("2024-03-15"), serial_of("2024-03-15T12:00:00", date1904=True)
+    (45366.0, 43904.5)
+    """
+    try:
+        moment = datetime.datetime.fromisoformat(text).replace(tzinfo=None)
+    except ValueError:
+        return None
+    if date1904:
+        return (moment - datetime.datetime(1904, 1, 1)) / datetime.timedelta(days=1)
+    serial = (moment - datetime.datetime(1899, 12, 30)) / datetime.timedelta(days=1)
+    return serial if serial > 60 else serial - 1.0
 
 
 def same(old: Any, new: Any, exact: bool) -> bool:

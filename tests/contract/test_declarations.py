@@ -149,7 +149,8 @@ def test_no_docstring() -> None:
 # --- direction of imports -------------------------------------------------------------------------------------------
 
 LAYERS = ["errors", "sources", "units", "kinds", "quantities", "declare", "problems", "physics", "design", "columns",
-          "messages", "rows", "checked", "scalar", "registry", "cells", "reference", "starter", "book", "faces"]  # fmt: skip
+          "messages", "rows", "checked", "scalar", "registry", "cells", "reference", "starter", "book",
+          "faces"]  # fmt: skip
 """From the bottom up: a module may import only what stands before it, or its own package."""
 LAZY = {"openpyxl", "lxml", "formualizer", "CoolProp", "pint", "fluids", "xlwings", "pyopenvba"}
 """Never imported by a module's first lines, so that start-up pays for none; books may import what reads books."""

@@ -18,6 +18,7 @@ __all__ = ["main"]
 
 COMMANDS = {
     "recalc": "recompute the LP_ functions of workbooks, and all that depends on them, without a spreadsheet program",
+    "survey": "judge a plain list of items and operating cases: verdicts, margins, the worst case of each item",
     "starter": "write a book to begin with",
     "functions": "the reference of the worksheet functions",
     "calc": "the add-in that puts the LP_ functions into the cells of LibreOffice Calc",

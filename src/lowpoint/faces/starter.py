@@ -12,24 +12,30 @@ __all__ = ["fill", "run"]
 
 KINDS = {
     "sheet": "a valve list with LP_ formulas: items, operating cases, limits, verdicts, summary, chart",
-    "list": "a plain list (not made by this version yet)",
+    "list": "a blank list for lowpoint survey, with help, choices and an example",
     "datasheet": "a vendor's data sheet (not made by this version yet)",
 }
-MADE = ("sheet",)
-NAMES = {False: "valves.xlsx", True: "valves-us.xlsx"}
-"""The default name, without and with --us."""
+MADE = ("sheet", "list")
+NAMES = {"sheet": ("valves.xlsx", "valves-us.xlsx"), "list": ("list.xlsx", "list-us.xlsx")}
+"""The default names, without and with --us."""
 
 
 def fill(parser: argparse.ArgumentParser) -> None:
     add = parser.add_argument
     add("kind", choices=KINDS, metavar="KIND", help="; ".join(f"{kind}: {KINDS[kind]}" for kind in MADE))
-    add("-o", "--out", type=Path, metavar="OUT", help=f"the file to write, or its folder (default: {NAMES[False]})")
-    add("--us", action="store_true", help=f"US customary units, LPU_ functions (default name: {NAMES[True]})")
+    add(
+        "-o",
+        "--out",
+        type=Path,
+        metavar="OUT",
+        help="the file to write, or its folder (default: valves.xlsx or list.xlsx)",
+    )
+    add("--us", action="store_true", help="US customary units, LPU_ functions (default name: valves-us.xlsx)")
     add("--overwrite", action="store_true", help="replace a file of that name")
     add("--json", action="store_true", help="one JSON value on standard output")
     parser.epilog = (
-        "example: lowpoint starter sheet -o valves.xlsx\n\n"
-        "The book is filled with the valves of an invented utility, some rows with planted mistakes; its sheet\n"
+        "examples:\n  lowpoint starter sheet -o valves.xlsx\n  lowpoint starter list -o items.xlsx\n\n"
+        "The sheet is filled with the valves of an invented utility, some rows with planted mistakes; its sheet\n"
         "'Read me' says how to make it your own."
     )
 
@@ -40,7 +46,9 @@ def run(options: argparse.Namespace) -> int:
             f"starter {options.kind}", f"is not made by this version yet; what there is: {', '.join(MADE)}",
             remedy="Nothing was written.",
         )  # fmt: skip
-    out = _target(options.out, us=options.us, overwrite=options.overwrite)
+    out = _target(options.out, NAMES[options.kind][options.us], overwrite=options.overwrite)
+    if options.kind == "list":
+        return _list(out, us=options.us, as_json=options.json)
     items, cases = _write(out, us=options.us)
     if options.json:
         import json
@@ -51,11 +59,34 @@ def run(options: argparse.Namespace) -> int:
     return 0
 
 
-def _target(given: Path | None, *, us: bool, overwrite: bool) -> Path:
+def _list(out: Path, *, us: bool, as_json: bool) -> int:
+    """Write the blank list."""
+    from lowpoint.starter.list_form import list_bytes
+
+    _check_unlocked(out)
+    out.write_bytes(list_bytes(us=us))
+    if as_json:
+        import json
+
+        print(json.dumps({"out": str(out), "items": 0, "cases": 0}))
+    else:
+        print(f"Written: {out}. Fill its sheet List; 'lowpoint survey {out}' judges it.")
+    return 0
+
+
+def _check_unlocked(out: Path) -> None:
+    from lowpoint.book.package import locked
+
+    owner = locked(out)
+    if owner is not None:
+        raise LowpointError(str(out), f"is open: {owner} has it", remedy="Close it there, or choose another name.")
+
+
+def _target(given: Path | None, name: str, *, overwrite: bool) -> Path:
     """Where the book goes; LowpointError where that is no place for it."""
-    out = given or Path(NAMES[us])
+    out = given or Path(name)
     if out.is_dir():
-        out = out / NAMES[us]
+        out = out / name
     if out.suffix.lower() != ".xlsx":
         raise LowpointError(str(out), "the book must be named .xlsx", out.suffix or "no ending")
     if not out.parent.is_dir():
@@ -68,13 +99,10 @@ def _target(given: Path | None, *, us: bool, overwrite: bool) -> Path:
 
 def _write(out: Path, *, us: bool) -> tuple[int, int]:
     """Write the book with its values; how many items and cases it has. Nothing is left behind where that fails."""
-    from lowpoint.book.package import locked
     from lowpoint.book.recalc import recalculate
     from lowpoint.starter import sample, write_sheet
 
-    owner = locked(out)
-    if owner is not None:
-        raise LowpointError(str(out), f"is open: {owner} has it", remedy="Close it there, or choose another name.")
+    _check_unlocked(out)
     with tempfile.TemporaryDirectory(prefix="lowpoint-") as folder:
         plain = Path(folder, out.name)
         write_sheet(plain, us=us)

@@ -1,0 +1,117 @@
+"""What a reader of an answer must know: the declared cautions of what was used, and those of the list itself."""
+
+from __future__ import annotations
+
+from typing import Any
+
+import numpy as np
+
+from lowpoint.survey.calculating import filled_pipes
+from lowpoint.survey.judged_plates import caution_plates
+from lowpoint.survey.limiting import scale_factors, stated
+from lowpoint.survey.model import Cases, Findings, absent
+from lowpoint.survey.speaking import Lines, cautions_of, why
+
+__all__ = ["add_cautions"]
+
+NOT_CARRIED = (
+    "the limits were used as stated, without a {0} effect: test {0} or its exponent is not given, and a {0} above the "
+    "tested one raises them"
+)
+NO_INCIPIENT = "no incipient limit is given, so the state is not judged clear however high the index"
+NOT_KEPT = "the limit to keep is not given: the margin counts to the mildest one that is"
+SWAPPED_ORDER = "the limits are not in their usual order (incipient above constant above damage): check their forms"
+TOO_SMALL = (
+    "the required coefficient is above the rated one: the flow does not pass, and the index is that of no opening"
+)
+LOW, HIGH = "the opening is below 10 per cent of travel", "the opening is above 90 per cent of travel"
+NO_PURE = "how much flashes is not known: it can be computed for pure liquids of known name and temperature only"
+
+
+def add_cautions(cases: Cases, findings: Findings, answered: Any, lines: Lines) -> None:
+    """Add the cautions of every case that has an answer."""
+    valves = np.flatnonzero(answered & (cases.kind == "valve"))
+    if len(valves):
+        _of_valves(cases, findings, valves, lines)
+    caution_plates(cases, findings, answered, lines)
+    _of_limits(cases, findings, answered, lines)
+    lines.caution(answered & findings.over_capacity & (cases.kind == "valve"), TOO_SMALL)
+    lines.caution(answered & findings.low_travel, LOW)
+    lines.caution(answered & findings.high_travel, HIGH)
+    lines.caution(answered & findings.flashing & np.isnan(findings.flash_share), NO_PURE)
+
+
+def _of_valves(cases: Cases, findings: Findings, rows: Any, lines: Lines) -> None:
+    sizes = filled_pipes(cases)
+    state = {
+        name: getattr(cases, name)[rows]
+        for name in (
+            "flow",
+            "p1",
+            "p2",
+            "pv",
+            "pc",
+            "density",
+            "viscosity",
+            "fd",
+            "rated",
+            "rangeability",
+            "sound_speed",
+            "pipe_wall",
+            "xfz",
+        )
+    }
+    state |= {name: x[rows] for name, x in zip(("valve_size", "pipe_in", "pipe_out"), sizes, strict=True)}
+    state |= {"fl": findings.fl[rows], "coefficient": findings.coefficient[rows]}
+    cautions_of(lines, "COEFFICIENT", rows, {**state, "result": state["coefficient"], "trim": cases.trim[rows]})
+    _of_travel(cases, findings, rows, state, lines)
+    noisy = ~np.isnan(findings.noise[rows])
+    if noisy.any():
+        cautions_of(lines, "NOISE", rows, {**state, "result": findings.noise[rows]}, noisy)
+
+
+def _of_travel(cases: Cases, findings: Findings, rows: Any, state: dict[str, Any], lines: Lines) -> None:
+    travel = findings.travel[rows]
+    tables = [name for name, table in cases.tables.items() if table.coefficient is not None]
+    by_word = ~np.isin(cases.table[rows].astype(str), tables)
+    for word in ("linear", "equal percentage"):
+        there = by_word & (cases.characteristic[rows] == word)
+        known = there & ~np.isnan(travel)
+        if known.any():
+            lines.caution_at(
+                rows[known & (travel < 0.05)], "below 5 % opening a real characteristic leaves its formula"
+            )
+        lost = there & np.isnan(travel) & ~np.isnan(state["rated"]) & ~findings.over_capacity[rows]
+        if lost.any():
+            arguments = {"coefficient": state["coefficient"], "rated": state["rated"], "characteristic": word,
+                         "rangeability": state["rangeability"]}  # fmt: skip
+            why(lines, "TRAVEL", rows, lost, arguments, caution=True)
+    below = ~by_word & np.isnan(travel) & ~findings.over_capacity[rows]
+    lines.caution_at(
+        rows[below], "the valve would be less open than the first row of its table: FL there is that row's"
+    )
+
+
+def _of_limits(cases: Cases, findings: Findings, answered: Any, lines: Lines) -> None:
+    given = {name: ~np.isnan(limit) for name, limit in stated(cases, findings.travel).items()}
+    some = answered & np.any(list(given.values()), axis=0)
+    valve = some & (cases.kind == "valve")
+    by_size, by_head = scale_factors(cases, cases.valve_size)
+    lines.caution(valve & ~by_size, NOT_CARRIED.format("size"))
+    lines.caution(valve & ~by_head, NOT_CARRIED.format("head"))
+    scaled = valve & (by_size | by_head)
+    no_credit = (by_size & (cases.valve_size < cases.size_ref)) | (by_head & (cases.p1 - cases.pv < cases.head_ref))
+    lines.caution(scaled & no_credit, "the size or head is below the tested one: no credit is given for it")
+    lines.caution(some & (cases.method == "tullis"), "the form of the scale method tullis is from memory")
+    lines.caution(some & absent(cases.limits_basis), "the basis of the limits is not stated: taken as tested")
+    of_fl = answered & (cases.kind == "valve") & absent(cases.fl_basis)
+    lines.caution(of_fl, "the basis of FL is not stated: taken as tested")
+    lines.caution(answered & np.isnan(findings.incipient), NO_INCIPIENT)
+    order = np.fmax.reduce([findings.constant - findings.incipient, findings.damage - findings.incipient,
+                            findings.damage - findings.constant])  # fmt: skip
+    lines.caution(answered & (order > 0.0), SWAPPED_ORDER)
+    asked = ~absent(cases.keep)
+    lines.caution(answered & asked & (findings.keep != cases.keep), NOT_KEPT)
+    acoustic = np.isnan(stated(cases, findings.travel)["incipient"]) & ~np.isnan(findings.incipient)
+    lines.caution(answered & acoustic & (cases.kind == "valve"), "the incipient limit is 1/xFz, acoustic: a screening "
+                  "value, never a damage limit")  # fmt: skip

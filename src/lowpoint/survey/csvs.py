@@ -1,0 +1,97 @@
+"""Lists as plain text, values apart by comma, semicolon, tab or stroke: a grid of texts.
+
+Which sign sets the values apart is seen from the headings; which one is the decimal sign from the numbers, where they
+leave no doubt. Where they do, the numbers in question are named one by one and none is guessed.
+"""
+
+from __future__ import annotations
+
+import csv
+import os
+import re
+from pathlib import Path
+
+from lowpoint.book import guard
+from lowpoint.errors import BookError
+from lowpoint.survey.fields import FIELDS, TABLE_FIELDS
+from lowpoint.survey.grids import Grid, Sheets
+from lowpoint.survey.headers import LOOKED_AT, read_heading, text_of
+
+__all__ = ["read_text"]
+
+SEPARATORS = (",", ";", "\t", "|")
+_DECIMAL_COMMA = re.compile(r"[+-]?\d+,\d+(?:[eE][+-]?\d+)?")
+_DECIMAL_POINT = re.compile(r"[+-]?\d*\.\d+(?:[eE][+-]?\d+)?")
+_THOUSANDS = re.compile(r"[+-]?\d{1,3}[.,]\d{3}")
+_LONGEST = 100_000
+"""Longest single value; longer ones are no list."""
+
+
+def read_text(path: str | os.PathLike[str]) -> Sheets:
+    """The list of a text file; BookError where it is none."""
+    data = guard.load(path)
+    text, notes = _decoded(data, str(path))
+    separator, lines = _separated(text, str(path))
+    rows = [(number, [value.strip() or None for value in values]) for number, values in enumerate(lines, 1)]
+    rows = [(number, values) for number, values in rows if any(values)]
+    decimal = _decimal([value for _, values in rows for value in values if value], separator)
+    if decimal == ",":
+        notes.append("numbers were read with a decimal comma, as all of them are written")
+    notes.append(f"values are set apart by {_NAMES[separator]}")
+    return Sheets("csv", (Grid(Path(path).name, rows, all_text=True, decimal=decimal),), tuple(notes))
+
+
+_NAMES = {",": "commas", ";": "semicolons", "\t": "tabs", "|": "strokes"}
+
+
+def _decoded(data: bytes, name: str) -> tuple[str, list[str]]:
+    if b"\0" in data[:4096] and not data.startswith((b"\xff\xfe", b"\xfe\xff")):
+        raise BookError(name, "must be a list as text", guard.looks_like(data), "Save it as .csv or .xlsx.")
+    for codec in ("utf-16",) if data.startswith((b"\xff\xfe", b"\xfe\xff")) else ("utf-8-sig",):
+        try:
+            return data.decode(codec), []
+        except UnicodeDecodeError:
+            continue
+    return data.decode("cp1252", "replace"), ["the file is not UTF-8: it was read as Windows text (code page 1252)"]
+
+
+def _separated(text: str, name: str) -> tuple[str, list[list[str]]]:
+    """The sign under which most headings are known, and the values; the line ``sep=;`` decides where it stands."""
+    first, _, rest = text.partition("\n")
+    declared = re.fullmatch(r"sep=(.)\r?", first.strip("\ufeff "))
+    if declared:
+        return declared[1], [[], *_parsed(rest, declared[1], name)]
+    best, lines, most = ",", _parsed(text, ",", name), -1
+    for separator in SEPARATORS:
+        if separator in text[:20_000]:
+            parsed = _parsed(text, separator, name)
+            known = max((_known(values) for values in parsed[:LOOKED_AT]), default=0)
+            if known > most:
+                best, lines, most = separator, parsed, known
+    return best, lines
+
+
+def _known(values: list[str]) -> int:
+    texts = [text_of(value) for value in values]
+    return sum(
+        read_heading(t, c).field is not None for t in texts if t and len(t) < 120 for c in (FIELDS, TABLE_FIELDS)
+    )
+
+
+def _parsed(text: str, separator: str, name: str) -> list[list[str]]:
+    csv.field_size_limit(_LONGEST)
+    try:
+        return list(csv.reader(text.splitlines(keepends=True), delimiter=separator))
+    except csv.Error as problem:
+        raise BookError(name, f"cannot be read as a list ({problem})", remedy="Save it anew as .csv.") from None
+
+
+def _decimal(values: list[str], separator: str) -> str:
+    """``,`` where numbers have a comma and none a point; ``?`` where both, or neither for certain, are seen."""
+    commas = [v for v in values if _DECIMAL_COMMA.fullmatch(v)]
+    points = any(_DECIMAL_POINT.fullmatch(v) for v in values)
+    if not commas or separator == ",":
+        return "."
+    if points or all(_THOUSANDS.fullmatch(v) for v in commas):
+        return "?"
+    return ","

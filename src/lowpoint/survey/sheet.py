@@ -1,0 +1,359 @@
+"""One sheet of a list: its columns as SI numbers and words, row by row, and what is wrong with its cells."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass, field
+from itertools import groupby
+from typing import Any
+
+import numpy as np
+
+from lowpoint.physics.site import barometric_pressure
+from lowpoint.physics.unitnames import meaning
+from lowpoint.problems import shown
+from lowpoint.survey import values
+from lowpoint.survey.fields import BY_KEY, NOT_JUDGED, ListField
+from lowpoint.survey.grids import Grid, cell_name
+from lowpoint.survey.headers import Heading, Place, is_carried, nearest, read_heading, text_of
+from lowpoint.survey.model import Numbers, Problem, ReadColumn
+from lowpoint.units import KV
+
+__all__ = ["SheetColumns", "listed", "read_sheet"]
+
+GAUGE = "Add a column 'Site elevation [m]' or 'Atmosphere [bar]', a line 'Site elevation [m]' with its number above " \
+    "the table, or --elevation METRES; or write bar a where the pressures are absolute."  # fmt: skip
+DIFFERENCES = frozenset({"head_ref", "outlet_loss"})
+"""Differences of pressure, which are neither gauge nor absolute."""
+SITE = ("elevation", "atmosphere")
+
+
+@dataclass(eq=False)
+class SheetColumns:
+    """What one sheet gives: arrays by field, one element a row of data; faults as (place, sentence)."""
+
+    sheet: str
+    rows: list[int]
+    """Row numbers of the sheet."""
+    columns: list[ReadColumn]
+    numbers: dict[str, Numbers] = field(default_factory=dict)
+    words: dict[str, Any] = field(default_factory=dict)
+    asked: dict[str, list[int]] = field(default_factory=dict)
+    spoiled: list[tuple[int, str]] = field(default_factory=list)
+    told: list[tuple[int, str]] = field(default_factory=list)
+    notes: list[str] = field(default_factory=list)
+    elevation: float | None = None
+    letters: dict[str, int] = field(default_factory=dict)
+    """Column (from 0) that each field was read from."""
+
+
+class _Reader:
+    """Reads one sheet; a class only to keep the sheet, its rows and its problems together."""
+
+    def __init__(self, grid: Grid, place: Place, problems: list[Problem]) -> None:
+        self.grid, self.place, self.problems = grid, place, problems
+        self.data = [(number, cells) for number, cells in grid.rows if number >= place.first and number > place.row]
+        self.data = [(number, cells) for number, cells in self.data if any(c not in (None, "") for c in cells)]
+        self.index = {number: i for i, (number, _) in enumerate(self.data)}
+        self.out = SheetColumns(grid.sheet, [number for number, _ in self.data], listed(grid, place))
+
+    # --- telling -------------------------------------------------------------------------------------------------
+
+    def tell(self, cell: str, value: str, text: str, remedy: str, place: int = -1, spoils: bool = True) -> None:
+        """Name something; where it spoils a row, that row gets the sentence too."""
+        problem = Problem(self.grid.sheet, cell, value, text, remedy, place, spoils)
+        self.problems.append(problem)
+        if place >= 0:
+            (self.out.spoiled if spoils else self.out.told).append((place, problem.sentence()))
+
+    def fault(self, what: ListField, column: int, fault: values.Fault) -> None:
+        cell = cell_name(self.out.rows[fault.place], column)
+        self.tell(cell, shown(fault.value), fault.text, fault.remedy, fault.place, what.key not in NOT_JUDGED)
+
+    # --- columns -------------------------------------------------------------------------------------------------
+
+    def usable(self) -> dict[int, Heading]:
+        """The headings whose columns are read, by column; the others are told."""
+        seen: dict[str, int] = {}
+        found: dict[int, Heading] = {}
+        for column, heading in self.place.headings.items():
+            cell = cell_name(self.place.row, column)
+            if heading.field is None:
+                self._unknown(cell, heading)
+                continue
+            first = seen.setdefault(heading.field.key, column)
+            if first != column:
+                other = self.place.headings[first]
+                where = f"'{other.text}' in {cell_name(self.place.row, first)}"
+                self.tell(cell, shown(heading.text), f"{heading.field.heading} has a column already, {where}: neither "
+                          "was used", "Keep one of the two.")  # fmt: skip
+                found.pop(first, None)
+            elif heading.problem:
+                self.tell(cell, shown(heading.text), heading.problem, heading.remedy)
+            else:
+                found[column] = heading
+        return found
+
+    def _unknown(self, cell: str, heading: Heading) -> None:
+        if is_carried(heading.text):
+            return
+        near = nearest(heading.text, self.place.catalogue)
+        hint = f"Did you mean '{near}'? " if near else ""
+        self.tell(cell, shown(heading.text), "the column is not known and was not used",
+                  f"{hint}Name it as 'lowpoint starter list' does, or take it out.", spoils=False)  # fmt: skip
+
+    def cells(self, column: int) -> list[Any]:
+        return [cells[column] if column < len(cells) else None for _, cells in self.data]
+
+    def nameless(self) -> None:
+        """Columns with values below no heading."""
+        width = max((len(cells) for _, cells in self.data), default=0)
+        for column in range(width):
+            if column in self.place.headings:
+                continue
+            first = next((i for i, c in enumerate(self.cells(column)) if c not in (None, "")), None)
+            if first is not None:
+                cell = cell_name(self.place.row, column)
+                self.tell(cell, "", "the column has values and no heading, and was not used", "Give it a heading.",
+                          spoils=False)  # fmt: skip
+
+    # --- what the eye sees and a reader of values does not -------------------------------------------------------
+
+    def hidden(self, used: dict[int, Heading]) -> None:
+        rows = sorted(number for number in self.out.rows if number in self.grid.hidden_rows)
+        for first, last in _runs(rows):
+            cell = f"{first}:{last}"
+            text = "the row is hidden" if first == last else "the rows are hidden"
+            self.tell(cell, "", f"{text} and judged all the same", "Show or delete what is hidden.", spoils=False)
+        for column in used:
+            if column + 1 in self.grid.hidden_columns:
+                cell = cell_name(self.place.row, column)
+                self.tell(cell, shown(used[column].text), "the column is hidden and used all the same",
+                          "Show it, or delete it.", spoils=False)  # fmt: skip
+
+    def merged(self, used: dict[int, Heading]) -> None:
+        for r1, c1, r2, c2 in self.grid.merged:
+            if r2 < self.place.first or not any(c1 <= column + 1 <= c2 for column in used):
+                continue
+            name = f"{cell_name(r1, c1 - 1)}:{cell_name(r2, c2 - 1)}"
+            i = self.index.get(r1)
+            value = self.data[i][1][c1 - 1] if i is not None and c1 - 1 < len(self.data[i][1]) else None
+            if c1 == c2:
+                self._fill_down(r1, r2, c1 - 1, value)
+                text = "merged cells; their value was taken for every one of their rows"
+            else:
+                text = "cells merged over several columns; their value was taken for the first column alone"
+            self.tell(name, shown(value), text, "Split them, and write the value into each cell.", spoils=False)
+
+    def _fill_down(self, first: int, last: int, column: int, value: Any) -> None:
+        for number in range(first + 1, last + 1):
+            i = self.index.get(number)
+            if i is not None:
+                cells = self.data[i][1]
+                cells.extend([None] * (column + 1 - len(cells)))
+                cells[column] = value
+
+    def unvalued(self, used: dict[int, Heading]) -> None:
+        for row, column in sorted(self.grid.unvalued):
+            if column - 1 in used and row in self.index:
+                what = used[column - 1].field
+                assert what is not None
+                self.tell(cell_name(row, column - 1), "", f"{what.heading} is a formula without a value",
+                          "Open the book in a spreadsheet program and save it there, or recompute it with 'lowpoint "
+                          "recalc'.", self.index[row], what.key not in NOT_JUDGED)  # fmt: skip
+
+    # --- values --------------------------------------------------------------------------------------------------
+
+    def read(self, column: int, heading: Heading) -> None:
+        what = heading.field
+        assert what is not None
+        self.out.letters[what.key] = column
+        cells = self.cells(column)
+        if what.what == "number":
+            self._numbers(what, heading, column, cells)
+            return
+        if what.what == "bores":
+            factor = meaning(heading.unit or "m").factor
+            found, faults = values.bores(what, cells, factor, self.grid.decimal if self.grid.all_text else ".")
+        else:
+            found, faults = values.words(what, cells)
+            self._formula_like(what, column, found)
+        self.out.words[what.key] = found
+        for fault in faults:
+            self.fault(what, column, fault)
+
+    def _formula_like(self, what: ListField, column: int, found: Any) -> None:
+        for place, text in enumerate(found):
+            if isinstance(text, str) and values.is_formula_like(text):
+                self.tell(cell_name(self.out.rows[place], column), shown(text),
+                          f"{what.heading} looks like a formula; it was read as text, and is written as text",
+                          "Begin it with a letter.", place, spoils=False)  # fmt: skip
+
+    def _numbers(self, what: ListField, heading: Heading, column: int, cells: Sequence[Any]) -> None:
+        typed = values.numbers(what, cells, self.grid.decimal, self.grid.all_text)
+        for fault in typed.faults:
+            self.fault(what, column, fault)
+        if typed.asked:
+            self.out.asked[what.key] = typed.asked
+        x = typed.values
+        if what.quantity is not None and what.quantity.zero_is_blank and what.scope == "item":
+            x = np.where(x == 0.0, np.nan, x)
+        key, si = self._si(what, heading, x)
+        if what.quantity is not None and key == what.key:
+            si = self._bounded(what, heading, column, x, si)
+        self.out.numbers[key] = si
+
+    def _si(self, what: ListField, heading: Heading, x: Numbers) -> tuple[str, Numbers]:
+        """The field's numbers in SI; a mass flow and a kinematic viscosity keep fields of their own."""
+        if not what.reference:
+            unit = heading.unit or ""
+            factor = meaning(unit).factor if unit.strip("-–—1") not in ("", "ratio") else 1.0
+            return what.key, x * factor
+        unit_meaning = meaning(heading.unit or "")
+        si = values.to_si(x, unit_meaning)
+        if what.reference == "Kv":
+            return what.key, si * KV
+        if unit_meaning.gauge:
+            si = si + self.out.numbers["atmosphere"]
+        if what.key == "flow" and unit_meaning.dimension == meaning("kg/s").dimension:
+            return "mass_flow", si
+        if what.key == "viscosity" and unit_meaning.dimension == meaning("m2/s").dimension:
+            return "kinematic", si
+        return what.key, si
+
+    def _bounded(self, what: ListField, heading: Heading, column: int, x: Numbers, si: Numbers) -> Numbers:
+        assert what.quantity is not None
+        bad, clause = values.out_of_bounds(what.quantity, si)
+        if not bad.any():
+            return si
+        for place in np.flatnonzero(bad).tolist():
+            value = shown(float(x[place]), heading.unit or "")
+            self.tell(cell_name(self.out.rows[place], column), value, f"{what.heading} {clause(place)}",
+                      what.quantity.remedy, place, what.key not in NOT_JUDGED)  # fmt: skip
+        return np.where(bad, np.nan, si)
+
+
+def _runs(numbers: Sequence[int]) -> Iterator[tuple[int, int]]:
+    """First and last of each run of numbers that follow one another."""
+    for _, run in groupby(enumerate(numbers), key=lambda pair: pair[1] - pair[0]):
+        members = [number for _, number in run]
+        yield members[0], members[-1]
+
+
+def listed(grid: Grid, place: Place) -> list[ReadColumn]:
+    """The columns of a sheet as the reading reports them."""
+    seen: dict[str, int] = {}
+    for heading in place.headings.values():
+        if heading.field is not None:
+            seen[heading.field.key] = seen.get(heading.field.key, 0) + 1
+    found = []
+    for column, heading in place.headings.items():
+        key = heading.field.key if heading.field else ""
+        if not key:
+            status = "carried" if is_carried(heading.text) else "unknown"
+        elif seen[key] > 1:
+            status = "twice"
+        elif heading.problem:
+            status = "no unit" if not heading.unit else "wrong unit"
+        else:
+            status = "used"
+        found.append(
+            ReadColumn(grid.sheet, cell_name(place.row, column), heading.text, key, heading.unit or "", status)
+        )
+    return found
+
+
+def read_sheet(grid: Grid, place: Place, elevation: float | None, problems: list[Problem]) -> SheetColumns:
+    """The columns of one list; problems are added to those of the file."""
+    reader = _Reader(grid, place, problems)
+    used = reader.usable()
+    reader.nameless()
+    reader.hidden(used)
+    reader.merged(used)
+    reader.unvalued(used)
+    first = [(column, heading) for column, heading in used.items() if _is(heading, "tag", *SITE)]
+    for column, heading in first:
+        reader.read(column, heading)
+    _site(reader, elevation)
+    used = _with_atmosphere(reader, used)
+    for column, heading in used.items():
+        if (column, heading) not in first:
+            reader.read(column, heading)
+    return reader.out
+
+
+def _is(heading: Heading, *keys: str) -> bool:
+    return heading.field is not None and heading.field.key in keys
+
+
+def _of_its_item(x: Numbers, tags: Any) -> Numbers:
+    """Blanks filled from the first row of the same tag that has a value."""
+    known: dict[Any, float] = {}
+    for tag, value in zip(tags, x.tolist(), strict=True):
+        if tag is not None and value == value:
+            known.setdefault(tag, value)
+    return np.array(
+        [known.get(tag, value) if value != value else value for tag, value in zip(tags, x.tolist(), strict=True)]
+    )
+
+
+def _site(reader: _Reader, elevation: float | None) -> None:
+    """The atmosphere of every row: its own, that of its elevation, of the line above the table, of the command."""
+    out, count = reader.out, len(reader.data)
+    above = dict(_above(reader.grid, reader.place))
+    out.elevation = above.get("elevation")
+    for key, value in above.items():
+        out.notes.append(f"{BY_KEY[key].heading} was read from above the table of {reader.grid.sheet}")
+        if key == "elevation":
+            elevation = value
+    tags = out.words.get("tag", np.full(count, None, object))
+    height, given = (_of_its_item(out.numbers.get(key, np.full(count, np.nan)), tags) for key in SITE)
+    site = above.get("atmosphere", np.nan)
+    if elevation is not None and np.isnan(site):
+        height = np.where(np.isnan(height) & np.isnan(given), elevation, height)
+    out.numbers["elevation"] = height
+    found = np.where(np.isnan(height), site, barometric_pressure(height))
+    out.numbers["atmosphere"] = np.where(np.isnan(given), found, given)
+
+
+def _above(grid: Grid, place: Place) -> Iterator[tuple[str, float]]:
+    """Elevation or atmosphere written above the table: a heading, and its number in the next filled cell."""
+    for number, cells in grid.rows:
+        if number >= place.row:
+            return
+        for column, cell in enumerate(cells):
+            heading = read_heading(text_of(cell), place.catalogue) if isinstance(cell, str) and cell else None
+            if heading is None or heading.field is None or not _is(heading, *SITE) or not heading.unit:
+                continue
+            following = next((c for c in cells[column + 1 :] if c not in (None, "")), None)
+            typed = values.numbers(heading.field, [following], grid.decimal, grid.all_text)
+            if typed.faults or np.isnan(typed.values[0]):
+                continue
+            yield heading.field.key, float(values.to_si(typed.values, meaning(heading.unit))[0])
+
+
+def _with_atmosphere(reader: _Reader, used: dict[int, Heading]) -> dict[int, Heading]:
+    """The headings without those of gauge pressures that no row can make absolute; rows that cannot are told."""
+    kept = {}
+    lacking = np.isnan(reader.out.numbers["atmosphere"])
+    for column, heading in used.items():
+        what = heading.field
+        gauge = (
+            what is not None and what.reference == "bar" and bool(heading.unit) and meaning(heading.unit or "").gauge
+        )
+        if gauge and what is not None and what.key in DIFFERENCES:
+            reader.tell(cell_name(reader.place.row, column), shown(heading.text), f"{what.heading} is a difference of "
+                        "pressures, which is not gauge", "Take the g out of its unit.")  # fmt: skip
+            continue
+        if gauge and lacking.any() and what is not None:
+            cells = reader.cells(column)
+            if lacking.all():
+                reader.tell(cell_name(reader.place.row, column), shown(heading.text), f"{what.heading} is a gauge "
+                            "pressure, and no atmosphere of the site is given", GAUGE)  # fmt: skip
+                continue
+            for place in [i for i in np.flatnonzero(lacking).tolist() if cells[i] not in (None, "")]:
+                cell = cell_name(reader.out.rows[place], column)
+                reader.tell(cell, shown(cells[place]), f"{what.heading} is a gauge pressure, and its row gives no "
+                            "atmosphere", GAUGE, place)  # fmt: skip
+        kept[column] = heading
+    return kept

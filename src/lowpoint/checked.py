@@ -251,7 +251,9 @@ class Checked:
         count = len(good)
         if self.declaration.column:
             return self._columns(given, good, rows)
-        out: npt.NDArray[Any] = np.full(rows, None, object) if self.returns_text else np.full(rows, np.nan)
+        out: npt.NDArray[Any] = np.empty(rows, object if self.returns_text else np.float64)
+        if count < rows:
+            out.fill(None if self.returns_text else np.nan)
         if count == 0:
             return out
         with np.errstate(all="ignore"):

@@ -64,7 +64,7 @@ class Ledger:
 
     def good(self) -> npt.NDArray[np.intp]:
         """Indices of the rows without a fault."""
-        return np.flatnonzero(self.codes() == 0)
+        return np.arange(self.rows) if self._codes is None else np.flatnonzero(self._codes == 0)
 
     def error(self, row: int) -> CellError | None:
         """The error of one row, None for a good one."""

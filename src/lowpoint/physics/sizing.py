@@ -163,7 +163,8 @@ def required_coefficient(
     dp = p1 - p2
     head = p1 - critical_pressure_factor(pv, pc) * pv
     c = _for_both(energy / dp, energy / head, fl, total, inlet)
-    if not isinstance(total, float):
+    if not isinstance(total, float) and (total < 0.0).any():
+        # Only an expander larger than its reducer gives back more than it takes.
         c = np.where(1.0 + total * c * c > 0.0, c, np.nan)
     rows = nonturbulent.rows_with(viscosity)
     if rows is not None:

@@ -9,7 +9,7 @@ from enum import StrEnum
 import numpy as np
 import numpy.typing as npt
 
-__all__ = ["PASSED_ON", "CellError", "Fault", "Ledger", "shown"]
+__all__ = ["PASSED_ON", "CellError", "Fault", "Ledger", "counted", "shown"]
 
 PASSED_ON = "passed on unchanged"
 """How the sentence ends where an error only came through."""
@@ -96,3 +96,8 @@ def shown(value: object, unit: str = "") -> str:
             return "a blank cell"
         return f"{number:.6g}" + (f" {unit}" if unit else "")
     return f"a {type(value).__name__}"
+
+
+def counted(number: int, noun: str) -> str:
+    """A number with its noun, in the plural where it is not one."""
+    return f"{number} {noun}" if number == 1 else f"{number} {noun}s"

@@ -13,6 +13,7 @@ import platform
 import re
 import sys
 from collections.abc import Callable, Iterator
+from dataclasses import replace
 from pathlib import Path
 
 HERE = Path(__file__).parent
@@ -60,6 +61,8 @@ def main() -> int:
     for name, suite in SUITES.items():
         if options.only in (None, name):
             for figure in suite(options.quick):
+                # The goals are those of the full sizes: a look is not judged by them.
+                figure = replace(figure, at_least=None, at_most=None) if options.quick else figure
                 found.append(figure)
                 print(figure.line(), flush=True)
     if not options.quick and options.only is None:

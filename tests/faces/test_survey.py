@@ -23,7 +23,7 @@ def test_a_list_that_is_kept(capsys: Streams) -> None:
     write_csv(Path("list.csv"), HEADINGS, [GOOD])
     assert cli.main(["survey", "list.csv"]) == 0
     out = capsys.readouterr().out
-    assert "1 items, 1 cases; by their worst case: 1 clear" in out
+    assert "1 item, 1 case; by their worst case: 1 clear" in out
     assert "21-FCV-110  clear (tested)" in out
 
 

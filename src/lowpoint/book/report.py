@@ -8,7 +8,7 @@ from dataclasses import dataclass, field
 from enum import Enum
 from typing import Any, NamedTuple
 
-from lowpoint.problems import PASSED_ON
+from lowpoint.problems import PASSED_ON, counted
 
 __all__ = ["Change", "Failure", "Kept", "Report"]
 
@@ -143,7 +143,7 @@ class Report:
 
     def _lines(self, limit: int) -> Iterator[str]:
         yield (
-            f"{self.book}: {_many(self.recomputed, 'formula cell')} worked out, {_many(self.calls, 'LP_ call')} in "
+            f"{self.book}: {counted(self.recomputed, 'formula cell')} worked out, {counted(self.calls, 'LP_ call')} in "
             f"them; {len(self.changed) + len(self.unfed)} changed{self._in_last_digits()}, {self.untouched} were "
             f"right already ({self.seconds:.1f} s)."
         )
@@ -153,15 +153,15 @@ class Report:
             first = [f for f in self.failed if not f.passed_on]
             rest = [f for f in self.failed if f.passed_on]
             only = f", {len(rest)} of them only because they read another cell's error" if rest else ""
-            yield f"{_many(len(self.failed), 'LP_ call')} gave an error{only}:"
+            yield f"{counted(len(self.failed), 'LP_ call')} gave an error{only}:"
             yield from _cut([*_gathered(first), *_gathered(rest)], limit)
         if self.kept:
-            yield f"{_many(len(self.kept), 'cell')} could not be refreshed and kept the old value:"
+            yield f"{counted(len(self.kept), 'cell')} could not be refreshed and kept the old value:"
             yield from _cut([f"{_at(k.sheet, k.cell)}  {k.reason}" for k in self.kept], limit)
         if self.unfed:
             one = len(self.unfed) == 1
             them, these = ("it", "this") if one else ("them", "these")
-            yield f"{_many(len(self.unfed), 'cell')} changed although no LP_ call feeds {them} (look at {these}):"
+            yield f"{counted(len(self.unfed), 'cell')} changed although no LP_ call feeds {them} (look at {these}):"
             yield from _cut([f"{_at(c.sheet, c.cell)}  {_said(c.old)} -> {_said(c.new)}" for c in self.unfed], limit)
         for warning in self.warnings:
             yield f"Note: {warning}"
@@ -211,10 +211,6 @@ def _said(value: Any) -> str:
 
 def _at(sheet: str, cell: str) -> str:
     return f"  {sheet}!{cell}"
-
-
-def _many(number: int, noun: str) -> str:
-    return f"{number} {noun}" if number == 1 else f"{number} {noun}s"
 
 
 def _cut(lines: Sequence[str], limit: int) -> Iterator[str]:

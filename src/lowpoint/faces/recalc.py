@@ -181,8 +181,11 @@ def _batch(jobs: Sequence[Job], workers: int, as_json: bool) -> int:
         _print_json(found)
     else:
         failed = sum("error" in data for data in found)
-        noun = "book" if len(jobs) == 1 else "books"
-        print(f"{len(jobs)} {noun}: {codes.count(0)} without findings, {len(jobs) - failed} written, {failed} failed.")
+        from lowpoint.problems import counted
+
+        print(
+            f"{counted(len(jobs), 'book')}: {codes.count(0)} without findings, {len(jobs) - failed} written, {failed} failed."
+        )
     return max(codes)
 
 

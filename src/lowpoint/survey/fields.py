@@ -117,7 +117,7 @@ FIELDS: tuple[ListField, ...] = (
           "where pv, pc and density are given.", "Medium", "Fluid name"),
     _number("salinity", "liquid", "Salinity", "g/kg", q.Salinity, "Of sea water and brine, needed for these.",
             "Salt content"),
-    _number("t", "liquid", "Temperature", "K", q.T, "At the inlet.", "Temp", "T1", "Inlet temperature",
+    _number("t", "liquid", "Temperature", "K", q.T, "At the inlet.", "T", "Temp", "T1", "Inlet temperature",
             "Flowing temperature", "Operating temperature", "Fluid temperature", scope="case"),
     _number("flow", "liquid", "Flow", "m3/h", q.Flow, "Volume or mass flow, at flowing conditions.", "Q", "Flow rate",
             "Volume flow", "Mass flow", "Flowrate", "W", scope="case"),

@@ -6,6 +6,7 @@ import math
 from collections import Counter
 from collections.abc import Iterator
 
+from lowpoint.problems import counted
 from lowpoint.survey.fields import BY_KEY
 from lowpoint.survey.items import ORDER, verdict
 from lowpoint.survey.model import Item, Reading, Survey
@@ -58,7 +59,8 @@ def survey_lines(survey: Survey, most: int = SHOWN) -> Iterator[str]:
     counts = Counter(item.regime for item in survey.items)
     said = [f"{counts[word]} {word}" for word in ORDER if counts[word]]
     said += [f"{counts[None]} without an answer"] if counts[None] else []
-    yield f"{len(survey.items)} items, {survey.cases.count} cases; by their worst case: {', '.join(said) or 'none'}"
+    items, cases = counted(len(survey.items), "item"), counted(survey.cases.count, "case")
+    yield f"{items}, {cases}; by their worst case: {', '.join(said) or 'none'}"
     failing = sorted((i for i in survey.items if i.fails), key=_by_margin)
     yield from _listed("fail", failing, most)
     yield from _listed("have cases without an answer", [i for i in survey.items if i.unanswered and not i.fails], most)

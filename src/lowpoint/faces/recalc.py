@@ -183,9 +183,8 @@ def _batch(jobs: Sequence[Job], workers: int, as_json: bool) -> int:
         failed = sum("error" in data for data in found)
         from lowpoint.problems import counted
 
-        print(
-            f"{counted(len(jobs), 'book')}: {codes.count(0)} without findings, {len(jobs) - failed} written, {failed} failed."
-        )
+        counts = f"{codes.count(0)} without findings, {len(jobs) - failed} written, {failed} failed"
+        print(f"{counted(len(jobs), 'book')}: {counts}.")
     return max(codes)
 
 

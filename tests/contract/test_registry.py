@@ -332,3 +332,15 @@ def _columns(name: str, rows: list[list[object]]) -> list[object]:
 def test_numbers_helper_moves_every_number() -> None:
     """The perturbation used above does change the arguments (a check of the checks)."""
     assert all(numbers(name) == [] or perturbed(name, 2)[0] != perturbed(name, 2)[1] for name in names())
+
+
+def test_every_listed_word_is_understood() -> None:
+    """What `lowpoint functions` lists for a word may be typed as it stands."""
+    from lowpoint import reference
+
+    for name in names():
+        function = functions[name]
+        for parameter in function.parameters:
+            if parameter.is_text:
+                for word in reference.words_of(function, parameter):
+                    assert function.checked.resolver(parameter.name)(word), (name, word)

@@ -30,8 +30,12 @@ def _table() -> dict[str, list[Row]]:
 
 
 def styles() -> Iterable[str]:
-    """Every style, as it is spelled in cells, with its flow directions in brackets."""
-    return [f"{style}  ({' / '.join(d for row in rows for d in _directions(row))})" for style, rows in _table().items()]
+    """Every style, as it is spelled in cells, with its flow directions in brackets (which may be typed or not)."""
+    return [_listed(style) for style in _table()]
+
+
+def _listed(style: str) -> str:
+    return f"{style}  ({' / '.join(d for row in _table()[style] for d in _directions(row))})"
 
 
 def _key(text: str) -> str:
@@ -40,7 +44,7 @@ def _key(text: str) -> str:
 
 @cache
 def _spellings() -> dict[str, str]:
-    return {_key(style): style for style in _table()}
+    return {_key(spelling): style for style in _table() for spelling in (style, _listed(style))}
 
 
 def resolve_style(text: str) -> str:

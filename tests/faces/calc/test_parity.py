@@ -7,6 +7,7 @@ from typing import Any
 
 import pytest
 
+import parity_cases
 import registry_cases
 from lowpoint import cells
 from lowpoint.faces.calc_addin.signatures import signatures
@@ -191,6 +192,29 @@ def test_errors_come_out_unchanged(office: Any, error: CellError) -> None:
     ]
     assert {call.expected for call in calls} == {error}
     compare(office, calls)
+
+
+def of_calc(name: str) -> list[list[Any]]:
+    """The argument sets of the parity test that a sheet of Calc can hold: optional blanks are left out."""
+    rows = []
+    for arguments in parity_cases.argument_sets(name):
+        given = [
+            OMITTED if argument is None and not parameter.required else argument
+            for argument, parameter in zip(arguments, functions[name].parameters, strict=True)
+        ]
+        # A needed blank, an empty text and a logical cannot be told from 0 there; #NUM! is no word of a cell's formula.
+        unlike = any(a is None or a is True or a == "" or a is CellError.NUM for a in given if not isinstance(a, list))
+        if not unlike:
+            rows.append(given)
+    return rows
+
+
+@pytest.mark.parametrize("name", NAMES)
+def test_several_hundred_argument_sets(office: Any, name: str) -> None:
+    """The sets of the parity test over Python, recalculated books and Excel, in real Calc."""
+    rows = of_calc(name)
+    assert len(rows) >= 200
+    compare(office, [Call(name, row, cells.call(name, row)) for row in rows])
 
 
 def test_numbers_out_of_bounds(office: Any) -> None:

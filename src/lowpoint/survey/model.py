@@ -14,10 +14,13 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, fields, replace
-from typing import Any, TypeAlias
+from typing import TYPE_CHECKING, Any, TypeAlias
 
 import numpy as np
 import numpy.typing as npt
+
+if TYPE_CHECKING:
+    from lowpoint.survey.outcome import Remedy, Sensitivity
 
 __all__ = ["Cases", "Findings", "Flags", "Item", "Numbers", "Problem", "ReadColumn", "Reading", "Survey", "TravelTable",
            "Words", "absent", "number_fields", "word_fields"]  # fmt: skip
@@ -347,9 +350,6 @@ class Reading:
     fingerprint: str = ""
     """SHA-256 of the file."""
 
-    def unknown(self) -> tuple[ReadColumn, ...]:
-        return tuple(c for c in self.columns if c.status == "unknown")
-
 
 @dataclass(frozen=True)
 class Item:
@@ -386,6 +386,10 @@ class Survey:
     """Tag of a set of plates -> its ``design.Rating`` over the item's cases that could be rated."""
     set_rows: Mapping[str, tuple[int, ...]] = field(default_factory=dict)
     """Tag -> the places in ``Cases`` of the columns of that rating."""
+    sensitivity: Sensitivity | None = None
+    """None where it was not asked for."""
+    remedies: Mapping[str, tuple[Remedy, ...]] = field(default_factory=dict)
+    """Tag of a failing item -> its remedies, the best first."""
 
     @property
     def exit_code(self) -> int:

@@ -1,0 +1,131 @@
+"""What a survey says beyond the verdicts: how far inputs may move, what cures a failure, the working, the pictures.
+
+Plain records that the makers (:mod:`sensing`, :mod:`remedies`, :mod:`working`, :mod:`pictures`) fill and that the
+faces of a survey (workbook, page, JSON, terminal) show. Numbers are coherent SI as in :mod:`model`, unless a record
+says that it is for the eye.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+
+from lowpoint.survey.model import Cases, Numbers, Words
+
+__all__ = ["Line", "Picture", "Remedy", "Sensitivity", "Step", "Tolerance", "Working"]
+
+
+@dataclass(frozen=True)
+class Tolerance:
+    """How far one input may be off."""
+
+    field: str
+    """Field of :class:`~lowpoint.survey.model.Cases` that moves, or the group's name (``pressures``)."""
+    size: float
+    """Half-width: a share of the value, or an amount in SI."""
+    relative: bool
+    basis: str
+    """Where it comes from: ``default``, ``list``, ``command line``."""
+
+    def words(self) -> str:
+        """``± 2 %`` or ``± 1 K``, in SI; the faces show it in their own units."""
+        return f"± {100.0 * self.size:g} %" if self.relative else f"± {self.size:g}"
+
+
+@dataclass(frozen=True, eq=False)
+class Sensitivity:
+    """The margin under uncertain inputs, one element a case; NaN and None where the case has no answer."""
+
+    tolerances: tuple[Tolerance, ...]
+    draws: int
+    seed: int
+    low: Numbers
+    """Margin with every input at its adverse end."""
+    high: Numbers
+    """Margin with every input at its favourable end."""
+    stays: Numbers
+    """Share of draws in which the case does not fail, 0 to 1. A nominal failure stays one whatever this says."""
+    dominant: Words
+    """The input that moves the margin most within its tolerance."""
+    swing: Numbers
+    """How far that input alone moves the margin, from end to end."""
+
+
+@dataclass(frozen=True, eq=False)
+class Remedy:
+    """One way to cure an item, tried on all its cases by the same core."""
+
+    kind: str
+    """``staged trim``, ``plate downstream``, ``back-pressure``, ``lower location``, ``lower temperature``,
+    ``higher recovery factor``, ``split``, ``larger valve``, ``flashing`` (advice only)."""
+    text: str
+    """The whole in one sentence, with its number, in metric units."""
+    figures: Mapping[str, tuple[float, str]]
+    """What must be done, and what comes of it: name -> (value in SI, kind of quantity as ``units.dimension``
+    knows it)."""
+    cures: bool
+    """Does every case pass with it? Only a verified remedy does; False with a reason in ``cautions``."""
+    margin: float
+    """Least margin over the item's cases with the remedy; NaN where it has none."""
+    verdicts: tuple[str | None, ...]
+    """Regime of each of the item's cases with the remedy, in the item's order."""
+    cautions: tuple[str, ...] = ()
+    cases: Cases | None = None
+    """The item's cases (and those of what is added to it) with the remedy applied, ready to be surveyed again;
+    None for advice."""
+
+
+@dataclass(frozen=True)
+class Step:
+    """One line of a working, which a checker can redo by hand."""
+
+    symbol: str
+    meaning: str
+    equation: str
+    """In symbols: ``(p1 - pv)/(p1 - p2)``; empty for an input."""
+    numbers: str
+    """The same with the printed numbers: ``(6.813 - 0.02339)/(6.813 - 5.213)``, plain arithmetic; empty for an
+    input."""
+    value: str
+    """As printed."""
+    unit: str
+    source: str
+    """Of the equation, or of the input: ``given``, ``computed: ...``, ``typical``."""
+    note: str = ""
+
+
+@dataclass(frozen=True)
+class Working:
+    """The whole working of one case, in sections."""
+
+    title: str
+    sections: tuple[tuple[str, tuple[Step, ...]], ...]
+    verdict: str
+    cautions: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True)
+class Line:
+    """One line of a picture; in the picture's units."""
+
+    name: str
+    x: tuple[float, ...]
+    y: tuple[float, ...]
+    style: str = "line"
+    """``line``, ``dashed``, ``dotted``, ``points``: told apart without colour."""
+    labels: tuple[str, ...] = ()
+    """Of the points, where they have names (the cases)."""
+
+
+@dataclass(frozen=True)
+class Picture:
+    """A chart, ready to be drawn by any face."""
+
+    title: str
+    x_title: str
+    y_title: str
+    lines: tuple[Line, ...]
+    x_ticks: tuple[tuple[float, str], ...] = field(default=())
+    """Places with names, where the abscissa has no scale (inlet, throat, outlet)."""
+    alternative: str = ""
+    """What the picture shows, in a sentence, for whoever cannot see it."""

@@ -19,43 +19,17 @@ from typing import TYPE_CHECKING, Any, TypeAlias
 import numpy as np
 import numpy.typing as npt
 
+from lowpoint.survey.travel import Numbers, TravelTable
+
 if TYPE_CHECKING:
     from lowpoint.survey.outcome import Remedy, Sensitivity
 
 __all__ = ["Cases", "Findings", "Flags", "Item", "Numbers", "Problem", "ReadColumn", "Reading", "Survey", "TravelTable",
            "Words", "absent", "number_fields", "word_fields"]  # fmt: skip
 
-Numbers: TypeAlias = npt.NDArray[np.float64]
 Words: TypeAlias = npt.NDArray[np.object_]
 Flags: TypeAlias = npt.NDArray[np.bool_]
 Rows: TypeAlias = npt.NDArray[Any]
-
-
-@dataclass(frozen=True, eq=False)
-class TravelTable:
-    """A vendor's table of one valve by opening; every column as long as ``travel``, increasing. SI, limits upstream.
-
-    A column that the table does not have is None.
-    """
-
-    name: str
-    travel: Numbers
-    """Openings, shares of the travel, increasing."""
-    coefficient: Numbers | None = None
-    fl: Numbers | None = None
-    xfz: Numbers | None = None
-    incipient: Numbers | None = None
-    constant: Numbers | None = None
-    damage: Numbers | None = None
-    vibration: Numbers | None = None
-
-    def at(self, name: str, travel: Any) -> Any:
-        """A column read at openings, linear between rows, NaN outside the table or where it has no such column."""
-        values = getattr(self, name)
-        if values is None:
-            return np.full(np.shape(travel), np.nan)
-        inside = (travel >= self.travel[0]) & (travel <= self.travel[-1])
-        return np.where(inside, np.interp(travel, self.travel, values), np.nan)
 
 
 @dataclass(frozen=True, eq=False)
@@ -285,8 +259,8 @@ class Findings:
 
     def limits(self) -> dict[str, Numbers]:
         """The five limits, installed, by name."""
-        return {"incipient": self.incipient, "constant": self.constant, "damage": self.damage,
-                "vibration": self.vibration, "choked": self.choked_limit}  # fmt: skip
+        names = ("incipient", "constant", "damage", "vibration")
+        return {**{name: getattr(self, name) for name in names}, "choked": self.choked_limit}
 
 
 @dataclass(frozen=True)
@@ -349,6 +323,9 @@ class Reading:
     """Site elevation from the command line or above the table, m."""
     fingerprint: str = ""
     """SHA-256 of the file."""
+
+    def unknown(self) -> tuple[ReadColumn, ...]:
+        return tuple(c for c in self.columns if c.status == "unknown")
 
 
 @dataclass(frozen=True)

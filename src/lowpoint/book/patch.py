@@ -11,7 +11,7 @@ from .refs import Area, address, column_letters
 from .report import Change
 from .sheet import Group, SheetPart, attribute
 from .spills import Spill, spill_edits
-from .stored import Edit, new_attributes, old_value, same, value_element, with_value
+from .stored import Edit, new_attributes, number_text, old_value, same, value_element, with_value
 
 __all__ = ["Patched", "patch_sheet"]
 
@@ -101,27 +101,51 @@ def _formula_cells(
     running = {
         group: (iter(found), fed(group), column_letters(group.column)) for group, found in values.items()
     }  # fmt: skip
-    match, scanned, title = sheet.found.formula_cell.match, sheet.scanned, sheet.title
-    for start, row, column, group in zip(sheet.starts, sheet.rows, sheet.columns, sheet.groups, strict=True):
+    scanned, title = sheet.scanned, sheet.title
+    opening, closing = b"<%bv>" % sheet.prefix, b"</%bv>" % sheet.prefix
+    begin, cell_end = b"<%bv" % sheet.prefix, b"</%bc>" % sheet.prefix
+    ending = len(cell_end)
+    cells = zip(sheet.starts, sheet.ends, sheet.simple, sheet.rows, sheet.columns, sheet.groups, strict=True)
+    for start, end, simple, row, column, group in cells:
         if group not in running:
             continue
         coming, feeding, letters = running[group]
         new = next(coming)
         if kept and (row, column) in kept:
             continue
-        cell = match(scanned, start)
-        if cell is None:
-            raise AssertionError("a formula cell is not where it was found")
-        kind = attribute(cell[3], b"t") if b"t=" in cell[3] else b""
-        old = old_value(kind, cell[7], cell[8], strings)
-        area = ranges.get((row, column)) if ranges else None
+        if simple and type(new) is float and not ranges and scanned.endswith(cell_end, start, end):
+            # Most cells: a number in the place of a number.
+            element, first, last = opening + number_text(new) + closing, scanned.rfind(begin, start, end), end - ending
+            stored = scanned[first:last]
+            old = new if stored == element else _plain_value(stored)
+            edit = None if same(old, new, exact=feeding) else (first, last, element)
+        else:
+            old, edit = _edited(sheet, start, new, feeding, ranges.get((row, column)), strings)
         if same(old, new, exact=feeding):
             result.untouched += 1
-            if area is not None:
-                yield (*cell.span(4), _new_range(cell[4], area))
-            continue
-        result.note(Change(title, f"{letters}{row}", old, new), feeding)
-        yield _with_new_value(sheet, cell, kind, new, area)
+        else:
+            result.note(Change(title, f"{letters}{row}", old, new), feeding)
+        if edit is not None:
+            yield edit
+
+
+def _plain_value(element: bytes) -> Any:
+    """What the value element of a plain number holds; None where it is empty or not there."""
+    return old_value(b"", element[element.find(b">") + 1 : element.rfind(b"<")], b"", ())
+
+
+def _edited(
+    sheet: SheetPart, start: int, new: Any, exact: bool, area: Area | None, strings: Sequence[str]
+) -> tuple[Any, Edit | None]:
+    """Any formula cell: its old value, and the edit that it needs, if any."""
+    cell = sheet.found.formula_cell.match(sheet.scanned, start)
+    if cell is None:
+        raise AssertionError("a formula cell is not where it was found")
+    kind = attribute(cell[3], b"t") if b"t=" in cell[3] else b""
+    old = old_value(kind, cell[7], cell[8], strings)
+    if not same(old, new, exact=exact):
+        return old, _with_new_value(sheet, cell, kind, new, area)
+    return old, (*cell.span(4), _new_range(cell[4], area)) if area is not None else None
 
 
 def _new_range(attributes: bytes, area: Area) -> bytes:

@@ -86,7 +86,10 @@ def attribute(attributes: bytes, name: bytes) -> bytes:
 
 
 class SheetPart:
-    """A worksheet's bytes, its formula cells in file order, and their groups."""
+    """A worksheet's bytes, its formula cells in file order, and their groups.
+
+    ``simple`` says of each whether it is a number that ends with its value element: another one takes its place.
+    """
 
     def __init__(self, title: str, path: str, raw: bytes, book: str) -> None:
         self.title, self.path, self.raw = title, path, raw
@@ -101,6 +104,7 @@ class SheetPart:
         self.body = self._body()
         self.starts, self.ends = array("Q"), array("Q")
         self.rows, self.columns = array("L"), array("L")
+        self.simple = bytearray()
         self.groups: list[Group] = []
         self._shapes = _Shapes(title)
         self._scan()
@@ -133,10 +137,11 @@ class SheetPart:
 
     def _scan(self) -> None:
         starts, ends, rows, columns, groups = self.starts, self.ends, self.rows, self.columns, self.groups
+        simple = self.simple
         numbers: dict[bytes, int] = {}
         unnamed: dict[int, tuple[int, int]] | None = None
         for cell in self.found.formula_cell.finditer(self.scanned, *self.body):
-            letters, digits, attributes, formula, text, _, _, _ = cell.groups()
+            letters, digits, attributes, formula, text, element, _, rest = cell.groups()
             if letters is None:
                 named = _AT.search(attributes)
                 if named:
@@ -154,6 +159,7 @@ class SheetPart:
             group.rows.append(row)
             starts.append(cell.start())
             ends.append(cell.end())
+            simple.append(not rest and element is not None and b"t=" not in attributes and b"vm" not in attributes)
             rows.append(row)
             columns.append(column)
             groups.append(group)

@@ -19,6 +19,7 @@ __all__ = [
     "FILE_SPELLING",
     "Edit",
     "new_attributes",
+    "number_text",
     "old_value",
     "same",
     "serial_of",
@@ -116,13 +117,18 @@ def _typed(value: Any) -> tuple[bytes, bytes]:
     if isinstance(value, str):
         text = _UNWRITABLE.sub(lambda m: f"_x{ord(m[0]):04X}_", value)
         return b"str", escape(text, quote=False).encode()
-    return b"", repr(float(value)).removesuffix(".0").encode()
+    return b"", number_text(float(value))
+
+
+def number_text(number: float) -> bytes:
+    """A number as a cell stores it: the shortest digits that give it back."""
+    return repr(number).removesuffix(".0").encode()
 
 
 def value_element(prefix: bytes, value: Any) -> tuple[bytes, bytes]:
     """A result's type attribute and its value element."""
     if type(value) is float:  # most of them
-        return b"", b"<%bv>%b</%bv>" % (prefix, repr(value).removesuffix(".0").encode(), prefix)
+        return b"", b"<%bv>%b</%bv>" % (prefix, number_text(value), prefix)
     kind, text = _typed(value)
     edges = text[:1].isspace() or text[-1:].isspace()
     space = b' xml:space="preserve"' if edges else b""

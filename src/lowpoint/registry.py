@@ -21,9 +21,10 @@ from lowpoint.scalar import bind_scalar
 __all__ = ["Function", "canonical", "functions", "nearest"]
 
 _KERNEL_MODULES = (
-    "liquids", "site", "conversion", "sizing", "travel", "typical", "flashing", "indices", "limits", "regime", "noise",
-    "orifices", "stages", "plate_strength",
+    "fittings", "nonturbulent", "sizing", "indices", "liquids", "site", "conversion", "travel", "typical", "flashing",
+    "limits", "regime", "noise", "orifices", "stages", "plate_strength",
 )  # fmt: skip
+"""Modules of :mod:`lowpoint.physics` with worksheet functions, in the order of the reference."""
 
 
 class Function:
@@ -134,10 +135,10 @@ def _shaped(values: Any, shape: tuple[int, ...]) -> Any:
 
 
 def _load() -> Mapping[str, Function]:
-    for module in _KERNEL_MODULES:
-        importlib.import_module(f"lowpoint.physics.{module}")
+    names = [importlib.import_module(f"lowpoint.physics.{module}").__name__ for module in _KERNEL_MODULES]
     found: dict[str, Function] = {}
-    for declaration in declarations.values():
+    # Whoever imported a kernel before the registry changes nothing: the order is that of the modules.
+    for declaration in sorted(declarations.values(), key=lambda each: names.index(each.kernel.__module__)):
         single = "any" if declaration.any_unit else "metric"
         for system in (single,) if declaration.any_unit else (single, "us"):
             function = Function(declaration, system)

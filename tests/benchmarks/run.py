@@ -25,6 +25,7 @@ import bench_kernels  # noqa: E402
 import bench_orifices  # noqa: E402
 import bench_recalc  # noqa: E402
 import bench_start  # noqa: E402
+import bench_survey  # noqa: E402
 from figures import Figure  # noqa: E402
 
 SUITES: dict[str, Callable[[bool], Iterator[Figure]]] = {
@@ -32,6 +33,7 @@ SUITES: dict[str, Callable[[bool], Iterator[Figure]]] = {
     "orifices": bench_orifices.figures,
     "design": bench_design.figures,
     "recalc": bench_recalc.figures,
+    "survey": bench_survey.figures,
     "start": bench_start.figures,
     "calc": bench_calc.figures,
 }

@@ -205,10 +205,10 @@ def test_limits_are_configurable(tmp_path: Path) -> None:
     assert "must unpack to at most" in refusal(path, Limits(unpacked_bytes=sum(sizes) - 1))
     assert "must hold no part above" in refusal(path, Limits(part_bytes=max(sizes) - 1))
     assert "must hold at most 4 parts, got 5" in refusal(path, Limits(entries=4))
-    # The command has no option for a limit: the remedy must be one that its user can follow.
-    assert refusal(path, Limits(entries=4)).endswith(
-        "Split the workbook, or take out what it does not need, such as pictures and unused sheets."
-    )
+    # The remedy must be one that the user of a command can follow.
+    said = refusal(path, Limits(entries=4))
+    assert "Split the workbook, or take out what it does not need, such as pictures and unused sheets." in said
+    assert said.endswith("raise the limit: --limit parts=...")
     assert "packed more than 1 times" in refusal(path, Limits(ratio=1.0, ratio_from=10))
 
 

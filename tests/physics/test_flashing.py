@@ -4,10 +4,12 @@ from __future__ import annotations
 
 from typing import Any
 
+import numpy as np
 import pytest
 
 from lowpoint import functions
 from lowpoint.cells import call, reason
+from lowpoint.physics.flashing import flash_sound_speed
 from lowpoint.problems import CellError
 
 BOTH = ("LP_FLASH", "LP_FLASH_DENSITY")
@@ -91,3 +93,22 @@ def test_a_liquid_of_large_molecules_may_evaporate_wholly(fluid: str, t: float) 
     mass = {"decamethyltetrasiloxane": 0.31069, "n-dodecane": 0.17034}[fluid]
     ideal = 0.005 * pv * 1e5 * mass / (8.314462618 * (t + 273.15))
     assert ideal * 0.99 < call("LP_FLASH_DENSITY", args) < ideal * 1.4
+
+
+@pytest.mark.parametrize("t, p1, p2", [(453.15, 15e5, 2e5), (403.15, 5e5, 1.2e5), (513.15, 60e5, 20e5)])
+def test_sound_of_the_mixture(t: float, p1: float, p2: float) -> None:
+    """Against CoolProp's own density along the isentrope from the state of its own enthalpy, with another step."""
+    from CoolProp.CoolProp import PropsSI
+
+    h = PropsSI("H", "P", p1, "T", t, "Water")
+    s = PropsSI("S", "P", p2, "H", h, "Water")
+    step = 0.01 * p2
+    slope = (PropsSI("D", "P", p2 + step, "S", s, "Water") - PropsSI("D", "P", p2 - step, "S", s, "Water")) / step / 2
+    speed = flash_sound_speed(np.array(["water"]), np.array([t]), np.array([p1]), np.array([p2]))
+    assert speed == pytest.approx(slope**-0.5, rel=2e-3)
+
+
+def test_no_sound_of_a_mixture_that_is_none() -> None:
+    speed = flash_sound_speed(np.array(["water", "sea water"]), np.array([300.0, 380.0]), np.array([5e5, 5e5]),
+                              np.array([2e5, 1e5]))  # fmt: skip
+    assert np.isnan(speed).all()

@@ -445,3 +445,13 @@ def test_completing_twice_changes_nothing() -> None:
     again = complete(survey.cases)
     for name in number_fields():
         np.testing.assert_array_equal(getattr(again, name), getattr(survey.cases, name), name)
+
+
+@pytest.mark.parametrize("bore, chokes", [(52.5, True), (500.0, False)])
+def test_an_outlet_that_the_flashing_mixture_chokes(bore: float, chokes: bool, tmp_path: Path) -> None:
+    """Condensate of 180 deg C to 2 bar: some 12 % of it boils, and fills a narrow outlet at the speed of its sound."""
+    row = {"Tag": "24-LCV-430", "Liquid": "water", "Temperature [deg C]": 180, "Flow [m3/h]": 80, "p1 [bar a]": 15,
+           "p2 [bar a]": 2, "FL": 0.9, "Valve size [mm]": 50, "D1 [mm]": 52.5, "D2 [mm]": bore}  # fmt: skip
+    _, case = _survey(tmp_path, row)
+    assert case["flashing"] is True
+    assert any("faster than its own sound" in caution for caution in case["cautions"]) is chokes

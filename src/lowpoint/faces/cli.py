@@ -19,12 +19,17 @@ __all__ = ["main"]
 COMMANDS = {
     "recalc": "recompute the LP_ functions of workbooks, and all that depends on them, without a spreadsheet program",
     "survey": "judge a plain list of items and operating cases: verdicts, margins, the worst case of each item",
+    "compare": "what changed between two issues of a list, and which verdicts turned",
+    "explain": "the whole working of one item of a list, step by step, with equation, numbers, units and source",
     "starter": "write a book to begin with",
     "functions": "the reference of the worksheet functions",
     "calc": "the add-in that puts the LP_ functions into the cells of LibreOffice Calc",
     "excel": "the add-in that puts the LP_ functions into the cells of Excel",
 }
 """Each command with its one line of help; its module in this package has ``fill(parser)`` and ``run(options)``."""
+
+READERS = ("recalc", "survey", "compare", "explain", "audit")
+"""Commands that read files from anywhere, which may hold and take only so much."""
 
 CAUTION = (
     "Lowpoint supports a qualified engineer: vendor test data, site rules, local codes and licensed practice "
@@ -48,6 +53,10 @@ def _parser(command: str | None) -> argparse.ArgumentParser:
         )  # fmt: skip
         if name == command:
             _module(name).fill(sub)
+            if name in READERS:
+                from lowpoint.faces.limit_options import add_limits
+
+                add_limits(sub)
     return parser
 
 
@@ -65,7 +74,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
         if options.command is None:
             parser.print_help()
             return 2
-        code: int = _module(options.command).run(options)
+        code = _run(options)
         sys.stdout.flush()
         return code
     except LowpointError as error:
@@ -80,11 +89,29 @@ def main(arguments: Sequence[str] | None = None) -> int:
         # The reader (head, less) went away; that is no fault. Keep the interpreter from complaining at its exit.
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         return 0
+    except MemoryError:
+        print("lowpoint: the work needs more memory than there is, or than --limit memory allows.", file=sys.stderr)
+        return 2
     except OSError as trouble:
         # A stream has no file name: the disk behind a redirected output is full, or gone.
         return _our_bug(trouble) if trouble.filename else _unheard(trouble)
     except Exception as bug:
         return _our_bug(bug)
+
+
+def _run(options: argparse.Namespace) -> int:
+    """The command's work, within the limits that its words ask for."""
+    run = _module(options.command).run
+    if options.command not in READERS:
+        return int(run(options))
+    from lowpoint.book.guard_limits import limiting
+    from lowpoint.book.guard_memory import bound_memory
+    from lowpoint.faces.limit_options import limits_of
+
+    limits = limits_of(options)
+    bound_memory(limits.memory)
+    with limiting(limits):
+        return int(run(options))
 
 
 def _unheard(trouble: OSError) -> int:

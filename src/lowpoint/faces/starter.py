@@ -61,10 +61,11 @@ def run(options: argparse.Namespace) -> int:
 
 def _list(out: Path, *, us: bool, as_json: bool) -> int:
     """Write the blank list."""
+    from lowpoint.book.saving import replace_file
     from lowpoint.starter.list_form import list_bytes
 
     _check_unlocked(out)
-    out.write_bytes(list_bytes(us=us))
+    replace_file(out, lambda sink: sink.write(list_bytes(us=us)))
     if as_json:
         import json
 
@@ -104,7 +105,7 @@ def _write(out: Path, *, us: bool) -> tuple[int, int]:
 
     _check_unlocked(out)
     with tempfile.TemporaryDirectory(prefix="lowpoint-") as folder:
-        plain = Path(folder, out.name)
+        plain = Path(folder, "plain.xlsx")  # the name asked for may be too long for this place
         write_sheet(plain, us=us)
         recalculate(plain, out)
     items = sample(us=us).items

@@ -3,36 +3,47 @@
 from __future__ import annotations
 
 import argparse
-import importlib
-import importlib.util
 import json
-import sys
-from collections.abc import Callable
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from lowpoint.errors import LowpointError
+from lowpoint.faces.targets import checked_target
 
-__all__ = ["fill", "run"]
+if TYPE_CHECKING:
+    from lowpoint.faces.progress import Bar
+    from lowpoint.survey.model import Survey
+    from lowpoint.survey.surveying import Wishes
 
-WRITER = "lowpoint.survey.book"
-"""The module whose ``write_book(survey, path)`` writes the output workbook."""
+__all__ = ["check_elevation", "fill", "run"]
+
 LOWEST, HIGHEST = -5000.0, 11000.0
+PAGES = 50
 
 
 def fill(parser: argparse.ArgumentParser) -> None:
     add = parser.add_argument
     add("list", type=Path, metavar="LIST", help="the list: .xlsx, .xlsm, .csv or .ods; it is only read")
-    if _writes():
-        add("-o", "--out", type=Path, metavar="OUT", help="the workbook to write")
-        add("--overwrite", action="store_true", help="replace a file of that name")
+    add("-o", "--out", type=Path, metavar="OUT", help="the workbook to write (.xlsx): the list with its results, a "
+        "summary, a page for each failing item")  # fmt: skip
+    add("--html", type=Path, metavar="PAGE", help="the page to write (.html): one file that needs no network")
+    add("--overwrite", action="store_true", help="replace files of these names")
+    add("--pages", type=int, default=PAGES, metavar="N", help="how many failing items get a page with charts and "
+        f"working, the worst first (default {PAGES})")  # fmt: skip
     add("--elevation", type=float, metavar="METRES", help="height of the site above sea level, for gauge pressures, "
         "where the list gives neither it nor the atmosphere")  # fmt: skip
+    add("--tolerance", action="append", default=[], metavar="NAME=SIZE", help="how far an input may be off: p1=1%%, "
+        "t=2K, fl=3%%, limits=5%%; as often as needed")  # fmt: skip
+    add("--draws", type=int, default=200, metavar="N", help="draws of the inputs for each case (default 200; 0: none)")
+    add("--seed", type=int, metavar="N", help="seed of the draws (default: a fixed one)")
+    add("--no-remedies", action="store_true", help="verdicts only, nothing tried against failures")
     add("--show", action="store_true", help="show how the list is read, column by column, and stop")
-    add("--us", action="store_true", help="numbers of --json in US customary units")
+    add("--us", action="store_true", help="results in US customary units")
     add("--json", action="store_true", help="one JSON value on standard output: an object for each item and case")
     parser.epilog = (
         "examples:\n  lowpoint survey valves.xlsx --show           how each column is understood\n"
-        "  lowpoint survey valves.csv --elevation 145   verdicts, the worst case of each item, what is missing\n\n"
+        "  lowpoint survey valves.csv --elevation 145   verdicts, the worst case of each item, what is missing\n"
+        "  lowpoint survey valves.xlsx -o verdicts.xlsx --html verdicts.html\n\n"
         "The columns are found by their headings, in any order, with the unit in the heading: 'p1 [bar g]'.\n"
         "'lowpoint starter list' writes a blank form.\n\n"
         "exit code 1: something is wrong with the list, or an item fails or has a case without an answer"
@@ -40,37 +51,71 @@ def fill(parser: argparse.ArgumentParser) -> None:
 
 
 def run(options: argparse.Namespace) -> int:
-    elevation = options.elevation
-    if elevation is not None and not LOWEST <= elevation <= HIGHEST:
-        raise LowpointError("--elevation", f"must be {LOWEST:g} to {HIGHEST:g} m", f"{elevation:g}")
+    check_elevation(options.elevation)
     if options.show:
-        return _show(options, elevation)
-    out = _target(options)
-    from lowpoint.survey.showing import problem_lines, survey_lines
-    from lowpoint.survey.surveying import survey_list
+        return _show(options, options.elevation)
+    if options.pages < 0:
+        raise LowpointError("--pages", "must be 0 or more", str(options.pages))
+    out, page = (
+        path and checked_target(path, options.list, options.overwrite, [suffix], option)
+        for path, suffix, option in ((options.out, ".xlsx", "-o"), (options.html, ".html", "--html"))
+    )
+    wishes = _wishes(options)
+    from lowpoint.faces.progress import progress_bar
 
-    survey = survey_list(options.list, elevation, _progress())
-    if out is not None:
-        importlib.import_module(WRITER).write_book(survey, out)
+    system = "us" if options.us else "metric"
+    with progress_bar() as bar:
+        from lowpoint.survey.surveying import survey_list
+
+        survey = survey_list(options.list, options.elevation, bar, wishes)
+        _write(survey, out, page, system, options.pages, bar)
     if options.json:
         from lowpoint.survey.as_json import as_json
 
-        print(json.dumps(as_json(survey, "us" if options.us else "metric")))
-        return survey.exit_code
-    if survey.reading.missing:
-        print("required columns that are not there: " + "; ".join(survey.reading.missing))
-    for line in (*problem_lines(survey.reading), *survey_lines(survey)):
-        print(line)
-    if out is not None:
-        print(f"Written: {out}")
+        print(json.dumps(as_json(survey, system)))
+    else:
+        _print(survey, system, [path for path in (out, page) if path is not None])
     return survey.exit_code
 
 
-def _progress() -> Callable[[str], None] | None:
-    """What shows how far the work is: a line on a terminal, nothing in a pipe."""
-    if not sys.stderr.isatty():
-        return None
-    return lambda text: print(f"lowpoint: {text} ...", file=sys.stderr)
+def _wishes(options: argparse.Namespace) -> Wishes:
+    from lowpoint.survey.surveying import Wishes
+    from lowpoint.survey.tolerances import parse_tolerance
+
+    if options.draws < 0:
+        raise LowpointError("--draws", "must be 0 or more", str(options.draws))
+    return Wishes(tolerances=tuple(parse_tolerance(text) for text in options.tolerance), draws=options.draws,
+                  seed=options.seed, remedies=not options.no_remedies)  # fmt: skip
+
+
+def _write(survey: Survey, out: Path | None, page: Path | None, system: str, pages: int, bar: Bar) -> None:
+    if out is not None:
+        from lowpoint.survey.book import write_book
+
+        bar("writing the workbook")
+        write_book(survey, out, system=system, pages=pages)
+    if page is not None:
+        from lowpoint.survey.page import write_page
+
+        bar("writing the page")
+        write_page(survey, page, system=system, pages=pages)
+
+
+def _print(survey: Survey, system: str, written: list[Path]) -> None:
+    from lowpoint.survey.showing import problem_lines, survey_lines
+
+    if survey.reading.missing:
+        print("required columns that are not there: " + "; ".join(survey.reading.missing))
+    for line in (*problem_lines(survey.reading), *survey_lines(survey, system=system)):
+        print(line)
+    for path in written:
+        print(f"Written: {path}")
+
+
+def check_elevation(elevation: float | None) -> None:
+    """LowpointError for an elevation that no site has."""
+    if elevation is not None and not LOWEST <= elevation <= HIGHEST:
+        raise LowpointError("--elevation", f"must be {LOWEST:g} to {HIGHEST:g} m", f"{elevation:g}")
 
 
 def _show(options: argparse.Namespace, elevation: float | None) -> int:
@@ -79,29 +124,11 @@ def _show(options: argparse.Namespace, elevation: float | None) -> int:
 
     _, reading = read_list(options.list, elevation)
     if options.json:
-        from dataclasses import asdict
+        from dataclasses import asdict, replace
 
-        print(json.dumps(asdict(reading)))
+        said = asdict(replace(reading, lists=()))  # the rows themselves are no part of how they are understood
+        del said["lists"]
+        print(json.dumps(said))
     else:
         print("\n".join(reading_lines(reading)))
     return 1 if reading.problems or reading.missing else 0
-
-
-def _writes() -> bool:
-    return importlib.util.find_spec(WRITER) is not None
-
-
-def _target(options: argparse.Namespace) -> Path | None:
-    out: Path | None = getattr(options, "out", None)
-    if out is None:
-        return None
-    if out.suffix.lower() != ".xlsx":
-        raise LowpointError(str(out), "the output must be named .xlsx", out.suffix or "no ending")
-    if not out.parent.is_dir():
-        raise LowpointError(str(out.parent), "must be a folder", "none of that name", "Make it first.")
-    if out.exists() and options.list.exists() and out.samefile(options.list):
-        raise LowpointError(str(out), "must not be the list itself", remedy="Choose another name with -o.")
-    if out.exists() and not options.overwrite:
-        must = "is there already and was left as it is"
-        raise LowpointError(str(out), must, remedy="Choose another name with -o, or ask for --overwrite.")
-    return out

@@ -13,7 +13,7 @@ from lowpoint.physics.liquids import NORMAL_SALINITY, SALT_IS_FIXED, TOO_COLD, T
 from lowpoint.physics.names import is_salty, known_names, resolve
 from lowpoint.physics.sizing import OUTLET
 
-__all__ = ["flash_density", "flash_share"]
+__all__ = ["flash_density", "flash_share", "flash_sound_speed"]
 
 
 def _split(name: str, t: float, p1: float, p2: float) -> Split:
@@ -91,3 +91,15 @@ def flash_density(fluid: q.Fluid, t: q.T, p1: q.P1, p2: q.P2) -> q.Density:
     Source: CoolProp and the equations of state that it cites (water IAPWS-95).
     """
     return each(lambda *state: _split(*state).density, fluid, t, p1, p2)
+
+
+def flash_sound_speed(fluid: q.Fluid, t: q.T, p1: q.P1, p2: q.P2) -> Any:
+    """Speed of sound in the homogeneous mixture after an isenthalpic drop, ``sqrt((dp/drho)_s)``, m/s.
+
+    Arrays of one length, SI. Where the mixture would leave faster, the outlet chokes and p2 is not reached there
+    (homogeneous equilibrium, as in any text on two-phase flow). NaN where nothing
+    flashes, where all does, and for sea water.
+    Source: CoolProp and the equations of state that it cites.
+    """
+    return each(lambda name, *state: math.nan if is_salty(name) else fluids.flash_sound_speed(name, *state),
+                fluid, t, p1, p2)  # fmt: skip

@@ -15,8 +15,8 @@ from typing import Any, NamedTuple
 
 from lowpoint.physics.names import key_of
 
-__all__ = ["Span", "Split", "density", "flash", "is_frozen", "is_liquid", "saturation_temperature", "sound_speed",
-           "span", "vapour_pressure", "viscosity"]  # fmt: skip
+__all__ = ["Heats", "Span", "Split", "density", "flash", "flash_sound_speed", "heats", "is_frozen", "is_liquid",
+           "saturation_temperature", "sound_speed", "span", "vapour_pressure", "viscosity"]  # fmt: skip
 
 MEMORY = 1 << 16
 """Values remembered of each property: a list of valves repeats the same few states over and over."""
@@ -47,6 +47,16 @@ class Split(NamedTuple):
 
     quality: float
     density: float
+
+
+class Heats(NamedTuple):
+    """What an isenthalpic expansion is reckoned from: J/kg before it, and of both phases behind it; kg/m3 of these."""
+
+    inlet: float
+    liquid: float
+    vapour: float
+    liquid_density: float
+    vapour_density: float
 
 
 _NOTHING = Split(math.nan, math.nan)
@@ -219,6 +229,28 @@ def flash(fluid: str, t: float, p1: float, p2: float) -> Split:
         return _NOTHING
     v_liquid, v_vapour = (1.0 / _saturated(fluid, p2, q, lambda state: state.rhomass()) for q in (0.0, 1.0))
     return Split(x, 1.0 / ((1.0 - x) * v_liquid + x * v_vapour))
+
+
+@lru_cache(MEMORY)
+def flash_sound_speed(fluid: str, t: float, p1: float, p2: float) -> float:
+    """Speed of sound in the mixture that :func:`flash` gives, m/s: both phases in equilibrium and at one velocity.
+
+    ``sqrt((dp/drho)_s)`` by a difference over 0.1 % of the pressure; NaN where nothing, or all, is vapour.
+    """
+    x = flash(fluid, t, p1, p2).quality
+    if not 0.0 < x < 1.0:
+        return math.nan
+    entropy = [_saturated(fluid, p2, q, lambda state: state.smass()) for q in (0.0, 1.0)]
+    s = entropy[0] + x * (entropy[1] - entropy[0])
+    low, high = (_value(fluid, "PSmass_INPUTS", p2 * k, s, lambda state: state.rhomass()) for k in (0.9995, 1.0005))
+    return math.sqrt(1e-3 * p2 / (high - low)) if high > low else math.nan
+
+
+def heats(fluid: str, t: float, p1: float, p2: float) -> Heats:
+    """The terms of :func:`flash`; NaN where there is no such state."""
+    h, d = (tuple(_saturated(fluid, p2, q, read) for q in (0.0, 1.0))
+            for read in (lambda state: state.hmass(), lambda state: state.rhomass()))  # fmt: skip
+    return Heats(_enthalpy(fluid, t, p1), *h, *d)
 
 
 def _quality(fluid: str, h: float, p: float) -> float:

@@ -301,5 +301,5 @@ def throat_pressure(p1: q.P1, p2: q.P2, fl: q.FL, pv: q.PV = None, pc: q.PC = No
     throat = p1 - (p1 - p2) / (fl * fl)
     if pv is not None and pc is not None:
         floor = critical_pressure_factor(pv, pc) * pv
-        throat = np.where(np.isnan(floor), throat, np.fmax(throat, floor))
+        throat = np.where(np.isnan(floor), throat, np.maximum(throat, floor))
     return np.where(throat > 0.0, throat, np.nan)

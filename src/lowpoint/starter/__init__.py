@@ -22,7 +22,7 @@ def sample(*, us: bool = False) -> Plant:
 def sheet_bytes(*, us: bool = False) -> bytes:
     """The book as bytes, the same on every run; its formulas hold no values yet (``lowpoint recalc`` puts them in)."""
     from lowpoint.starter.assemble import assembled
-    from lowpoint.starter.packing import packed
+    from lowpoint.styling.packing import packed
 
     return packed(assembled(sample(us=us)))
 
@@ -32,4 +32,6 @@ def write_sheet(out: str | os.PathLike[str], *, us: bool = False) -> None:
 
     >>> write_sheet("valves.xlsx")  # doctest: +SKIP
     """
-    Path(out).write_bytes(sheet_bytes(us=us))
+    from lowpoint.book.saving import replace_file
+
+    replace_file(Path(out), lambda sink: sink.write(sheet_bytes(us=us)))

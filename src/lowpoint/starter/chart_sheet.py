@@ -10,9 +10,9 @@ from openpyxl.chart.shapes import GraphicalProperties
 from openpyxl.drawing.line import LineProperties
 from openpyxl.worksheet.pagebreak import Break
 
-from lowpoint.starter import style
 from lowpoint.starter.frame import Head, put_table
 from lowpoint.starter.plant import Plant
+from lowpoint.styling import style
 
 __all__ = ["CASES", "FIRST_ROW", "write"]
 

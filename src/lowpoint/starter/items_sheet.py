@@ -6,10 +6,10 @@ from typing import Any
 
 from openpyxl.comments import Comment
 
-from lowpoint.starter import style
 from lowpoint.starter.frame import FIRST, HEADINGS, ITEMS_LAST, Head, name_column, put_table
 from lowpoint.starter.notes import AUTHOR, unit_label
 from lowpoint.starter.plant import Plant
+from lowpoint.styling import style
 
 __all__ = ["KEYS", "write"]
 

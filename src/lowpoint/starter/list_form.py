@@ -17,11 +17,11 @@ from openpyxl.worksheet.datavalidation import DataValidation
 
 from lowpoint.physics.names import known_names
 from lowpoint.physics.typical import styles
-from lowpoint.starter import style
 from lowpoint.starter.list_example import TABLE, example_rows, table_rows
 from lowpoint.starter.list_units import heading_of
 from lowpoint.starter.notes import AUTHOR
-from lowpoint.starter.packing import packed
+from lowpoint.styling import style
+from lowpoint.styling.packing import packed
 from lowpoint.survey.fields import FIELDS, GROUPS, TABLE_FIELDS, ListField
 
 __all__ = ["ROWS", "list_bytes"]

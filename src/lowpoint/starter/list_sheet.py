@@ -10,11 +10,11 @@ from openpyxl.styles import Border, Side
 from openpyxl.utils import get_column_letter
 from openpyxl.worksheet.datavalidation import DataValidation
 
-from lowpoint.starter import style
 from lowpoint.starter.columns import COLUMNS, GROUPS, Column, for_estimates, for_tables
 from lowpoint.starter.frame import FIRST, HEADINGS, LAST, Head, name_column, put_headings, spelled, words_of_set
 from lowpoint.starter.notes import note, unit_label
 from lowpoint.starter.plant import Case, Item, Plant
+from lowpoint.styling import style
 
 __all__ = ["LETTERS", "TITLE", "inputs_of", "write"]
 

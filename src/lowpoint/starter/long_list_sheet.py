@@ -12,11 +12,11 @@ from typing import Any
 from openpyxl.utils import get_column_letter
 from openpyxl.worksheet.formula import ArrayFormula
 
-from lowpoint.starter import style
 from lowpoint.starter.columns import BY_KEY, Column
 from lowpoint.starter.frame import FIRST, HEADINGS, Head, put_headings, put_table, spelled
 from lowpoint.starter.notes import note, unit_label
 from lowpoint.starter.plant import Item, Plant, Readings
+from lowpoint.styling import style
 
 __all__ = ["COLUMNS", "LETTERS", "TITLE", "VALVE", "write"]
 

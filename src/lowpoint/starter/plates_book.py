@@ -8,12 +8,13 @@ from typing import Any
 
 import openpyxl
 
-from lowpoint.starter import plates_sheet, style
-from lowpoint.starter.packing import packed
+from lowpoint.starter import plates_sheet
 from lowpoint.starter.plates_columns import DESIGN, MOST, OTHER
 from lowpoint.starter.plates_data import DUTIES, PLANT
 from lowpoint.starter.plates_page import Page, letters_of
 from lowpoint.starter.readme_sheet import section
+from lowpoint.styling import style
+from lowpoint.styling.packing import packed
 
 __all__ = ["plates_bytes", "write_plates"]
 
@@ -65,7 +66,9 @@ def write_plates(out: str | os.PathLike[str]) -> None:
 
     >>> write_plates("plates.xlsx")  # doctest: +SKIP
     """
-    Path(out).write_bytes(plates_bytes())
+    from lowpoint.book.saving import replace_file
+
+    replace_file(Path(out), lambda sink: sink.write(plates_bytes()))
 
 
 def _read_me(sheet: Any, pages: list[Page]) -> None:

@@ -11,10 +11,10 @@ from openpyxl.chart.shapes import GraphicalProperties
 from openpyxl.drawing.line import LineProperties
 from openpyxl.drawing.spreadsheet_drawing import AnchorMarker, TwoCellAnchor
 
-from lowpoint.starter import style
 from lowpoint.starter.frame import Head, put_headings
 from lowpoint.starter.plates_columns import DESIGN, MOST, OTHER
 from lowpoint.starter.plates_page import WIDE, Page, letters_of
+from lowpoint.styling import style
 
 __all__ = ["HEADINGS", "STEPS", "write"]
 

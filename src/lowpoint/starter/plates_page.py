@@ -7,11 +7,11 @@ from typing import Any
 
 from openpyxl.utils import get_column_letter
 
-from lowpoint.starter import style
 from lowpoint.starter.columns import Column
 from lowpoint.starter.frame import Head, put_headings, spelled
 from lowpoint.starter.notes import note, unit_label
 from lowpoint.starter.plates_data import Duty
+from lowpoint.styling import style
 
 __all__ = ["FORMATS", "WIDE", "Page", "letters_of", "with_unit"]
 

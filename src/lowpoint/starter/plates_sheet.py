@@ -9,7 +9,7 @@ from openpyxl.worksheet.datavalidation import DataValidation
 from openpyxl.worksheet.formula import ArrayFormula
 from openpyxl.worksheet.pagebreak import Break
 
-from lowpoint.starter import plates_chart, plates_march, plates_margin, style
+from lowpoint.starter import plates_chart, plates_march, plates_margin
 from lowpoint.starter.frame import Head, put_headings
 from lowpoint.starter.plates_columns import (
     CASES,
@@ -25,6 +25,7 @@ from lowpoint.starter.plates_columns import (
 )
 from lowpoint.starter.plates_data import KEEP, PLANT, Duty
 from lowpoint.starter.plates_page import FORMATS, WIDE, Page, letters_of
+from lowpoint.styling import style
 
 __all__ = ["write"]
 

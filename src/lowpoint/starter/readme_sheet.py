@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from typing import Any
 
-from lowpoint.starter import style
 from lowpoint.starter.plant import Plant
+from lowpoint.styling import style
 from lowpoint.units import DIMENSIONS
 
 __all__ = ["section", "write"]

@@ -10,10 +10,10 @@ from openpyxl.worksheet.datavalidation import DataValidation
 
 from lowpoint.reference import words_of
 from lowpoint.registry import functions
-from lowpoint.starter import style
 from lowpoint.starter.frame import Head, name_column, put_headings, put_table, spelled, words_of_set
 from lowpoint.starter.notes import unit_label
 from lowpoint.starter.plant import Plant
+from lowpoint.styling import style
 
 __all__ = ["write_site", "write_valves", "write_words"]
 

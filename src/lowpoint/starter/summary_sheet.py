@@ -8,11 +8,11 @@ from openpyxl.chart import BarChart, Reference
 from openpyxl.chart.label import DataLabelList
 from openpyxl.chart.shapes import GraphicalProperties
 
-from lowpoint.starter import style
 from lowpoint.starter.frame import LAST, Head, put_table
 from lowpoint.starter.list_sheet import LETTERS
 from lowpoint.starter.list_sheet import TITLE as LIST
 from lowpoint.starter.plant import Plant
+from lowpoint.styling import style
 
 __all__ = ["STATES", "WORST", "write"]
 

@@ -8,8 +8,11 @@ from pathlib import Path
 from typing import Any
 
 from lowpoint import __version__
+from lowpoint.survey.inputs import given_inputs, tables_as_data
 from lowpoint.survey.limiting import LIMITS
 from lowpoint.survey.model import Findings, Survey
+from lowpoint.survey.outcome import Remedy
+from lowpoint.survey.staying import stay_words
 from lowpoint.units import dimension
 
 __all__ = ["as_json", "unit_labels"]
@@ -32,16 +35,21 @@ def unit_labels(system: str) -> dict[str, str]:
     return {kind: dimension(kind).unit(system).label for kind in kinds}
 
 
-def as_json(
-    survey: Survey, system: str = "metric", remedies: Mapping[int, Sequence[Any]] | None = None
-) -> dict[str, Any]:
-    """The whole survey; ``remedies`` by place of the case. Where ``errors`` stand, ``regime`` is null."""
-    said = remedies or {}
+def as_json(survey: Survey, system: str = "metric") -> dict[str, Any]:
+    """The whole survey. Where ``errors`` stand, ``regime`` is null."""
+    said = {tag: [_remedy(remedy, system) for remedy in found] for tag, found in survey.remedies.items()}
     columns = _columns(survey, system)
-    cases = [_case(survey, place, system, columns, said.get(place, ())) for place in range(survey.cases.count)]
+    cases = [
+        _case(survey, place, system, columns, said.get(survey.cases.tag[place], ()))
+        for place in range(survey.cases.count)
+    ]
+    for place, (case, given) in enumerate(zip(cases, given_inputs(survey.cases, system), strict=True)):
+        case["given"] = given
+        case["sensitivity"] = _sensitivity(survey, place, system)
     return {
         "list": Path(survey.reading.path).name, "version": __version__, "fingerprint": survey.reading.fingerprint,
         "units": unit_labels(system), "reading": _reading(survey), "cases": cases, "items": _items(survey),
+        "tables": tables_as_data(survey.cases.tables, system), "tolerances": _tolerances(survey, system),
         "exit_code": survey.exit_code,
     }  # fmt: skip
 
@@ -85,6 +93,26 @@ def _case(survey: Survey, place: int, system: str, columns: Mapping[str, list[fl
     }  # fmt: skip
 
 
+def _remedy(remedy: Remedy, system: str) -> dict[str, Any]:
+    figures = {}
+    for name, (value, kind) in remedy.figures.items():
+        unit = dimension(kind).unit(system)
+        figures[name] = {"value": number((value - unit.offset) / unit.factor), "unit": unit.label}
+    return {"kind": remedy.kind, "text": remedy.text, "cures": remedy.cures, "margin": number(remedy.margin),
+            "figures": figures, "verdicts": list(remedy.verdicts), "cautions": list(remedy.cautions)}  # fmt: skip
+
+
+def _sensitivity(survey: Survey, place: int, system: str) -> dict[str, Any] | None:
+    """How sure the verdict of a case is; None where there is no verdict, or nothing was drawn."""
+    found = survey.sensitivity
+    if found is None or survey.findings.regime[place] is None:
+        return None
+    numbers = {name: number(float(getattr(found, name)[place])) for name in ("low", "high", "stays", "swing",
+                                                                               "unanswered")}  # fmt: skip
+    return {**numbers, "dominant": found.dominant[place], "proven": bool(found.proven[place]),
+            "text": stay_words(found, place, survey.findings, system)}  # fmt: skip
+
+
 def _bases(findings: Findings, place: int) -> dict[str, str | None]:
     found: dict[str, str | None] = {}
     for name in LIMITS:
@@ -92,6 +120,14 @@ def _bases(findings: Findings, place: int) -> dict[str, str | None]:
         basis = findings.incipient_basis if name == "incipient" else findings.limits_basis
         found[name] = basis[place] if given else None
     return found | {"choked": findings.fl_basis[place]}
+
+
+def _tolerances(survey: Survey, system: str) -> dict[str, Any] | None:
+    found = survey.sensitivity
+    if found is None:
+        return None
+    stated = {t.field: {"size": t.words(system), "basis": t.basis} for t in found.tolerances}
+    return {"draws": found.draws, "seed": found.seed, "inputs": stated}
 
 
 def _reading(survey: Survey) -> dict[str, Any]:

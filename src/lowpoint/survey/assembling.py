@@ -15,6 +15,7 @@ from lowpoint.survey.sheet import SheetColumns
 
 __all__ = ["assemble", "blank_cases"]
 
+ELSEWHERE = "Save the list as .xlsx or .ods, and give the table on a second sheet with the columns Table and Travel."
 SOURCED = ("p2", "pv", "pc", "density", "viscosity", "sound_speed", "fl", "fd", "incipient", "flow")
 """Fields whose values can come from more than the cell of their row."""
 FIXED = ("kind", "style", "valve_size", "pipe_in", "pipe_out", "rated", "characteristic", "table", "bore",
@@ -31,8 +32,13 @@ def blank_cases(count: int) -> Cases:
     return Cases(**columns)
 
 
-def assemble(parts: Sequence[SheetColumns], tables: Mapping[str, TravelTable], problems: list[Problem]) -> Cases:
-    """The cases of all sheets in order; twins and contradictions are added to the problems."""
+def assemble(
+    parts: Sequence[SheetColumns], tables: Mapping[str, TravelTable], problems: list[Problem], one_sheet: bool = False
+) -> Cases:
+    """The cases of all sheets in order; twins and contradictions are added to the problems.
+
+    ``one_sheet``: the file can hold no other sheet (a csv), so no vendors' tables.
+    """
     counts = [len(part.rows) for part in parts]
     starts = np.concatenate([[0], np.cumsum(counts)]).astype(int).tolist()
     blank = blank_cases(starts[-1])
@@ -51,7 +57,7 @@ def assemble(parts: Sequence[SheetColumns], tables: Mapping[str, TravelTable], p
     told = [(start + i, text) for part, start in zip(parts, starts, strict=False) for i, text in part.told]
     asked = {key: [start + i for part, start in zip(parts, starts, strict=False) for i in part.asked.get(key, ())]
              for key in ("fl", "fd", "incipient")}  # fmt: skip
-    letters = parts[0].letters if parts else {}
+    letters = {part.sheet: part.letters for part in parts}
     spoiled += _tags(columns, problems, letters)
     source = {key: given_words(columns[key]) for key in SOURCED}
     estimate = blank.estimate
@@ -64,7 +70,7 @@ def assemble(parts: Sequence[SheetColumns], tables: Mapping[str, TravelTable], p
     _of_the_item(columns, source, estimate, codes)
     told += _twins(columns, codes, problems, letters)
     columns["kind"] = np.where(absent(columns["kind"]), "valve", columns["kind"])
-    spoiled += _strange_tables(columns, tables, problems, letters)
+    spoiled += _strange_tables(columns, tables, problems, letters, one_sheet)
     return Cases(**{**columns, "estimate": estimate}, tables=dict(tables), source=source, problems=tuple(spoiled),
                  remarks=tuple(told))  # fmt: skip
 
@@ -83,12 +89,16 @@ def _renumber(parts: Sequence[SheetColumns], starts: Sequence[int], problems: li
             problems[i] = replace(problem, row=-1 if start is None else problem.row + start)
 
 
-def _named(columns: Mapping[str, Any], place: int, key: str, letters: Mapping[str, int]) -> str:
-    row = int(columns["row"][place])
-    return cell_name(row, letters[key]) if key in letters else f"{row}:{row}"
+Letters = Mapping[str, Mapping[str, int]]
+"""Column of each field by sheet."""
 
 
-def _tags(columns: dict[str, Any], problems: list[Problem], letters: Mapping[str, int]) -> list[tuple[int, str]]:
+def _named(columns: Mapping[str, Any], place: int, key: str, letters: Letters) -> str:
+    row, own = int(columns["row"][place]), letters[columns["sheet"][place]]
+    return cell_name(row, own[key]) if key in own else f"{row}:{row}"
+
+
+def _tags(columns: dict[str, Any], problems: list[Problem], letters: Letters) -> list[tuple[int, str]]:
     """Rows without a tag get one by their row, and a fault."""
     spoiled = []
     for place in np.flatnonzero(absent(columns["tag"])).tolist():
@@ -130,7 +140,7 @@ def _of_the_item(columns: dict[str, Any], source: dict[str, Any], estimate: Any,
 
 
 def _contradictions(
-    columns: Mapping[str, Any], codes: Any, problems: list[Problem], letters: Mapping[str, int]
+    columns: Mapping[str, Any], codes: Any, problems: list[Problem], letters: Letters
 ) -> list[tuple[int, str]]:
     """Rows whose item has another value of what it can have only one of."""
     told = []
@@ -150,9 +160,7 @@ def _contradictions(
     return told
 
 
-def _twins(
-    columns: Mapping[str, Any], codes: Any, problems: list[Problem], letters: Mapping[str, int]
-) -> list[tuple[int, str]]:
+def _twins(columns: Mapping[str, Any], codes: Any, problems: list[Problem], letters: Letters) -> list[tuple[int, str]]:
     """Rows with the tag and case of an earlier one."""
     seen: dict[tuple[int, Any], int] = {}
     told = []
@@ -161,9 +169,11 @@ def _twins(
         if first == place:
             continue
         name = f"case '{case}'" if case else "no case"
+        sheet, other = str(columns["sheet"][place]), str(columns["sheet"][first])
+        where = f"row {columns['row'][first]}" + (f" of {other}" if other != sheet else "")
         problem = Problem(
-            str(columns["sheet"][place]), _named(columns, place, "case" if "case" in letters else "tag", letters), "",
-            f"{columns['tag'][place]} with {name} stands already in row {columns['row'][first]}; both were judged",
+            sheet, _named(columns, place, "case" if "case" in letters[sheet] else "tag", letters), "",
+            f"{columns['tag'][place]} with {name} stands already in {where}; both were judged",
             "Give every case of an item its own name, or delete one row.", place, False,
         )  # fmt: skip
         problems.append(problem)
@@ -172,17 +182,22 @@ def _twins(
 
 
 def _strange_tables(
-    columns: dict[str, Any], tables: Mapping[str, TravelTable], problems: list[Problem], letters: Mapping[str, int]
+    columns: dict[str, Any],
+    tables: Mapping[str, TravelTable],
+    problems: list[Problem],
+    letters: Letters,
+    one_sheet: bool,
 ) -> list[tuple[int, str]]:
     """Rows that name a table that is not there."""
     spoiled = []
     for place, name in enumerate(columns["table"].tolist()):
         if name is None or name in tables:
             continue
-        known = f"known are {', '.join(tables)}" if tables else "no sheet of the file has one"
+        known = f"known are {', '.join(tables)}" if tables else "no sheet of the file has one that can"
         problem = Problem(str(columns["sheet"][place]), _named(columns, place, "table", letters), f"'{name}'",
-                          f"no table of this name can be used; {known}",
-                          "Give it on a sheet with the columns Table and Travel.", place)  # fmt: skip
+                          f"no table of this name can be used; {'a csv has no sheet for one' if one_sheet else known}",
+                          ELSEWHERE if one_sheet else "Give it on a sheet with the columns Table and Travel.",
+                          place)  # fmt: skip
         problems.append(problem)
         spoiled.append((place, problem.sentence()))
     return spoiled

@@ -20,7 +20,7 @@ from lowpoint.survey.model import Cases, Findings, Flags, absent, number_fields,
 from lowpoint.survey.plating import plate_findings
 from lowpoint.survey.setting import set_findings
 
-__all__ = ["calculate", "filled_pipes", "possible"]
+__all__ = ["at_opening", "calculate", "filled_pipes", "possible", "valve_findings"]
 
 LOW_TRAVEL, HIGH_TRAVEL = 0.1, 0.9
 ROUNDING = 1.0 + 1e-12
@@ -30,7 +30,7 @@ def calculate(cases: Cases) -> Findings:
     """The numbers of ``cases``, which must be complete (:func:`lowpoint.survey.completing.complete`)."""
     with np.errstate(all="ignore"):
         columns = _blank(cases.count)
-        for kind, found in (("valve", _valves), ("orifice", plate_findings), ("plates", set_findings)):
+        for kind, found in (("valve", valve_findings), ("orifice", plate_findings), ("plates", set_findings)):
             rows = np.flatnonzero((cases.kind == kind) & possible(cases))
             if not len(rows):
                 continue
@@ -64,9 +64,10 @@ def filled_pipes(cases: Cases) -> tuple[Any, Any, Any]:
     return cases.valve_size, pipe_in, np.where(np.isnan(cases.pipe_out), pipe_in, cases.pipe_out)
 
 
-def _valves(cases: Cases) -> dict[str, Any]:
+def valve_findings(cases: Cases) -> dict[str, Any]:
+    """Columns of ``Findings`` for valves."""
     sizes = filled_pipes(cases)
-    travel, fl, basis = _at_opening(cases, sizes)
+    travel, fl, basis = at_opening(cases, sizes)
     usable = ~np.isnan(cases.viscosity) & ~np.isnan(sizes[0]) & ~np.isnan(cases.fd) & ~absent(cases.trim)
     viscous = (np.where(usable, cases.viscosity, np.nan), cases.fd, cases.trim.astype(str)) if usable.any() else ()
     state = (cases.flow, cases.p1, cases.p2, cases.pv, cases.pc, cases.density, fl)
@@ -93,7 +94,7 @@ def _rated(cases: Cases) -> Any:
     return rated
 
 
-def _at_opening(cases: Cases, sizes: tuple[Any, Any, Any]) -> tuple[Any, Any, Any]:
+def at_opening(cases: Cases, sizes: tuple[Any, Any, Any]) -> tuple[Any, Any, Any]:
     """Opening and FL of valves whose table gives FL by travel; the given FL, its basis and no opening for others."""
     travel, fl = np.full(cases.count, np.nan), cases.fl.copy()
     basis = np.where(absent(cases.fl_basis), "tested", cases.fl_basis)
@@ -152,7 +153,7 @@ def _verdicts(cases: Cases, columns: dict[str, Any]) -> Findings:
     for name, limit in limits.items():
         columns[f"margin_{name}"] = sigma / limit - 1.0
     _kept(cases, columns, limits)
-    columns["allowed_drop"] = np.where(columns["limit"] > 1.0, head / columns["limit"], np.nan)
+    columns["allowed_drop"] = np.where((columns["limit"] > 1.0) & (head > 0.0), head / columns["limit"], np.nan)
     columns["allowed_outlet"] = cases.p1 - np.where(of_set, np.nan, columns["allowed_drop"])
     columns["index"] = from_upstream(sigma, form_of(cases))
     columns["basis"] = _basis(columns)

@@ -6,6 +6,8 @@ from typing import Any
 
 import numpy as np
 
+from lowpoint.physics.flashing import flash_sound_speed
+from lowpoint.physics.names import resolve
 from lowpoint.survey.calculating import filled_pipes
 from lowpoint.survey.judged_plates import caution_plates
 from lowpoint.survey.limiting import scale_factors, stated
@@ -27,6 +29,11 @@ TOO_SMALL = (
 LOW, HIGH = "the opening is below 10 per cent of travel", "the opening is above 90 per cent of travel"
 NO_PURE = "how much flashes is not known: it can be computed for pure liquids of known name and temperature only"
 
+SONIC = (
+    "the flashing mixture would leave at {:.4g} m/s, faster than its own sound of {:.4g} m/s (homogeneous "
+    "equilibrium): the outlet chokes there and p2 is not reached at the valve; a wider outlet, or a vessel behind it"
+)
+
 
 def add_cautions(cases: Cases, findings: Findings, answered: Any, lines: Lines) -> None:
     """Add the cautions of every case that has an answer."""
@@ -39,6 +46,19 @@ def add_cautions(cases: Cases, findings: Findings, answered: Any, lines: Lines) 
     lines.caution(answered & findings.low_travel, LOW)
     lines.caution(answered & findings.high_travel, HIGH)
     lines.caution(answered & findings.flashing & np.isnan(findings.flash_share), NO_PURE)
+    _of_sound(cases, findings, lines)
+
+
+def _of_sound(cases: Cases, findings: Findings, lines: Lines) -> None:
+    """Where the mixture that leaves chokes its own outlet: a finding of its own, whatever the valve does."""
+    rows = np.flatnonzero((findings.flash_share > 0.0) & (findings.flash_share < 1.0))
+    if not len(rows):
+        return
+    names = np.array([resolve(name) for name in cases.fluid[rows].tolist()])
+    sound = flash_sound_speed(names, cases.t[rows], cases.p1[rows], cases.p2[rows])
+    for place, own, speed in zip(rows.tolist(), sound.tolist(), findings.outlet_velocity[rows].tolist(), strict=True):
+        if speed > own:
+            lines.cautions.append((place, SONIC.format(speed, own)))
 
 
 def _of_valves(cases: Cases, findings: Findings, rows: Any, lines: Lines) -> None:
@@ -102,8 +122,9 @@ def _of_limits(cases: Cases, findings: Findings, answered: Any, lines: Lines) ->
     scaled = valve & (by_size | by_head)
     no_credit = (by_size & (cases.valve_size < cases.size_ref)) | (by_head & (cases.p1 - cases.pv < cases.head_ref))
     lines.caution(scaled & no_credit, "the size or head is below the tested one: no credit is given for it")
-    lines.caution(some & (cases.method == "tullis"), "the form of the scale method tullis is from memory")
-    lines.caution(some & absent(cases.limits_basis), "the basis of the limits is not stated: taken as tested")
+    own = some & (cases.kind != "plates")  # a set has those of its plates
+    lines.caution(own & (cases.method == "tullis"), "the form of the scale method tullis is from memory")
+    lines.caution(own & absent(cases.limits_basis), "the basis of the limits is not stated: taken as tested")
     of_fl = answered & (cases.kind == "valve") & absent(cases.fl_basis)
     lines.caution(of_fl, "the basis of FL is not stated: taken as tested")
     lines.caution(answered & np.isnan(findings.incipient), NO_INCIPIENT)

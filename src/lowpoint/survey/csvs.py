@@ -7,17 +7,20 @@ leave no doubt. Where they do, the numbers in question are named one by one and 
 from __future__ import annotations
 
 import csv
+import io
 import os
 import re
 from pathlib import Path
 
 from lowpoint.book import guard
+from lowpoint.book.guard_cells import CellCount
+from lowpoint.book.guard_limits import in_force
 from lowpoint.errors import BookError
 from lowpoint.survey.fields import FIELDS, TABLE_FIELDS
 from lowpoint.survey.grids import Grid, Sheets
 from lowpoint.survey.headers import LOOKED_AT, read_heading, text_of
 
-__all__ = ["read_text"]
+__all__ = ["SEPARATORS", "decoded", "parsed", "read_text"]
 
 SEPARATORS = (",", ";", "\t", "|")
 _DECIMAL_COMMA = re.compile(r"[+-]?\d+,\d+(?:[eE][+-]?\d+)?")
@@ -30,7 +33,7 @@ _LONGEST = 100_000
 def read_text(path: str | os.PathLike[str]) -> Sheets:
     """The list of a text file; BookError where it is none."""
     data = guard.load(path)
-    text, notes = _decoded(data, str(path))
+    text, notes = decoded(data, str(path))
     separator, lines = _separated(text, str(path))
     rows = [(number, [value.strip() or None for value in values]) for number, values in enumerate(lines, 1)]
     rows = [(number, values) for number, values in rows if any(values)]
@@ -44,7 +47,8 @@ def read_text(path: str | os.PathLike[str]) -> Sheets:
 _NAMES = {",": "commas", ";": "semicolons", "\t": "tabs", "|": "strokes"}
 
 
-def _decoded(data: bytes, name: str) -> tuple[str, list[str]]:
+def decoded(data: bytes, name: str) -> tuple[str, list[str]]:
+    """A file's bytes as text, and what is to be said about its encoding."""
     if b"\0" in data[:4096] and not data.startswith((b"\xff\xfe", b"\xfe\xff")):
         raise BookError(name, "must be a list as text", guard.looks_like(data), "Save it as .csv or .xlsx.")
     for codec in ("utf-16",) if data.startswith((b"\xff\xfe", b"\xfe\xff")) else ("utf-8-sig",):
@@ -60,14 +64,14 @@ def _separated(text: str, name: str) -> tuple[str, list[list[str]]]:
     first, _, rest = text.partition("\n")
     declared = re.fullmatch(r"sep=(.)\r?", first.strip("\ufeff "))
     if declared:
-        return declared[1], [[], *_parsed(rest, declared[1], name)]
-    best, lines, most = ",", _parsed(text, ",", name), -1
+        return declared[1], [[], *parsed(rest, declared[1], name)]
+    best, lines, most = ",", parsed(text, ",", name), -1
     for separator in SEPARATORS:
         if separator in text[:20_000]:
-            parsed = _parsed(text, separator, name)
-            known = max((_known(values) for values in parsed[:LOOKED_AT]), default=0)
+            trial = parsed(text, separator, name)
+            known = max((_known(values) for values in trial[:LOOKED_AT]), default=0)
             if known > most:
-                best, lines, most = separator, parsed, known
+                best, lines, most = separator, trial, known
     return best, lines
 
 
@@ -78,10 +82,15 @@ def _known(values: list[str]) -> int:
     )
 
 
-def _parsed(text: str, separator: str, name: str) -> list[list[str]]:
+def parsed(text: str, separator: str, name: str) -> list[list[str]]:
+    """The values of each line; BookError where one is longer than any list has, or there are too many."""
     csv.field_size_limit(_LONGEST)
+    counted, lines = CellCount(name, in_force()), []
     try:
-        return list(csv.reader(text.splitlines(keepends=True), delimiter=separator))
+        for values in csv.reader(io.StringIO(text, newline=""), delimiter=separator):
+            counted.add(len(values))
+            lines.append(values)
+        return lines
     except csv.Error as problem:
         raise BookError(name, f"cannot be read as a list ({problem})", remedy="Save it anew as .csv.") from None
 

@@ -122,10 +122,11 @@ FIELDS: tuple[ListField, ...] = (
     _number("flow", "liquid", "Flow", "m3/h", q.Flow, "Volume or mass flow, at flowing conditions.", "Q", "Flow rate",
             "Volume flow", "Mass flow", "Flowrate", "W", scope="case"),
     _number("p1", "liquid", "p1", "bar", q.P1, "At the inlet, before the reducer. Say bar a or bar g in the heading.",
-            "Inlet pressure", "Upstream pressure", "Pressure in", "Inlet pressure p1", "P in", "Pin", scope="case"),
+            "Inlet pressure", "Upstream pressure", "Pressure in", "Inlet pressure p1", "Inlet pressure p1, absolute",
+            "P in", "Pin", scope="case"),
     _number("p2", "liquid", "p2", "bar", q.P2, "At the outlet, behind the expander; or give the place of the outlet.",
-            "Outlet pressure", "Downstream pressure", "Pressure out", "Outlet pressure p2", "P out", "Pout",
-            "Back pressure", scope="case"),
+            "Outlet pressure", "Downstream pressure", "Pressure out", "Outlet pressure p2",
+            "Outlet pressure p2, absolute", "P out", "Pout", "Back pressure", scope="case"),
     _number("pv", "liquid", "pv", "bar", q.PV, "Vapour pressure at the inlet temperature; goes before the computed "
             "one.", "Vapour pressure", "Vapor pressure", "Vapour pressure pv", "Psat", "Saturation pressure",
             scope="case"),
@@ -245,5 +246,5 @@ CARRIED = (
 )  # fmt: skip
 """Columns that lists often have and that say nothing about cavitation: left alone without a word."""
 
-NOT_JUDGED = frozenset({"service", "pipe_wall", "sound_speed", "spacing"})
+NOT_JUDGED = frozenset({"case", "service", "pipe_wall", "sound_speed", "spacing"})
 """Fields that no verdict rests on: an unreadable cell there is told, and the row judged."""

@@ -22,6 +22,8 @@ class Grid:
     """First row, first column, last row, last column."""
     unvalued: frozenset[tuple[int, int]] = frozenset()
     """(row, column) of formulas that hold no value."""
+    percent: frozenset[tuple[int, int]] = frozenset()
+    """(row, column) of cells that show a share as per cent, where a heading asks for per cent."""
     state: str = "visible"
     all_text: bool = False
     """Whether every cell is text, as in a csv."""

@@ -13,8 +13,9 @@ from typing import Any
 from lowpoint.physics.unitnames import Meaning, meaning
 from lowpoint.survey.fields import CARRIED, FIELDS, TABLE_FIELDS, ListField
 from lowpoint.survey.grids import Grid
+from lowpoint.survey.own_sheet import LEFT_ALONE, first_line, is_own
 
-__all__ = ["Heading", "Place", "find_headings", "read_heading"]
+__all__ = ["Heading", "Place", "are_units", "find_headings", "read_heading"]
 
 LOOKED_AT = 40
 """Rows from the top among which the headings are looked for."""
@@ -35,6 +36,8 @@ class Heading:
     unit: str | None = None
     problem: str = ""
     remedy: str = ""
+    left: bool = False
+    """Whether it is known, and no input: a result, or what another column stands for."""
 
 
 @dataclass(frozen=True)
@@ -45,6 +48,8 @@ class Place:
     first: int
     headings: dict[int, Heading]
     catalogue: tuple[ListField, ...]
+    own: bool = False
+    """Whether it is a sheet with LP_ formulas, see :mod:`lowpoint.survey.own_sheet`."""
 
 
 def _folded(text: str) -> str:
@@ -193,15 +198,18 @@ def find_headings(grid: Grid) -> Place | None:
     row, values = grid.rows[place]
     units = _units_below(grid, place)
     headings = {}
+    own = is_own([text_of(value) for value in values])
     for column, value in enumerate(values):
         text = text_of(value)
-        if text:
+        if own and first_line(text) in LEFT_ALONE:
+            headings[column] = Heading(text, None, left=True)
+        elif text:
             found = read_heading(text, catalogue)
             if found.unit is None and units and column < len(units) and units[column]:
                 found = Heading(text, found.field, units[column])
             headings[column] = with_unit(found)
     return Place(row, grid.rows[place + (2 if units else 1)][0] if _more(grid, place, units) else row + 1, headings,
-                 catalogue)  # fmt: skip
+                 catalogue, own)  # fmt: skip
 
 
 def _more(grid: Grid, place: int, units: list[str]) -> bool:
@@ -210,12 +218,19 @@ def _more(grid: Grid, place: int, units: list[str]) -> bool:
 
 def _units_below(grid: Grid, place: int) -> list[str]:
     """The texts of a row of units right below the headings; empty where the next row is none."""
-    if place + 1 >= len(grid.rows):
-        return []
-    texts = [text_of(value).strip("[]()") if isinstance(value, str) else value for value in grid.rows[place + 1][1]]
-    filled = [text for text in texts if text not in (None, "")]
-    if not filled or not all(isinstance(text, str) for text in filled):
-        return []
-    units = sum(_unit_of(text) is not None for text in filled)
-    fits = all(_unit_of(text) is not None or text in _PLAIN_SIGNS for text in filled)
-    return [text or "" for text in texts] if fits and units >= 2 else []
+    below = grid.rows[place + 1][1] if place + 1 < len(grid.rows) else []
+    return [_unit_text(value) for value in below] if are_units(below) else []
+
+
+def _unit_text(value: Any) -> str:
+    return text_of(value).strip("[]()") if isinstance(value, str) else ""
+
+
+def are_units(values: Sequence[Any]) -> bool:
+    """Does a row hold units and signs of plain ratios, and nothing else?"""
+    filled = [value for value in values if value not in (None, "")]
+    if not filled or not all(isinstance(value, str) for value in filled):
+        return False
+    texts = [_unit_text(value) for value in filled]
+    units = sum(_unit_of(text) is not None for text in texts)
+    return units >= 2 and all(_unit_of(text) is not None or text in _PLAIN_SIGNS for text in texts)

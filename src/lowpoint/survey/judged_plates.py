@@ -7,6 +7,8 @@ from typing import Any
 import numpy as np
 
 from lowpoint import design
+from lowpoint.survey.fields import BY_KEY
+from lowpoint.survey.limiting import LIMITS
 from lowpoint.survey.model import Cases, Findings
 from lowpoint.survey.setting import kept_kind, rate_rows, set_groups
 from lowpoint.survey.speaking import Lines, cautions_of
@@ -18,6 +20,8 @@ MORE = (
     "the plates pass {:.4g} m3/h at these pressures, more than the flow wanted: something else in the line must take "
     "the rest of the drop"
 )
+OF_SET = "the {} limit that is given was not used: a set is judged plate by plate, with the published limits of each"
+OF_VALVES = "{} is given and was not used: it belongs to valves; limits of a plate hold as they are given"
 AGREED = 0.02
 """Share by which the flow that plates pass may differ from the one wanted without a word: drills leave that much."""
 
@@ -27,6 +31,7 @@ def caution_plates(cases: Cases, findings: Findings, answered: Any, lines: Lines
     plates = answered & (cases.kind != "valve")
     if not plates.any():
         return
+    _unused(cases, plates, lines)
     for place in np.flatnonzero(plates).tolist():
         passed, wanted = float(findings.passed[place]), float(cases.flow[place])
         if abs(passed / wanted - 1.0) > AGREED:
@@ -41,6 +46,16 @@ def caution_plates(cases: Cases, findings: Findings, answered: Any, lines: Lines
             columns = [int(name) - 1 for name in note.cases] or range(len(places))
             where = f"plate {note.plate}: " if note.plate else ""
             lines.cautions += [(int(places[column]), where + note.text) for column in columns]
+
+
+def _unused(cases: Cases, plates: Any, lines: Lines) -> None:
+    """What the list gives and plates do not take, by name."""
+    sets = plates & (cases.kind == "plates")
+    for name in LIMITS:
+        lines.caution(sets & ~np.isnan(getattr(cases, name)), OF_SET.format(name))
+    for name in ("xfz", "size_ref", "head_ref"):
+        lines.caution(plates & ~np.isnan(getattr(cases, name)), OF_VALVES.format(BY_KEY[name].heading))
+    lines.caution(plates & cases.estimate, OF_VALVES.format("the estimate of the incipient limit"))
 
 
 def _of_single(cases: Cases, findings: Findings, rows: Any, lines: Lines) -> None:

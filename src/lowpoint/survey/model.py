@@ -22,7 +22,8 @@ import numpy.typing as npt
 from lowpoint.survey.travel import Numbers, TravelTable
 
 if TYPE_CHECKING:
-    from lowpoint.survey.outcome import Remedy, Sensitivity
+    from lowpoint.survey.listed_rows import ListRows
+    from lowpoint.survey.outcome import Remedy, Sensitivity, Tolerance
 
 __all__ = ["Cases", "Findings", "Flags", "Item", "Numbers", "Problem", "ReadColumn", "Reading", "Survey", "TravelTable",
            "Words", "absent", "number_fields", "word_fields"]  # fmt: skip
@@ -299,7 +300,8 @@ class ReadColumn:
     unit: str
     """As written, or what the heading itself means (DN: mm); empty for words and plain ratios."""
     status: str
-    """``used``, ``carried`` (a remark, not used), ``unknown``, ``twice``, ``no unit``, ``wrong unit``."""
+    """``used``, ``carried`` (a remark, not used), ``result`` (of an earlier survey, not used), ``unknown``, ``twice``,
+    ``no unit``, ``wrong unit``."""
 
 
 @dataclass(frozen=True)
@@ -323,6 +325,10 @@ class Reading:
     """Site elevation from the command line or above the table, m."""
     fingerprint: str = ""
     """SHA-256 of the file."""
+    lists: tuple[ListRows, ...] = field(default=(), repr=False)
+    """The sheets of ``sheets`` as they were read; columns of an earlier survey's results are left out."""
+    tolerances: tuple[Tolerance, ...] = ()
+    """How far inputs may be off, where the list states it."""
 
     def unknown(self) -> tuple[ReadColumn, ...]:
         return tuple(c for c in self.columns if c.status == "unknown")

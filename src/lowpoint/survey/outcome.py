@@ -10,7 +10,8 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 
-from lowpoint.survey.model import Cases, Numbers, Words
+from lowpoint.survey.model import Cases, Flags, Numbers, Words
+from lowpoint.units import dimension
 
 __all__ = ["Line", "Picture", "Remedy", "Sensitivity", "Step", "Tolerance", "Working"]
 
@@ -20,16 +21,21 @@ class Tolerance:
     """How far one input may be off."""
 
     field: str
-    """Field of :class:`~lowpoint.survey.model.Cases` that moves, or the group's name (``pressures``)."""
+    """Field of :class:`~lowpoint.survey.model.Cases` that moves, or ``limits``."""
     size: float
     """Half-width: a share of the value, or an amount in SI."""
     relative: bool
     basis: str
     """Where it comes from: ``default``, ``list``, ``command line``."""
 
-    def words(self) -> str:
-        """``± 2 %`` or ``± 1 K``, in SI; the faces show it in their own units."""
-        return f"± {100.0 * self.size:g} %" if self.relative else f"± {self.size:g}"
+    def words(self, system: str = "metric") -> str:
+        """``± 2 %``, ``± 1 K``, ``± 0.1 bar``; ``± 1.8 deg F`` in US units."""
+        if self.relative:
+            return f"± {100.0 * self.size:.4g} %"
+        unit = dimension({"t": "temperature", "flow": "flow"}.get(self.field, "pressure")).unit(system)
+        # A difference of temperatures is told from a temperature.
+        label = "K" if unit.label == "deg C" else unit.label
+        return f"± {self.size / unit.factor:.4g} {label}"
 
 
 @dataclass(frozen=True, eq=False)
@@ -40,15 +46,20 @@ class Sensitivity:
     draws: int
     seed: int
     low: Numbers
-    """Margin with every input at its adverse end."""
+    """Margin with every input at its adverse end; not above the least that an input alone, or a draw, gave."""
     high: Numbers
-    """Margin with every input at its favourable end."""
+    """Margin with every input at its favourable end; not below the largest."""
     stays: Numbers
     """Share of draws in which the case does not fail, 0 to 1. A nominal failure stays one whatever this says."""
     dominant: Words
-    """The input that moves the margin most within its tolerance."""
+    """The input that moves the margin most within its tolerance: a field, as in ``tolerances``."""
     swing: Numbers
     """How far that input alone moves the margin, from end to end."""
+    proven: Flags
+    """Whether ``stays`` (1 or 0) holds for every set of inputs within the tolerances, so that nothing was drawn."""
+    unanswered: Numbers
+    """Share of draws without an answer (p2 not below p1, fittings that take the whole drop, an opening off the
+    valve's table); they count as failing."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -56,8 +67,8 @@ class Remedy:
     """One way to cure an item, tried on all its cases by the same core."""
 
     kind: str
-    """``staged trim``, ``plate downstream``, ``back-pressure``, ``lower location``, ``lower temperature``,
-    ``higher recovery factor``, ``split``, ``larger valve``, ``flashing`` (advice only)."""
+    """``staged trim``, ``plate downstream``, ``plates in series``, ``back-pressure``, ``lower location``,
+    ``lower temperature``, ``higher recovery factor``, ``split``, ``larger valve``, ``flashing`` (advice only)."""
     text: str
     """The whole in one sentence, with its number, in metric units."""
     figures: Mapping[str, tuple[float, str]]
@@ -82,26 +93,40 @@ class Step:
     symbol: str
     meaning: str
     equation: str
-    """In symbols: ``(p1 - pv)/(p1 - p2)``; empty for an input."""
+    """In symbols: ``(p1 - pv)/(p1 - p2)``; empty for an input, and for what is found by search or by a library."""
     numbers: str
-    """The same with the printed numbers: ``(6.813 - 0.02339)/(6.813 - 5.213)``, plain arithmetic; empty for an
-    input."""
+    """The same with the printed numbers: ``(6.813 - 0.02339)/(6.813 - 5.213)``, plain arithmetic in the grammar of
+    :mod:`lowpoint.survey.workings.arithmetic`; empty where ``equation`` is."""
     value: str
-    """As printed."""
+    """As printed; ``yes`` or ``no`` of a comparison; a word of a verdict."""
     unit: str
     source: str
-    """Of the equation, or of the input: ``given``, ``computed: ...``, ``typical``."""
+    """Of the equation: a key of :data:`lowpoint.sources.SOURCES`. Of an input: where it stands or came from."""
     note: str = ""
+    also: str = ""
+    """The same quantity in US units, where these were asked for: ``23.2 psi``."""
 
 
 @dataclass(frozen=True)
 class Working:
-    """The whole working of one case, in sections."""
+    """The whole working of one case, in sections. Units are those of the standard: bar, m3/h, mm, Kv."""
 
     title: str
     sections: tuple[tuple[str, tuple[Step, ...]], ...]
     verdict: str
     cautions: tuple[str, ...] = ()
+    errors: tuple[str, ...] = ()
+    """Why the case has no verdict; the sections then hold what could be worked out."""
+    citations: tuple[tuple[str, str], ...] = ()
+    """Each source that a step names, with its full citation."""
+    figures: int = 7
+    """Significant figures of every number."""
+    results: Mapping[str, float] = field(default_factory=dict)
+    """What the working comes to, in SI, by the field of :class:`~lowpoint.survey.model.Findings`."""
+
+    def steps(self) -> tuple[Step, ...]:
+        """All steps in order."""
+        return tuple(step for _, steps in self.sections for step in steps)
 
 
 @dataclass(frozen=True)
@@ -115,6 +140,8 @@ class Line:
     """``line``, ``dashed``, ``dotted``, ``points``: told apart without colour."""
     labels: tuple[str, ...] = ()
     """Of the points, where they have names (the cases)."""
+    marker: str = ""
+    """On each point: ``circle``, ``triangle``, ``diamond``, ``square``, ``cross``, ``plus``; empty for none."""
 
 
 @dataclass(frozen=True)

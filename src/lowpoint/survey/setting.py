@@ -15,14 +15,15 @@ __all__ = ["rate_rows", "set_findings", "set_groups"]
 
 
 def set_groups(cases: Cases) -> Iterator[tuple[tuple[Any, ...], Any]]:
-    """Rows with one and the same set of plates in one pipe."""
+    """Rows with one and the same set of plates in one pipe; those with a viscosity apart from those without."""
+    names = ("pipe_in", "bore_length", "holes", "spacing")
+    columns = [np.nan_to_num(getattr(cases, name)).tolist() for name in names]
+    columns.append(np.isnan(cases.viscosity).tolist())
     keys: dict[tuple[Any, ...], list[int]] = {}
-    for place in range(cases.count):
-        key = (cases.bores[place], *(float(np.nan_to_num(getattr(cases, name)[place]))
-                                     for name in ("pipe_in", "bore_length", "holes", "spacing")))  # fmt: skip
+    for place, key in enumerate(zip(cases.bores.tolist(), *columns, strict=True)):
         keys.setdefault(key, []).append(place)
     for key, rows in keys.items():
-        yield key, np.array(rows)
+        yield key[:-1], np.array(rows)
 
 
 def plates_of(key: tuple[Any, ...]) -> design.PlateSet:
@@ -34,7 +35,7 @@ def plates_of(key: tuple[Any, ...]) -> design.PlateSet:
 
 def rate_rows(cases: Cases, key: tuple[Any, ...], kind: str) -> design.Rating:
     """The rating of a set in cases between their two pressures, with nothing else in the line."""
-    viscosity: Any = None if np.isnan(cases.viscosity).any() else cases.viscosity
+    viscosity: Any = None if np.isnan(cases.viscosity).any() else cases.viscosity  # a group has it, or has it not
     liquid = design.Liquid(density=cases.density, pv=cases.pv, pc=cases.pc, viscosity=viscosity)
     duties = design.Cases(flow=cases.flow, p1=cases.p1, p2=cases.p2, liquid=liquid, held="both",
                           names=tuple(str(i + 1) for i in range(cases.count)))  # fmt: skip

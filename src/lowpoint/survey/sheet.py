@@ -13,19 +13,23 @@ from lowpoint.physics.site import barometric_pressure
 from lowpoint.physics.unitnames import meaning
 from lowpoint.problems import shown
 from lowpoint.survey import values
+from lowpoint.survey.above import SITE, above_table, of_its_item
 from lowpoint.survey.fields import BY_KEY, NOT_JUDGED, ListField
 from lowpoint.survey.grids import Grid, cell_name
-from lowpoint.survey.headers import Heading, Place, is_carried, nearest, read_heading, text_of
+from lowpoint.survey.headers import LEAST, Heading, Place, are_units, is_carried, nearest, text_of
+from lowpoint.survey.listed_rows import ListRows, listed_rows
 from lowpoint.survey.model import Numbers, Problem, ReadColumn
+from lowpoint.survey.own_sheet import REMARK, is_remark
+from lowpoint.survey.result_columns import is_result
 from lowpoint.units import KV
 
 __all__ = ["SheetColumns", "listed", "read_sheet"]
 
 GAUGE = "Add a column 'Site elevation [m]' or 'Atmosphere [bar]', a line 'Site elevation [m]' with its number above " \
     "the table, or --elevation METRES; or write bar a where the pressures are absolute."  # fmt: skip
+BELOW_NOTHING = "A gauge pressure cannot lie further below nought than the atmosphere of the site."
 DIFFERENCES = frozenset({"head_ref", "outlet_loss"})
 """Differences of pressure, which are neither gauge nor absolute."""
-SITE = ("elevation", "atmosphere")
 
 
 @dataclass(eq=False)
@@ -45,6 +49,8 @@ class SheetColumns:
     elevation: float | None = None
     letters: dict[str, int] = field(default_factory=dict)
     """Column (from 0) that each field was read from."""
+    table: ListRows | None = None
+    """The rows as they were read."""
 
 
 class _Reader:
@@ -54,6 +60,7 @@ class _Reader:
         self.grid, self.place, self.problems = grid, place, problems
         self.data = [(number, cells) for number, cells in grid.rows if number >= place.first and number > place.row]
         self.data = [(number, cells) for number, cells in self.data if any(c not in (None, "") for c in cells)]
+        self.data = list(self._without_headings())
         self.index = {number: i for i, (number, _) in enumerate(self.data)}
         self.out = SheetColumns(grid.sheet, [number for number, _ in self.data], listed(grid, place))
 
@@ -69,6 +76,24 @@ class _Reader:
     def fault(self, what: ListField, column: int, fault: values.Fault) -> None:
         cell = cell_name(self.out.rows[fault.place], column)
         self.tell(cell, shown(fault.value), fault.text, fault.remedy, fault.place, what.key not in NOT_JUDGED)
+
+    def _without_headings(self) -> Iterator[tuple[int, list[Any]]]:
+        """The rows without those that repeat the headings, as at the top of every printed page; they are told."""
+        texts = {column: heading.text for column, heading in self.place.headings.items()}
+        looked_at = [*texts][:LEAST]
+        again = False
+        for number, cells in self.data:
+            alike = any(column < len(cells) and cells[column] == texts[column] for column in looked_at)
+            same = (
+                sum(text_of(cells[column]) == texts[column] for column in texts if column < len(cells)) if alike else 0
+            )
+            again = same >= LEAST or (again and are_units(cells))
+            if not again:
+                yield number, cells
+                continue
+            text = "the headings stand here again; the row was left out"
+            problem = Problem(self.grid.sheet, f"{number}:{number}", "", text, "Delete the row.", spoils=False)
+            self.problems.append(problem)
 
     # --- columns -------------------------------------------------------------------------------------------------
 
@@ -95,7 +120,7 @@ class _Reader:
         return found
 
     def _unknown(self, cell: str, heading: Heading) -> None:
-        if is_carried(heading.text):
+        if heading.left or is_carried(heading.text) or is_result(heading.text):
             return
         near = nearest(heading.text, self.place.catalogue)
         hint = f"Did you mean '{near}'? " if near else ""
@@ -176,11 +201,19 @@ class _Reader:
             factor = meaning(heading.unit or "m").factor
             found, faults = values.bores(what, cells, factor, self.grid.decimal if self.grid.all_text else ".")
         else:
-            found, faults = values.words(what, cells)
+            found, faults = values.words(what, self._without_remarks(what, cells))
             self._formula_like(what, column, found)
         self.out.words[what.key] = found
         for fault in faults:
             self.fault(what, column, fault)
+
+    def _without_remarks(self, what: ListField, cells: list[Any]) -> list[Any]:
+        """A characteristic that only names the table whose formulas stand in the row is none."""
+        if not self.place.own or what.key != "characteristic":
+            return cells
+        names = [is_remark(cell) for cell in cells]
+        self.out.told += [(place, REMARK.format(name)) for place, name in enumerate(names) if name]
+        return [None if name else cell for name, cell in zip(names, cells, strict=True)]
 
     def _formula_like(self, what: ListField, column: int, found: Any) -> None:
         for place, text in enumerate(found):
@@ -196,12 +229,30 @@ class _Reader:
         if typed.asked:
             self.out.asked[what.key] = typed.asked
         x = typed.values
+        if self.grid.percent and "%" in (heading.unit or ""):
+            x = self._shown_percent(what, column, x)
+        if self.grid.all_text or x is not typed.values:
+            self._typed(column, x)
         if what.quantity is not None and what.quantity.zero_is_blank and what.scope == "item":
             x = np.where(x == 0.0, np.nan, x)
         key, si = self._si(what, heading, x)
         if what.quantity is not None and key == what.key:
             si = self._bounded(what, heading, column, x, si)
         self.out.numbers[key] = si
+
+    def _shown_percent(self, what: ListField, column: int, x: Numbers) -> Numbers:
+        """Numbers of a column in per cent whose cells show shares as per cent: 0.1 that is shown as 10 %."""
+        shown = [(number, column + 1) in self.grid.percent for number in self.out.rows]
+        if any(shown):
+            where = f"{what.heading} of {self.grid.sheet}"
+            self.out.notes.append(f"{where}: cells that are formatted as per cent were read as they are shown")
+        return np.where(shown, 100.0 * x, x)
+
+    def _typed(self, column: int, x: Numbers) -> None:
+        """Numbers in place of the texts that they were read from, for whoever shows the rows again."""
+        for (_, cells), value in zip(self.data, x.tolist(), strict=True):
+            if value == value:
+                cells[column] = value
 
     def _si(self, what: ListField, heading: Heading, x: Numbers) -> tuple[str, Numbers]:
         """The field's numbers in SI; a mass flow and a kinematic viscosity keep fields of their own."""
@@ -228,8 +279,9 @@ class _Reader:
             return si
         for place in np.flatnonzero(bad).tolist():
             value = shown(float(x[place]), heading.unit or "")
-            self.tell(cell_name(self.out.rows[place], column), value, f"{what.heading} {clause(place)}",
-                      what.quantity.remedy, place, what.key not in NOT_JUDGED)  # fmt: skip
+            remedy = BELOW_NOTHING if heading.unit and meaning(heading.unit).gauge else what.quantity.remedy
+            self.tell(cell_name(self.out.rows[place], column), value, f"{what.heading} {clause(place)}", remedy, place,
+                      what.key not in NOT_JUDGED)  # fmt: skip
         return np.where(bad, np.nan, si)
 
 
@@ -250,7 +302,8 @@ def listed(grid: Grid, place: Place) -> list[ReadColumn]:
     for column, heading in place.headings.items():
         key = heading.field.key if heading.field else ""
         if not key:
-            status = "carried" if is_carried(heading.text) else "unknown"
+            known = "result" if is_result(heading.text) else "carried"
+            status = known if heading.left or is_carried(heading.text) or known == "result" else "unknown"
         elif seen[key] > 1:
             status = "twice"
         elif heading.problem:
@@ -274,11 +327,13 @@ def read_sheet(grid: Grid, place: Place, elevation: float | None, problems: list
     first = [(column, heading) for column, heading in used.items() if _is(heading, "tag", *SITE)]
     for column, heading in first:
         reader.read(column, heading)
-    _site(reader, elevation)
+    site = _site(reader, elevation)
     used = _with_atmosphere(reader, used)
     for column, heading in used.items():
         if (column, heading) not in first:
             reader.read(column, heading)
+    reader.out.table, notes = listed_rows(grid.sheet, place, reader.data, reader.out.letters, site)
+    reader.out.notes += notes
     return reader.out
 
 
@@ -286,50 +341,27 @@ def _is(heading: Heading, *keys: str) -> bool:
     return heading.field is not None and heading.field.key in keys
 
 
-def _of_its_item(x: Numbers, tags: Any) -> Numbers:
-    """Blanks filled from the first row of the same tag that has a value."""
-    known: dict[Any, float] = {}
-    for tag, value in zip(tags, x.tolist(), strict=True):
-        if tag is not None and value == value:
-            known.setdefault(tag, value)
-    return np.array(
-        [known.get(tag, value) if value != value else value for tag, value in zip(tags, x.tolist(), strict=True)]
-    )
+def _site(reader: _Reader, elevation: float | None) -> dict[str, float]:
+    """The atmosphere of every row: its own, that of its elevation, of the line above the table, of the command.
 
-
-def _site(reader: _Reader, elevation: float | None) -> None:
-    """The atmosphere of every row: its own, that of its elevation, of the line above the table, of the command."""
+    Gives what holds for all rows, by field, SI.
+    """
     out, count = reader.out, len(reader.data)
-    above = dict(_above(reader.grid, reader.place))
+    above = dict(above_table(reader.grid, reader.place))
     out.elevation = above.get("elevation")
     for key, value in above.items():
         out.notes.append(f"{BY_KEY[key].heading} was read from above the table of {reader.grid.sheet}")
         if key == "elevation":
             elevation = value
     tags = out.words.get("tag", np.full(count, None, object))
-    height, given = (_of_its_item(out.numbers.get(key, np.full(count, np.nan)), tags) for key in SITE)
+    height, given = (of_its_item(out.numbers.get(key, np.full(count, np.nan)), tags) for key in SITE)
     site = above.get("atmosphere", np.nan)
     if elevation is not None and np.isnan(site):
         height = np.where(np.isnan(height) & np.isnan(given), elevation, height)
     out.numbers["elevation"] = height
     found = np.where(np.isnan(height), site, barometric_pressure(height))
     out.numbers["atmosphere"] = np.where(np.isnan(given), found, given)
-
-
-def _above(grid: Grid, place: Place) -> Iterator[tuple[str, float]]:
-    """Elevation or atmosphere written above the table: a heading, and its number in the next filled cell."""
-    for number, cells in grid.rows:
-        if number >= place.row:
-            return
-        for column, cell in enumerate(cells):
-            heading = read_heading(text_of(cell), place.catalogue) if isinstance(cell, str) and cell else None
-            if heading is None or heading.field is None or not _is(heading, *SITE) or not heading.unit:
-                continue
-            following = next((c for c in cells[column + 1 :] if c not in (None, "")), None)
-            typed = values.numbers(heading.field, [following], grid.decimal, grid.all_text)
-            if typed.faults or np.isnan(typed.values[0]):
-                continue
-            yield heading.field.key, float(values.to_si(typed.values, meaning(heading.unit))[0])
+    return above if elevation is None else {**above, "elevation": elevation}
 
 
 def _with_atmosphere(reader: _Reader, used: dict[int, Heading]) -> dict[int, Heading]:

@@ -10,6 +10,7 @@ from lowpoint.problems import counted
 from lowpoint.survey.fields import BY_KEY
 from lowpoint.survey.items import ORDER, verdict
 from lowpoint.survey.model import Item, Reading, Survey
+from lowpoint.survey.staying import stay_words
 
 __all__ = ["reading_lines", "survey_lines"]
 
@@ -54,7 +55,7 @@ def _shortened(texts: list[str], most: int) -> str:
     return ", ".join(texts[:most]) + (f" ... and {len(texts) - most} more" if len(texts) > most else "")
 
 
-def survey_lines(survey: Survey, most: int = SHOWN) -> Iterator[str]:
+def survey_lines(survey: Survey, most: int = SHOWN, system: str = "metric") -> Iterator[str]:
     """Counts, the items that fail or have no answer, and the nearest of the others."""
     counts = Counter(item.regime for item in survey.items)
     said = [f"{counts[word]} {word}" for word in ORDER if counts[word]]
@@ -62,10 +63,11 @@ def survey_lines(survey: Survey, most: int = SHOWN) -> Iterator[str]:
     items, cases = counted(len(survey.items), "item"), counted(survey.cases.count, "case")
     yield f"{items}, {cases}; by their worst case: {', '.join(said) or 'none'}"
     failing = sorted((i for i in survey.items if i.fails), key=_by_margin)
-    yield from _listed("fail", failing, most)
-    yield from _listed("have cases without an answer", [i for i in survey.items if i.unanswered and not i.fails], most)
+    yield from _listed(survey, "fail", failing, most, system)
+    unanswered = [i for i in survey.items if i.unanswered and not i.fails]
+    yield from _listed(survey, "have cases without an answer", unanswered, most, system)
     kept = sorted((i for i in survey.items if not i.fails and not i.unanswered), key=_by_margin)
-    yield from _listed("are kept, nearest first", kept, 5)
+    yield from _listed(survey, "are kept, nearest first", kept, 5, system)
     yield from _errors(survey, most)
 
 
@@ -73,14 +75,31 @@ def _by_margin(item: Item) -> float:
     return math.inf if math.isnan(item.margin) else item.margin
 
 
-def _listed(what: str, items: list[Item], most: int) -> Iterator[str]:
+def _listed(survey: Survey, what: str, items: list[Item], most: int, system: str) -> Iterator[str]:
     if items:
         yield f"{len(items)} {what}:"
         width = max(len(item.tag) for item in items[:most])
         for item in items[:most]:
             yield f"  {item.tag:<{width}}  {verdict(item.regime, item.basis):<20}  {item.why}"
+            yield from (f"  {'':<{width}}    {line}" for line in _more(survey, item, system))
         if len(items) > most:
             yield f"  ... and {len(items) - most} more"
+
+
+def _more(survey: Survey, item: Item, system: str) -> Iterator[str]:
+    """How sure the verdict is, and what would cure a failure."""
+    if survey.sensitivity is not None and item.worst >= 0 and not math.isnan(item.margin):
+        yield stay_words(survey.sensitivity, item.worst, survey.findings, system)
+    remedies = survey.remedies.get(item.tag, ())
+    for remedy in remedies:
+        if remedy.kind == "flashing":
+            yield from (remedy.text, *(f"  {line}" for line in remedy.cautions))
+    found = [remedy for remedy in remedies if remedy.kind != "flashing"]
+    cures = [remedy for remedy in found if remedy.cures]
+    for remedy in cures[:1] or found[:1]:
+        yield f"{'remedy' if remedy.cures else 'no cure was found; nearest to it'}: {remedy.text}"
+    if len(cures) > 1:
+        yield "also: " + ", ".join(dict.fromkeys(remedy.kind for remedy in cures[1:]))
 
 
 def _errors(survey: Survey, most: int) -> Iterator[str]:

@@ -15,14 +15,19 @@ from lowpoint.survey.sheet import SheetColumns, read_sheet
 
 __all__ = ["read_tables"]
 
+SMALLEST = 0.01
+"""A table that ends at no more than this share of the travel is none."""
 COLUMNS = ("coefficient", "fl", "xfz", "incipient", "constant", "damage", "vibration")
 
 
-def read_tables(sheets: Sequence[tuple[Grid, Place]], problems: list[Problem]) -> dict[str, TravelTable]:
-    """Every table by its name; one that cannot be used is told and left out."""
+def read_tables(
+    sheets: Sequence[tuple[Grid, Place]], problems: list[Problem], notes: list[str]
+) -> dict[str, TravelTable]:
+    """Every table by its name; one that cannot be used is told and left out; notes are added."""
     found: dict[str, TravelTable] = {}
     for grid, place in sheets:
         part = read_sheet(grid, place, None, problems)
+        notes += part.notes
         if "table" not in part.words or "travel" not in part.numbers:
             continue
         names = part.words["table"]
@@ -61,6 +66,8 @@ def _fault(table: TravelTable) -> str:
         values = getattr(table, key)
         if values is not None and np.isnan(values).any():
             return f"{key} is blank in some of its rows"
+    if table.travel[-1] <= SMALLEST:
+        return "its travel ends at 1 % or less, as shares do that are written under a heading in per cent"
     if table.coefficient is not None and not (np.diff(table.coefficient) > 0.0).all():
         return "its coefficient must increase with travel"
     return ""

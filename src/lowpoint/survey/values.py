@@ -21,11 +21,13 @@ from lowpoint.units import dimension
 
 __all__ = ["Fault", "NumberCells", "as_text", "bores", "is_formula_like", "numbers", "out_of_bounds", "words"]
 
+RETYPE = "Type the number, and format the cell as one."
+DATED = "A program may have made a date of a number such as 5.8: format the cell as a number, and type it again."
 BLANKS = frozenset({"", "-", "–", "—"})
 """Texts that stand for a blank cell; dashes are how lists are filled up."""
 _PLAIN = frozenset({float, int, type(None)})
 _NUMBER = re.compile(r"[+-]?(?:\d+(?P<mark>[.,])?\d*|(?P<lead>[.,])\d+)(?:[eE][+-]?\d+)?")
-_ERROR = re.compile(r"#(?:N/A|NUM!|VALUE!|REF!|NAME\?|DIV/0!|NULL!|SPILL!|CALC!)")
+_ERROR = re.compile(r"#(?:N/A|NUM!|VALUE!|REF!|NAME\?|DIV/0!|NULL!|SPILL!|CALC!)|Err:\d+")
 _FORMULA = re.compile(r"[=@\t\r]|[+-](?=[^\d\s.,])")
 ASKED = {"fl": TYPICAL, "fd": TYPICAL, "incipient": ESTIMATE}
 """The word that may stand in place of a number, by field."""
@@ -61,9 +63,9 @@ def numbers(what: ListField, cells: Sequence[Any], decimal: str = ".", all_text:
         if isinstance(cell, str):
             _take_text(what, column, place, cell.strip(), decimal if all_text else "")
         elif isinstance(cell, bool) or not isinstance(cell, int | float):
-            kind = "a date" if isinstance(cell, datetime.date | datetime.time) else "a logical value"
-            must = f"{what.heading} must be a number and is {kind}"
-            column.faults.append(Fault(place, cell, must, "Type the number, and format the cell as one."))
+            dated = isinstance(cell, datetime.date | datetime.time | datetime.timedelta)
+            must = f"{what.heading} must be a number and is {'a date or time' if dated else 'a logical value'}"
+            column.faults.append(Fault(place, str(cell) if dated else cell, must, DATED if dated else RETYPE))
         else:
             column.values[place] = cell
     return column
@@ -138,6 +140,9 @@ def words(what: ListField, cells: Sequence[Any]) -> tuple[Words, list[Fault]]:
         text = as_text(cell)
         if text is None:
             continue
+        if _ERROR.fullmatch(text):
+            faults.append(Fault(place, cell, f"{what.heading} holds an error", "Cure its formula, or type the text."))
+            continue
         if what.what == "text":
             found[place] = text
             continue
@@ -160,6 +165,8 @@ def as_text(cell: Any) -> str | None:
         return None
     if isinstance(cell, float) and cell.is_integer() and abs(cell) < 1e15:
         return str(int(cell))
+    if isinstance(cell, datetime.datetime) and cell.time() == datetime.time():
+        cell = cell.date()
     text = str(cell).strip()
     return None if text in BLANKS else text
 

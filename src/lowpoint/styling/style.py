@@ -16,9 +16,9 @@ from openpyxl.styles.differential import DifferentialStyle
 from openpyxl.worksheet.page import PageMargins
 
 __all__ = [
-    "BAND", "COLOURS", "FORMATS", "HEAD", "INDENTED", "INPUT", "LEFT", "LINE_BELOW", "NOTE", "PLAIN", "SUBTITLE",
-    "TITLE", "TOP", "TOP_NUMBER", "WRAP", "chart_title", "fill", "font", "heading", "mark_errors", "mark_verdicts",
-    "mark_word", "print_setup", "rule", "title",
+    "BAND", "CENTRE_TOP", "COLOURS", "FORMATS", "HEAD", "INDENTED", "INPUT", "LEFT", "LINE_BELOW", "NOTE", "PLAIN",
+    "SUBTITLE", "TITLE", "TOP", "TOP_NUMBER", "WRAP", "chart_title", "fill", "font", "heading", "mark_errors",
+    "mark_verdicts", "mark_word", "print_setup", "rule", "title", "verdict_colours",
 ]  # fmt: skip
 
 COLOURS = {
@@ -59,6 +59,7 @@ WRAP = Alignment(wrap_text=True, vertical="top", indent=1)
 TOP = Alignment(horizontal="left", vertical="top", indent=1)
 TOP_NUMBER = Alignment(horizontal="right", vertical="top")
 CENTRE = Alignment(horizontal="center", vertical="center", wrap_text=True)
+CENTRE_TOP = Alignment(horizontal="center", vertical="top", wrap_text=True)
 LINE_BELOW = Border(bottom=Side(style="thin", color=COLOURS["line"]))
 
 FORMATS = {
@@ -84,10 +85,10 @@ def title(sheet: Any, text: str, subtitle: str) -> None:
     sheet.sheet_view.showGridLines = False
 
 
-def chart_title(text: str) -> Any:
-    """A chart's title in the size of the book's headings."""
-    run = RegularTextRun(rPr=CharacterProperties(sz=1100, b=True, solidFill=COLOURS["deep"]), t=text)
-    paragraph = Paragraph(pPr=ParagraphProperties(defRPr=CharacterProperties(sz=1100, b=True)), r=[run])
+def chart_title(text: str, size: int = 1100) -> Any:
+    """A title of a chart or of its axis; ``size`` in hundredths of a point, by default that of the book's headings."""
+    run = RegularTextRun(rPr=CharacterProperties(sz=size, b=True, solidFill=COLOURS["deep"]), t=text)
+    paragraph = Paragraph(pPr=ParagraphProperties(defRPr=CharacterProperties(sz=size, b=True)), r=[run])
     return Title(tx=Text(rich=RichText(p=[paragraph])), overlay=False)
 
 
@@ -116,6 +117,14 @@ def mark_verdicts(sheet: Any, area: str, first: str) -> None:
     add(area, rule(_holds(first, ("no answer",)), "fault", ink="bad", bold=True))
     add(area, rule(_holds(first, _MIDDLE), "watch", ink="ink"))
     add(area, rule(_holds(first, ("clear",)), "good", ink="ink"))
+
+
+def verdict_colours(text: str) -> tuple[str, str]:
+    """Fill and ink of a cell that holds this verdict, as :func:`mark_verdicts` has them."""
+    for words, colours in ((_WORST, ("bad", "white")), (("no answer",), ("fault", "bad")), (_MIDDLE, ("watch", "ink"))):
+        if any(word in text for word in words):
+            return colours
+    return "good", "ink"
 
 
 def mark_errors(sheet: Any, area: str, first: str) -> None:

@@ -1,0 +1,130 @@
+"""What the commands for many books share: options, pools, what is printed, how a run ends."""
+
+from __future__ import annotations
+
+import argparse
+import json
+import sys
+from collections.abc import Callable, Iterable, Sequence
+from contextlib import closing
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from lowpoint.errors import LowpointError
+from lowpoint.faces.progress import Bar, progress_bar
+from lowpoint.problems import counted
+
+if TYPE_CHECKING:
+    from lowpoint.fleet.pools import Pool
+    from lowpoint.fleet.running import Result
+    from lowpoint.fleet.stopping import Stopper
+    from lowpoint.fleet.summary import Summary
+    from lowpoint.fleet.tasks import Task
+
+__all__ = ["add_options", "check_options", "pool_of", "run_fleet", "wants_fleet"]
+
+INTERRUPTED = 130
+
+
+def add_options(parser: argparse.ArgumentParser) -> None:
+    """The options of a fleet."""
+    add = parser.add_argument_group("many books").add_argument
+    add("--recursive", action="store_true", help="open the sub-folders of folders too")
+    add("--jobs", type=int, default=1, metavar="N", help="how many books are worked on at once, each by a process "
+        "of its own (default 1)")  # fmt: skip
+    add("--dask", metavar="ADDRESS", help="work on a Dask cluster, as tcp://host:8786, one book a worker at a time; "
+        "the books are sent there and back, no shared folder is needed (extra [cluster])")  # fmt: skip
+    add("--since-last", action="store_true", help="skip books that are as they were at the last run with this option, "
+        "and their outputs too; remembered in .lowpoint-state.json beside the outputs")  # fmt: skip
+    add("--trail", type=Path, metavar="FILE", help="add a line of JSON for each book to a file, as each is finished")
+
+
+def check_options(options: argparse.Namespace) -> None:
+    """LowpointError where the options contradict."""
+    if options.jobs < 1:
+        raise LowpointError("--jobs", "must be at least 1", str(options.jobs))
+    if options.dask is not None and options.jobs != 1:
+        raise LowpointError("--dask", "must stand without --jobs", "both", "The cluster's workers are all used.")
+
+
+def wants_fleet(options: argparse.Namespace) -> bool:
+    """Does an option ask for the machinery of fleets, even for a single book?"""
+    return bool(options.dask or options.since_last or options.trail)
+
+
+def pool_of(options: argparse.Namespace, books: int | None) -> Pool:
+    """Who works on the books; ``books`` is how many there are, None where more may come."""
+    if options.dask is not None:
+        from lowpoint.fleet.cluster import Cluster
+
+        return Cluster(options.dask, options.json)
+    if books == 1:
+        from lowpoint.fleet.pools import Here
+
+        return Here(options.json)
+    from lowpoint.fleet.processes import Processes
+
+    # One worker too is better than none: a book that brings it down does not end the run.
+    return Processes(options.jobs if books is None else min(options.jobs, books), options.json)
+
+
+def run_fleet(tasks: Sequence[Task], options: argparse.Namespace) -> int:
+    """Do all tasks, print what came of each in their order, then a summary; the exit code of all."""
+    from lowpoint.fleet.running import Records, results
+    from lowpoint.fleet.stopping import Stopper
+    from lowpoint.fleet.summary import Summary
+
+    summary = Summary(len(tasks))
+    with Stopper() as stopper, progress_bar() as bar, Records(options.trail, options.since_last, _warn(bar)) as records:
+        pool = pool_of(options, len(tasks))
+        found = results(tasks, pool, records, stopper, lambda done: bar("books", done, len(tasks)))
+        try:
+            with closing(pool), closing(found):
+                _print_all(found, summary, options.json, bar, stopper)
+        except KeyboardInterrupt:
+            with stopper.held():
+                bar.close()
+                _end(summary, options.json)
+                left = counted(len(tasks) - summary.books, "book")
+                print(f"lowpoint: interrupted; {left} not done and left as they were", file=sys.stderr)
+                return INTERRUPTED
+    _end(summary, options.json)
+    return summary.exit_code
+
+
+def _print_all(found: Iterable[Result], summary: Summary, as_json: bool, bar: Bar, stopper: Stopper) -> None:
+    """One value alone for ``--json``: a list that grows as the books are finished, and is closed whatever happens."""
+    if as_json:
+        _print("[")
+    try:
+        for result in found:
+            with stopper.held():
+                if as_json:
+                    data = json.dumps(result.outcome.data, indent=2, ensure_ascii=False)
+                    _print(("," if summary.books else "") + "\n" + data)
+                else:
+                    bar.close()
+                    _print(result.outcome.text + "\n")
+                summary.add(result)
+    finally:
+        if as_json:
+            _print("\n]\n")
+
+
+def _print(text: str) -> None:
+    sys.stdout.write(text)
+    sys.stdout.flush()
+
+
+def _end(summary: Summary, as_json: bool) -> None:
+    if not as_json:
+        for line in summary.lines():
+            print(line)
+
+
+def _warn(bar: Bar) -> Callable[[str], None]:
+    def warn(text: str) -> None:
+        bar.close()
+        print(f"lowpoint: {text}", file=sys.stderr)
+
+    return warn

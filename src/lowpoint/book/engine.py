@@ -12,18 +12,23 @@ Traps of formualizer 0.13, found by trial, and how they are met here:
   ``diagnostics`` says when iteration took place.
 * Cycles are judged at run time, as spreadsheet programs do: ``=IF(TRUE,3,A4)`` in A4 is no circle.
 * An unknown function inside IFERROR is swallowed silently: such a formula must be blocked by its text.
-* The time limit is looked at between layers of cells only: one call-back or one array is not interrupted.
+* The time limit is looked at between layers of cells only: one call-back or one array is not interrupted (a worker
+  process that is ended from outside is the only cure; an array is refused above ten million cells).
 * NaN and infinity from a call-back come through as they are; 1.0 and -0.0 print as "1" and "-0".
 """
 
 from __future__ import annotations
 
 import datetime
+import inspect
 import math
 import re
+import threading
+import time
+import weakref
 from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass
-from functools import lru_cache
+from functools import lru_cache, partial
 from typing import Any, NamedTuple
 
 import formualizer as fz
@@ -124,6 +129,10 @@ def _from_cell(value: Any) -> Any:
     return float(value)
 
 
+def _same(callback: Callable[..., Any]) -> Callable[..., Any]:
+    return callback
+
+
 class Word(NamedTuple):
     """One word of a formula: its text, what it is (Operand, Func, OpInfix, ...) and which kind (Range, Open, ...)."""
 
@@ -177,15 +186,16 @@ class Engine:
     [[<CellError.DIV0: '#DIV/0!'>, 5.0]]
     """
 
-    def __init__(self, book: fz.Workbook, seconds: float) -> None:
+    def __init__(self, book: fz.Workbook, seconds: float, name: str = "the workbook") -> None:
         book.set_temporal_egress("serial")
-        self._book = book
+        self._book, self._name = book, name
         self._seconds = seconds
+        self._until: float | None = None  # set when the first evaluation begins
         self._failure: BaseException | None = None
 
     @classmethod
     def load(cls, data: bytes, *, date1904: bool = False, seconds: float = 120.0, name: str = "the workbook") -> Engine:
-        """Load a package that holds only what the engine can read; ``seconds`` bounds each evaluation."""
+        """Load a package that holds only what the engine can read; ``seconds`` bounds all evaluations together."""
         config = _config(seconds, date1904)
         try:
             book = fz.Workbook.from_bytes(data, config=config)
@@ -193,7 +203,7 @@ class Engine:
             raise BookError(
                 name, "must hold formulas that the engine can load", _short(trouble), "Please report this workbook."
             ) from trouble
-        return cls(book, seconds)
+        return cls(book, seconds, name)
 
     @classmethod
     def empty(cls, *sheets: str, seconds: float = 120.0) -> Engine:
@@ -207,14 +217,28 @@ class Engine:
     def evaluate(self) -> None:
         """Evaluate whatever changed; BookError when the time is up, a call-back's own exception as it was."""
         self._book.reset_cancel()
+        bell = threading.Timer(self.check_time(), self._book.cancel)
+        bell.daemon = True
+        bell.start()
         try:
             self._book.evaluate_all()
         except Exception as trouble:
             if self._failure is None:
                 raise self._stopped(trouble) from trouble
+        finally:
+            bell.cancel()
         failure, self._failure = self._failure, None
         if failure is not None:
             raise failure
+
+    def check_time(self) -> float:
+        """The seconds that are left for evaluating this book; BookError where there are none."""
+        now = time.monotonic()
+        if self._until is None:
+            self._until = now + self._seconds
+        if now >= self._until:
+            raise self._late()
+        return self._until - now
 
     def cancel(self) -> None:
         """Stop a running evaluation, from another thread or a call-back."""
@@ -224,14 +248,23 @@ class Engine:
         """Make ``name`` a function of the book; it gets and gives cells, ranges are lists of rows.
 
         An argument left out arrives as 0.0. An exception stops the evaluation and comes out of :meth:`evaluate`.
+        The book keeps call-backs where no collector of garbage sees them: were one to hold the engine, or the owner of
+        a method, the whole book would stay in memory for good. Whoever registers a method must keep its owner.
         """
+        mine = weakref.ref(self)
+        found: Callable[[], Any] = (
+            weakref.WeakMethod(callback) if inspect.ismethod(callback) else partial(_same, callback)
+        )
 
         def guarded(*arguments: Any) -> Any:
+            called, engine = found(), mine()
+            assert called is not None
+            assert engine is not None
             try:
-                return _from_cell(callback(*[_to_cell(argument) for argument in arguments]))
+                return _from_cell(called(*[_to_cell(argument) for argument in arguments]))
             except BaseException as trouble:  # the engine would turn it into #VALUE!, an interrupt too
-                self._failure = self._failure or trouble
-                self._book.cancel()
+                engine._failure = engine._failure or trouble
+                engine._book.cancel()
                 raise
 
         self._book.register_function(name, guarded, allow_override_builtin=override)
@@ -315,10 +348,12 @@ class Engine:
     def _stopped(self, trouble: Exception) -> BookError:
         text = str(trouble)
         if "deadline" in text or "CANCELLED" in text:
-            return BookError(
-                "the workbook", f"must be evaluated within {self._seconds:g} s", "more", "Split the workbook."
-            )
-        return BookError("the workbook", "must be evaluated by the engine", _short(trouble), "Please report it.")
+            return self._late()
+        return BookError(self._name, "must be evaluated by the engine", _short(trouble), "Please report it.")
+
+    def _late(self) -> BookError:
+        remedy = "Nothing was written. Split the workbook, or allow more time: --limit seconds=..."
+        return BookError(self._name, f"must be evaluated within {self._seconds:g} s", "more", remedy)
 
 
 def _all_plain(cells: Sequence[Any]) -> bool:

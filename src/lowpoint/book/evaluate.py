@@ -158,6 +158,7 @@ class Run:
         return self._picked(sheet, arg.ref.c1, rows if row.n == 0 else [r + row.n for r in rows])
 
     def _range(self, arg: Cells, row: int) -> list[list[Any]]:
+        self.engine.check_time()  # a range as long as a column, read anew for every row, takes its time
         place = arg.ref.at(row)
         if arg.cut:
             place = place._replace(r2=self._last_row())
@@ -222,6 +223,7 @@ class Run:
     # Callbacks
 
     def _called(self, number: float, row: float, *given: Any) -> Any:
+        self.engine.check_time()
         _, site = self.plan_sites[int(number)]
         args = [_vouched(a) if present else OMITTED for a, present in zip(given, site.given, strict=True)]
         _even_out(args, site.columns)

@@ -11,7 +11,8 @@ from typing import NamedTuple
 
 from lowpoint.cells import CellError
 
-from .sheet import SheetPart, attribute
+from .attributes import attribute
+from .sheet import SheetPart
 from .stale import Place
 from .stored import serial_of
 

@@ -10,10 +10,10 @@ import os
 import re
 import stat
 from collections.abc import Iterator
-from dataclasses import dataclass
 from typing import NoReturn
 
 from lowpoint.book.archive import DEFLATED, STORED, Archive, DamageError, Entry, ExcessError
+from lowpoint.book.guard_limits import DEFAULT_LIMITS, Limits, in_force, size_text, too_much
 from lowpoint.book.parts import CONTENT_TYPES, PROLOG_LIMIT, Types, main_part, prolog_verdict
 from lowpoint.errors import BookError
 
@@ -23,42 +23,21 @@ MUST = "must be an .xlsx, .xlsm, .xltx or .xltm workbook"
 SAVE_AS = "Save it as an .xlsx workbook first."
 DAMAGED = "is damaged or cut short"
 FETCH = "Fetch it again, or open it in a spreadsheet program and save it anew."
-MB = 1 << 20
 
 
-@dataclass(frozen=True, slots=True)
-class Limits:
-    """How much a workbook may hold. A list of 100 000 rows and fifteen columns fits in several times.
-
-    ``ratio`` (unpacked to packed) is asked of parts above ``ratio_from`` bytes only: small parts may be as
-    repetitive as they like, and a large sheet of equal rows packs 30 to 100 times, where an attack comes near
-    the 1 030 times that deflate allows. Source of the figures: common practice, checked in the tests on books
-    made there.
-    """
-
-    file_bytes: int = 256 * MB
-    unpacked_bytes: int = 1024 * MB
-    part_bytes: int = 512 * MB
-    entries: int = 10_000
-    ratio: float = 250.0
-    ratio_from: int = 16 * MB
-
-
-DEFAULT_LIMITS = Limits()
-
-
-def check(path: str | os.PathLike[str], limits: Limits = DEFAULT_LIMITS) -> None:
+def check(path: str | os.PathLike[str], limits: Limits | None = None) -> None:
     """Raise BookError, one sentence and its remedy, unless the file is a sound workbook within the limits.
 
     >>> check("photograph.xlsx")  # doctest: +SKIP
     BookError: photograph.xlsx: must be an .xlsx, .xlsm, .xltx or .xltm workbook, got a JPEG picture. ...
     """
+    limits = limits or in_force()
     admit(load(path, limits), str(path), limits)
 
 
-def load(path: str | os.PathLike[str], limits: Limits = DEFAULT_LIMITS) -> bytes:
+def load(path: str | os.PathLike[str], limits: Limits | None = None) -> bytes:
     """The bytes of an existing, readable, regular file that is not too large."""
-    name = str(path)
+    name, limits = str(path), limits or in_force()
     try:
         state = os.stat(path)
         if stat.S_ISDIR(state.st_mode):
@@ -76,12 +55,14 @@ def load(path: str | os.PathLike[str], limits: Limits = DEFAULT_LIMITS) -> bytes
     except (OSError, ValueError) as problem:  # ValueError: a name the system cannot hold
         raise BookError(name, f"cannot be read ({problem})") from problem
     if len(data) > limits.file_bytes:
-        _too_much(name, f"be a file of at most {_size(limits.file_bytes)}", f"{_size(state.st_size)}")
+        got = size_text(max(state.st_size, len(data)))
+        too_much(name, f"be a file of at most {size_text(limits.file_bytes)}", got, "file")
     return data
 
 
-def admit(data: bytes, name: str, limits: Limits = DEFAULT_LIMITS) -> Archive:
+def admit(data: bytes, name: str, limits: Limits | None = None) -> Archive:
     """The opened container of a workbook's bytes, after every test; ``name`` is what messages call it."""
+    limits = limits or in_force()
     if not data.startswith(b"PK"):
         _refuse_foreign(data, name)
     try:
@@ -91,10 +72,11 @@ def admit(data: bytes, name: str, limits: Limits = DEFAULT_LIMITS) -> Archive:
             _check_entry(entry, name, limits)
         _check_total(archive, name, limits)
         _check_workbook(archive, name)
+        types = Types.read(archive)
         for entry in archive.entries:
-            _check_content(archive, entry)
+            _check_content(archive, entry, types)
     except ExcessError as excess:
-        _too_much(name, f"hold at most {limits.entries} parts", f"{excess.args[0]}")
+        too_much(name, f"hold at most {limits.entries} parts", f"{excess.args[0]}", "parts")
     except DamageError as damage:
         raise BookError(name, f"{DAMAGED}: {damage}", remedy=FETCH) from None
     return archive
@@ -122,16 +104,17 @@ def _check_entry(entry: Entry, name: str, limits: Limits) -> None:
         must = f"packs its parts in a way that workbooks may not use (method {entry.method})"
         raise BookError(name, must, remedy="Open it in a spreadsheet program and save it anew.")
     if entry.size > limits.part_bytes:
-        _too_much(name, f"hold no part above {_size(limits.part_bytes)}", f"{_size(entry.size)} in {entry.name}")
+        got = f"{size_text(entry.size)} in {entry.name}"
+        too_much(name, f"hold no part above {size_text(limits.part_bytes)}", got, "part")
     if entry.size > limits.ratio_from and entry.size > limits.ratio * entry.packed:
         times = f"{entry.size / max(entry.packed, 1):.0f} times in {entry.name}"
-        _too_much(name, f"hold no large part packed more than {limits.ratio:.0f} times", times)
+        too_much(name, f"hold no large part packed more than {limits.ratio:.0f} times", times, "ratio")
 
 
 def _check_total(archive: Archive, name: str, limits: Limits) -> None:
     total = sum(entry.size for entry in archive.entries)
     if total > limits.unpacked_bytes:
-        _too_much(name, f"unpack to at most {_size(limits.unpacked_bytes)}", _size(total))
+        too_much(name, f"unpack to at most {size_text(limits.unpacked_bytes)}", size_text(total), "unpacked")
 
 
 def _check_workbook(archive: Archive, name: str) -> None:
@@ -165,15 +148,29 @@ def _other_package(archive: Archive, names: list[str]) -> str:
     return "a zip archive with no workbook parts in it"
 
 
-def _check_content(archive: Archive, entry: Entry) -> None:
+_XML = (".xml", ".rels", ".vml")
+_PICTURES = (".svg", ".htm", ".html", ".xhtml")
+"""Attachments that may declare a document type, and that nobody here reads."""
+
+
+def _check_content(archive: Archive, entry: Entry, types: Types) -> None:
     """Unpack the member once, keeping nothing: it is what it declares, and if XML, it begins harmlessly."""
     chunks = archive.chunks(entry)
-    if entry.name.lower().endswith((".xml", ".rels", ".vml")) and entry.size:
+    if entry.size and _is_xml(entry.name, types, next(iter(archive.chunks(entry)))):
         refusal = _scanned(chunks)
         if refusal:
             raise DamageError(f"part {entry.name} {refusal}")
     for _ in chunks:
         pass
+
+
+def _is_xml(name: str, types: Types, head: bytes) -> bool:
+    """Whether a part may come before an XML reader: by its name, by its type, or because it looks so."""
+    if name.lower().endswith(_XML):
+        return True
+    if "officedocument" in types.of(name) or "ms-excel" in types.of(name):
+        return not name.lower().endswith(".bin")
+    return not name.lower().endswith(_PICTURES) and head.lstrip(b"\xef\xbb\xbf\xfe\xff\0 \t\r\n").startswith(b"<")
 
 
 def _scanned(chunks: Iterator[bytes]) -> str:
@@ -257,14 +254,3 @@ def _decoded(head: bytes) -> str | None:
 
 def _distrust(name: str, what: str) -> NoReturn:
     raise BookError(name, f"is not opened because {what}", remedy="Ask whoever made it, or save it anew.")
-
-
-def _too_much(name: str, must: str, got: str) -> NoReturn:
-    remedy = "Split the workbook, or take out what it does not need, such as pictures and unused sheets."
-    raise BookError(name, f"must {must}", got, remedy)
-
-
-def _size(count: int) -> str:
-    if count >= 1 << 30:
-        return f"{count / (1 << 30):.3g} GB"
-    return f"{count / MB:.3g} MB" if count >= MB else f"{count} bytes"

@@ -14,7 +14,7 @@ from xml.etree.ElementTree import Element
 
 from lowpoint.book import guard
 from lowpoint.book.archive import Archive, DamageError
-from lowpoint.book.guard import DEFAULT_LIMITS, Limits
+from lowpoint.book.guard_limits import Limits
 from lowpoint.book.parts import Relation, Types, local_name, main_part, parse, relations
 from lowpoint.book.repack import LEVEL, rewrite
 from lowpoint.book.saving import replace_file
@@ -80,7 +80,7 @@ class Package:
     >>> package.sheets[0].title, package.tables(package.sheets[0])  # doctest: +SKIP
     """
 
-    def __init__(self, data: bytes, name: str, limits: Limits = DEFAULT_LIMITS) -> None:
+    def __init__(self, data: bytes, name: str, limits: Limits | None = None) -> None:
         self.name = name
         self.source: Path | None = None
         self._seen: tuple[int, ...] | None = None
@@ -92,7 +92,7 @@ class Package:
             raise self._damaged(damage) from None
 
     @classmethod
-    def open(cls, path: str | os.PathLike[str], limits: Limits = DEFAULT_LIMITS) -> Package:
+    def open(cls, path: str | os.PathLike[str], limits: Limits | None = None) -> Package:
         """Open a workbook file, or say in one sentence why not (BookError)."""
         seen = _mark(Path(path))
         package = cls(guard.load(path, limits), str(path), limits)
@@ -113,6 +113,8 @@ class Package:
         link = self._links.get(_relation_id(item))
         if link is None or link.external or link.target not in self._archive:
             raise DamageError(f"the part that holds sheet {title!r} is missing")
+        if not link.target.lower().endswith(".xml"):
+            raise DamageError(f"the part that holds sheet {title!r} is named {link.target!r}, not .xml")
         number = item.get("sheetId", "")
         kind = _KINDS.get(link.kind, link.kind)
         return Sheet(title, link.target, kind, item.get("state", "visible"), int(number) if number.isdecimal() else 0)

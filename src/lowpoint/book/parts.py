@@ -19,6 +19,7 @@ __all__ = [
     "CONTENT_TYPES",
     "Relation",
     "Types",
+    "blanked",
     "local_name",
     "main_part",
     "parse",
@@ -33,6 +34,7 @@ PROLOG_LIMIT = 1 << 16
 _PLAIN_ENCODINGS = {"utf-8", "utf8", "us-ascii", "ascii", "iso-8859-1", "windows-1252"}
 _WIDE_ENCODINGS = {"utf-16", "utf-16le", "utf-16be", "ucs-2", "iso-10646-ucs-2"}
 _DECLARED = re.compile(r"""^<\?xml[^>]*?\sencoding\s*=\s*["']([^"']*)["']""")
+_NO_ELEMENT = re.compile(rb"<!--.*?-->|<\?.*?\?>|<!\[CDATA\[.*?\]\]>", re.DOTALL)
 _SKIPPED = re.compile(r"\s+|<\?.*?\?>|<!--.*?-->", re.DOTALL)
 
 
@@ -85,6 +87,17 @@ def parse(data: bytes, name: str) -> ElementTree.Element:
         return ElementTree.fromstring(data)
     except (ElementTree.ParseError, ValueError, LookupError):
         raise DamageError(f"part {name} is not well-formed XML") from None
+
+
+def blanked(data: bytes) -> bytes:
+    """Well-formed XML with blanks for comments, instructions and CDATA, so that a scan for elements meets no others.
+
+    Every other byte keeps its place. Text in which a comment is opened and never closed would take quadratic time:
+    it is for whoever calls to have parsed the part before.
+    """
+    if b"<!" not in data and data.rfind(b"<?") <= 0:
+        return data
+    return _NO_ELEMENT.sub(lambda found: b" " * len(found[0]), data)
 
 
 def prolog_verdict(head: bytes, *, complete: bool) -> str | None:

@@ -7,9 +7,10 @@ from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import Any
 
+from .attributes import attribute
 from .refs import Area, address, column_letters
 from .report import Change
-from .sheet import Group, SheetPart, attribute
+from .sheet import Group, SheetPart
 from .spills import Spill, spill_edits
 from .stored import Edit, new_attributes, number_text, old_value, same, value_element, with_value
 
@@ -141,7 +142,7 @@ def _edited(
     cell = sheet.found.formula_cell.match(sheet.scanned, start)
     if cell is None:
         raise AssertionError("a formula cell is not where it was found")
-    kind = attribute(cell[3], b"t") if b"t=" in cell[3] else b""
+    kind = attribute(cell[3], b"t")
     old = old_value(kind, cell[7], cell[8], strings)
     if not same(old, new, exact=exact):
         return old, _with_new_value(sheet, cell, kind, new, area)

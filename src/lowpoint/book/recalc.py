@@ -14,11 +14,13 @@ from lowpoint.errors import BookError
 
 from .curing import cure
 from .foreign import foreign_cells, late_errors
-from .guard import DEFAULT_LIMITS, Limits
+from .guard_cells import CellCount, cells_of
+from .guard_limits import Limits, in_force, limiting
+from .guard_memory import enough_memory
 from .hiding import hiding_of
 from .names import names_of
 from .outcome import Outcome, outcome_of
-from .package import Package, locked
+from .package import Package, Sheet, locked
 from .patch import patch_sheet
 from .plan import Context, make_plan
 from .refs import address, quoted
@@ -41,7 +43,7 @@ def recalculate(
     *,
     in_place: bool = False,
     values: bool = False,
-    limits: Limits = DEFAULT_LIMITS,
+    limits: Limits | None = None,
     per_cell: bool = False,
 ) -> Report:
     """Recompute a workbook's LP_ functions and everything else in it, and write a copy with the new cached values.
@@ -49,17 +51,21 @@ def recalculate(
     Without ``out`` the copy is ``<stem>-recalc`` beside the input; ``in_place`` writes over the input, unless a lock
     file says that somebody has it open; ``values`` writes plain numbers instead of formulas. Only cached values of
     formula cells, and of cells that arrays fill, are changed; a book in which none changes is copied byte for byte.
-    ``per_cell`` makes every LP_ call by itself, as a spreadsheet program does: slower, the same answers. Raises
-    BookError where the book cannot be read or written.
+    ``per_cell`` makes every LP_ call by itself, as a spreadsheet program does: slower, the same answers. ``limits``
+    are those in force unless given. Raises BookError where the book cannot be read or written.
 
     >>> recalculate("kestrel-bay.xlsx").exit_code  # doctest: +SKIP
     0
     """
-    began = time.perf_counter()
-    target = output_path(path, out, in_place)
+    with limiting(limits or in_force()), enough_memory(path):
+        return _recalculated(path, output_path(path, out, in_place), in_place, values, per_cell)
+
+
+def _recalculated(path: PathLike, target: Path, in_place: bool, values: bool, per_cell: bool) -> Report:
+    began, limits = time.perf_counter(), in_force()
     package = Package.open(path, limits)
     report = Report(str(path), str(target))
-    book = Book(package)
+    book = Book(package, limits)
     outcome = _evaluated(book, report, per_cell)
     changed = _patched(book, outcome, report)
     _warn(book, report, values, bool(changed))
@@ -97,15 +103,17 @@ def _copy_path(source: Path, out: PathLike | None) -> Path:
 class Book:
     """A workbook read for recalculation: its sheets of cells and what reading their formulas needs."""
 
-    def __init__(self, package: Package) -> None:
-        self.package = package
-        self.sheets = [
-            SheetPart(sheet.title, sheet.path, package.read(sheet.path), package.name)
-            for sheet in package.sheets
-            if sheet.kind == "worksheet"
-        ]
+    def __init__(self, package: Package, limits: Limits | None = None) -> None:
+        self.package, self.limits = package, limits or in_force()
+        counted = CellCount(package.name, self.limits)
+        self.sheets = [self._part(sheet, counted) for sheet in package.sheets if sheet.kind == "worksheet"]
         self.titles = {sheet.title.casefold(): sheet.title for sheet in self.sheets}
         self.groups: list[Group] = [group for sheet in self.sheets for group in sheet.distinct]
+
+    def _part(self, sheet: Sheet, counted: CellCount) -> SheetPart:
+        raw = self.package.read(sheet.path)
+        counted.add(cells_of(raw))
+        return SheetPart(sheet.title, sheet.path, raw, self.package.name, self.limits)
 
     @property
     def context(self) -> Context:
@@ -135,7 +143,8 @@ def _evaluated(book: Book, report: Report, per_cell: bool) -> Outcome:
     plan = make_plan(book.groups, book.context, per_cell)
     foreign = {sheet.title: foreign_cells(sheet, book.package.date1904) for sheet in book.sheets}
     data = engine_bytes(book.package, book.sheets, plan, foreign)
-    engine = Engine.load(data, date1904=book.package.date1904, name=book.package.name)
+    seconds, name = book.limits.seconds, book.package.name
+    engine = Engine.load(data, date1904=book.package.date1904, seconds=seconds, name=name)
     began = time.perf_counter()
     register(engine)
     run = Run(engine, plan, book.titles, book.last_row, late_errors(book.sheets, foreign))

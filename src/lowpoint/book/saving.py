@@ -13,7 +13,10 @@ from typing import BinaryIO
 
 from lowpoint.errors import BookError
 
-__all__ = ["replace_file"]
+__all__ = ["OWNER", "remove_leftovers", "replace_file"]
+
+OWNER = secrets.token_hex(6)
+"""Stands in the names of this process's temporary files, so that whoever outlives it can tell and remove them."""
 
 _ELSEWHERE = "Name another output with -o."
 _FULL = {errno.ENOSPC, errno.EFBIG, getattr(errno, "EDQUOT", errno.ENOSPC)}
@@ -32,7 +35,7 @@ def replace_file(target: Path, fill: Callable[[BinaryIO], object]) -> None:
     """
     real = Path(os.path.realpath(target))
     before = _existing(target, real)
-    temporary = real.with_name(f".lowpoint-{secrets.token_hex(8)}.tmp")
+    temporary = real.with_name(f".lowpoint-{OWNER}-{secrets.token_hex(8)}.tmp")
     try:
         _fill(temporary, before, fill)
         os.replace(temporary, real)
@@ -42,6 +45,13 @@ def replace_file(target: Path, fill: Callable[[BinaryIO], object]) -> None:
         with suppress(OSError):  # gone already when all went well
             temporary.unlink()
     _settle_folder(real.parent)
+
+
+def remove_leftovers(target: Path, owner: str) -> None:
+    """Remove what a process that was killed left beside a target; ``owner`` is the OWNER of that process."""
+    for left in Path(os.path.realpath(target)).parent.glob(f".lowpoint-{owner}-*.tmp"):
+        with suppress(OSError):
+            left.unlink()
 
 
 def _existing(target: Path, real: Path) -> os.stat_result | None:

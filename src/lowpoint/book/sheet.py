@@ -16,17 +16,21 @@ from xml.parsers import expat
 
 from lowpoint.errors import BookError
 
+from .attributes import attribute, place_of
 from .formulas import OWN_ROW, Token, Unreadable, shape_key, shifted, tokenise
+from .guard_cells import formula_refusal
+from .guard_limits import Limits, in_force
+from .parts import blanked
 from .refs import LAST_ROW, Area, address, area, column_number
 
-__all__ = ["Found", "Group", "SheetPart", "attribute", "cell_pattern"]
+__all__ = ["Found", "Group", "SheetPart", "cell_pattern"]
 
 _QUOTED = rb"""(?:[^>"'/]|/(?!>)|"[^"]*"|'[^']*')*+"""
 _DECLARED = re.compile(rb"""^<\?xml[^>]*?\sencoding\s*=\s*["']([^"']*)["']""")
-_COMMENT = re.compile(rb"<!--.*?-->|<\?.*?\?>", re.DOTALL)
 _ROOT = re.compile(rb"<(?:([\w.-]+):)?worksheet[\s>/]")
-_AT = re.compile(rb"""\sr\s*=\s*["']([A-Z]{1,3})([0-9]{1,7})["']""")
+_DIGITS = re.compile(rb"[0-9]{1,7}")
 _OWN = OWN_ROW.encode()
+SAVE_ANEW = "Save it anew in a spreadsheet program."
 
 
 @dataclass(slots=True, eq=False)
@@ -79,25 +83,17 @@ def cell_pattern(prefix: bytes) -> Found:
     )
 
 
-def attribute(attributes: bytes, name: bytes) -> bytes:
-    """The value of an attribute, b"" without it."""
-    found = re.search(rb"""(?:^|\s)%b\s*=\s*(?:"([^"]*)"|'([^']*)')""" % name, attributes)
-    return (found[1] if found[1] is not None else found[2]) if found else b""
-
-
 class SheetPart:
     """A worksheet's bytes, its formula cells in file order, and their groups.
 
     ``simple`` says of each whether it is a number that ends with its value element: another one takes its place.
     """
 
-    def __init__(self, title: str, path: str, raw: bytes, book: str) -> None:
-        self.title, self.path, self.raw = title, path, raw
+    def __init__(self, title: str, path: str, raw: bytes, book: str, limits: Limits | None = None) -> None:
+        self.title, self.path, self.raw, self.book = title, path, raw, book
         self.data, self.codec = _as_utf8(raw)
         self._check(book)
-        # Comments and instructions are blanked in the copy that is scanned: every place stays where it is.
-        noted = b"<!--" in self.data or self.data.rfind(b"<?") > 0
-        self.scanned = _COMMENT.sub(lambda m: b" " * len(m[0]), self.data) if noted else self.data
+        self.scanned = blanked(self.data)
         root = _ROOT.search(self.scanned)
         self.prefix = root[1] + b":" if root and root[1] else b""
         self.found = cell_pattern(self.prefix)
@@ -108,14 +104,21 @@ class SheetPart:
         self.groups: list[Group] = []
         self._shapes = _Shapes(title)
         self._scan()
+        self._bound(limits or in_force())
 
     @property
     def distinct(self) -> list[Group]:
         """Every group once."""
         return list(dict.fromkeys(self.groups))
 
+    def _bound(self, limits: Limits) -> None:
+        """Formulas beyond the limits keep their values; the reason goes into the report."""
+        for group in self.distinct:
+            refusal = "" if group.reason else formula_refusal(len(group.text), (t.kind for t in group.tokens), limits)
+            group.reason = group.reason or refusal
+
     def _check(self, book: str) -> None:
-        parser = expat.ParserCreate("utf-8")  # what was in another encoding has been put into this one
+        parser = expat.ParserCreate("utf-8", " ")  # names of namespaces are checked too
         try:
             parser.Parse(self.data, True)
         except expat.ExpatError as problem:
@@ -123,7 +126,7 @@ class SheetPart:
             raise BookError(book, must, str(problem), "Fetch it again, or save it anew.") from None
         if b"<![CDATA[" in self.data:
             must = f"sheet {self.title!r} must hold plain text"
-            raise BookError(book, must, "CDATA sections", "Save it anew in a spreadsheet program.")
+            raise BookError(book, must, "CDATA sections", SAVE_ANEW)
 
     def _body(self) -> tuple[int, int]:
         """Where the cells begin and end; an empty span where the sheet has none."""
@@ -140,29 +143,40 @@ class SheetPart:
         simple = self.simple
         numbers: dict[bytes, int] = {}
         unnamed: dict[int, tuple[int, int]] | None = None
+        nested = re.compile(rb"<%b[cfv](?=[\s>/])" % re.escape(self.prefix))
         for cell in self.found.formula_cell.finditer(self.scanned, *self.body):
             letters, digits, attributes, formula, text, element, _, rest = cell.groups()
             if letters is None:
-                named = _AT.search(attributes)
+                named = place_of(attributes)
                 if named:
-                    letters, digits = named.groups()
+                    letters, digits = named
                 else:
                     unnamed = self._counted() if unnamed is None else unnamed
+                    if cell.start() not in unnamed:
+                        raise self._odd_cell(cell.start())
                     row, column = unnamed[cell.start()]
                     letters, digits = b"", str(row).encode()
             if letters:
                 column = numbers.get(letters) or numbers.setdefault(letters, column_number(letters.decode()))
                 row = int(digits)
+            if rest and nested.search(rest):
+                raise self._odd_cell(cell.start())
             group = self._shapes.group(row, column, digits, attributes, formula, text)
             if group is None or not 1 <= row <= LAST_ROW:
                 continue
             group.rows.append(row)
             starts.append(cell.start())
             ends.append(cell.end())
-            simple.append(not rest and element is not None and b"t=" not in attributes and b"vm" not in attributes)
+            simple.append(not rest and element is not None and b"t" not in attributes and b"vm" not in attributes)
             rows.append(row)
             columns.append(column)
             groups.append(group)
+
+    def _odd_cell(self, place: int) -> BookError:
+        """A cell that is no cell of the format: nobody can say which of its values is the formula's."""
+        found = self.scanned[place : place + 60].decode("utf-8", "replace")
+        must = f"sheet {self.title!r} must hold one formula and one value a cell"
+        return BookError(self.book, must, repr(found), SAVE_ANEW)
 
     def _counted(self) -> dict[int, tuple[int, int]]:
         """Where cells stand that do not say it: each follows the one before it."""
@@ -171,12 +185,21 @@ class SheetPart:
         either = re.compile(b"|".join((self.found.row.pattern, self.found.any_cell.pattern)), re.DOTALL)
         for item in either.finditer(self.scanned, *self.body):
             if item[0].startswith(b"<" + self.prefix + b"row"):
-                row, column = int(attribute(item[1], b"r") or row + 1), 0
+                row, column = self._row_number(item[1], row), 0
                 continue
-            named = _AT.search(item[3])
-            row, column = (int(named[2]), column_number(named[1].decode())) if named else (row, column + 1)
+            named = place_of(item[3])
+            row, column = (int(named[1]), column_number(named[0].decode())) if named else (row, column + 1)
             places[item.start()] = (row, column)
         return places
+
+    def _row_number(self, attributes: bytes, before: int) -> int:
+        """The number that a row states, or the one after the row before it."""
+        text = attribute(attributes, b"r")
+        number = int(text) if _DIGITS.fullmatch(text) else 0 if text else before + 1
+        if not 1 <= number <= LAST_ROW:
+            must = f"sheet {self.title!r} must number its rows from 1 to {LAST_ROW}"
+            raise BookError(self.book, must, repr(text[:20].decode("utf-8", "replace")), SAVE_ANEW)
+        return number
 
     @cached_property
     def index(self) -> dict[tuple[int, int], tuple[int, int]]:
@@ -194,7 +217,7 @@ class SheetPart:
         spans: dict[int, tuple[int, int, int | None]] = {}
         closing, number = b"</%brow" % self.prefix, 0
         for row in self.found.row.finditer(self.scanned, *self.body):
-            number = int(attribute(row[1], b"r") or number + 1)
+            number = self._row_number(row[1], number)
             closed = None if row[2] == b"/>" else self.scanned.index(closing, row.end())
             spans[number] = (row.start(), row.end(), closed)
         return spans
@@ -203,11 +226,13 @@ class SheetPart:
         """All cells in file order: (row, column), start, end."""
         counted: dict[int, tuple[int, int]] | None = None
         for cell in self.found.any_cell.finditer(self.scanned, *self.body):
-            named = _AT.search(cell[1])
+            named = place_of(cell[1])
             if named:
-                yield (int(named[2]), column_number(named[1].decode())), cell.start(), cell.end()
+                yield (int(named[1]), column_number(named[0].decode())), cell.start(), cell.end()
             else:
                 counted = self._counted() if counted is None else counted
+                if cell.start() not in counted:
+                    raise self._odd_cell(cell.start())
                 yield counted[cell.start()], cell.start(), cell.end()
 
     def encoded(self, data: bytes) -> bytes:

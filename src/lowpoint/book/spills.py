@@ -8,9 +8,10 @@ from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from typing import Any
 
+from .attributes import attribute
 from .refs import Area, address, area
 from .report import Change
-from .sheet import SheetPart, attribute
+from .sheet import SheetPart
 from .stored import Edit, new_attributes, old_value, same, value_element, with_value
 
 __all__ = ["Spill", "spill_edits"]

@@ -13,8 +13,6 @@ from typing import Any
 
 from lowpoint.cells import CellError
 
-from .sheet import attribute
-
 __all__ = [
     "FILE_SPELLING",
     "Edit",
@@ -34,8 +32,7 @@ Edit = tuple[int, int, bytes]
 _ESCAPED = re.compile(r"_x([0-9A-Fa-f]{4})_")
 _UNWRITABLE = re.compile("[\x00-\x08\x0b\x0c\x0d\x0e-\x1f\ufffe\uffff]|_(?=x[0-9A-Fa-f]{4}_)")
 _TEXTS = re.compile(rb"<(?:[\w.-]+:)?t\b[^>]*>([^<]*)</")
-_TYPE = re.compile(rb"""\s+t\s*=\s*(?:"[^"]*"|'[^']*')""")
-_METADATA = re.compile(rb"""\s+vm\s*=\s*(?:"[^"]*"|'[^']*')""")
+_ATTRIBUTE = re.compile(rb"""\s+([^\s=]+)\s*=\s*("[^"]*"|'[^']*')""")
 _ERRORS = {e.value: e for e in CellError}
 
 # How the file format itself spells the errors that are younger than it: programs say more in parts of their own.
@@ -137,13 +134,20 @@ def value_element(prefix: bytes, value: Any) -> tuple[bytes, bytes]:
 
 def new_attributes(attributes: bytes, kind: bytes) -> bytes:
     """A cell's attributes with another type and no value metadata."""
-    attributes = _METADATA.sub(b"", attributes)
     wanted = b' t="%b"' % kind if kind else b""
-    if attribute(attributes, b"t") == kind:
-        return attributes
-    if _TYPE.search(attributes):
-        return _TYPE.sub(lambda _: wanted, attributes, count=1)
-    return attributes.rstrip() + wanted
+    typed = False
+
+    def put(found: re.Match[bytes]) -> bytes:
+        nonlocal typed
+        if found[1] == b"vm":
+            return b""
+        if found[1] != b"t":
+            return found[0]
+        typed = True
+        return found[0] if found[2][1:-1] == kind else wanted
+
+    changed = _ATTRIBUTE.sub(put, attributes)
+    return changed if typed or not wanted else changed.rstrip() + wanted
 
 
 def with_value(cell: bytes, prefix: bytes, value: Any) -> bytes:

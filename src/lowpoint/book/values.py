@@ -13,7 +13,7 @@ from pathlib import Path
 from typing import Any
 from zipfile import ZIP_DEFLATED, ZipFile
 
-from lowpoint.book.guard import DEFAULT_LIMITS, Limits
+from lowpoint.book.guard_limits import Limits
 from lowpoint.book.package import Package
 from lowpoint.book.saving import replace_file
 from lowpoint.book.stored import FILE_SPELLING
@@ -59,7 +59,7 @@ def write_values_copy(
     source: Package | str | os.PathLike[str],
     out: str | os.PathLike[str],
     values: Mapping[tuple[str, int, int], Any],
-    limits: Limits = DEFAULT_LIMITS,
+    limits: Limits | None = None,
 ) -> list[str]:
     """Write a copy of a workbook with plain values for formulas; what the copy lacks comes back in words.
 

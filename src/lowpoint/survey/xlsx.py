@@ -10,12 +10,12 @@ from collections.abc import Callable, Iterator
 from typing import Any, TypeAlias
 
 from lowpoint.book import guard
+from lowpoint.book.attributes import attribute
 from lowpoint.book.guard_cells import CellCount
 from lowpoint.book.guard_limits import in_force
 from lowpoint.book.package import Package
 from lowpoint.book.parts import blanked
 from lowpoint.book.refs import area, column_number
-from lowpoint.book.sheet import attribute
 from lowpoint.errors import BookError
 from lowpoint.survey.grids import Grid, Sheets
 from lowpoint.survey.headers import LOOKED_AT

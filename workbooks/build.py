@@ -1,4 +1,8 @@
-"""Writes the sample books of this folder, with computed values: ``python workbooks/build.py [FOLDER]``."""
+"""Writes the sample books of this folder, with computed values: ``python workbooks/build.py [FOLDER]``.
+
+The vendors' sheets in ``datasheets`` come from the tests' own arithmetic, which shares nothing with the package; they
+need the optional part ``test``.
+"""
 
 from __future__ import annotations
 
@@ -14,6 +18,7 @@ HERE = Path(__file__).parent
 BOOKS = {"kestrel-bay.xlsx": (), "kestrel-bay-us.xlsx": ("--us",)}
 """Each valve list with the words that ``lowpoint starter sheet`` needs for it."""
 PLATES = "kestrel-bay-plates.xlsx"
+DATASHEETS, EXPECTED = "datasheets", "expected.csv"
 
 
 def build(folder: Path) -> list[Path]:
@@ -39,5 +44,24 @@ def build_plates(folder: Path) -> Path:
     return target
 
 
+def build_datasheets(folder: Path) -> list[Path]:
+    """Write the vendors' sheets into a folder, and beside them what is wrong with which."""
+    sys.path.insert(0, str(HERE.parent / "tests"))
+    try:
+        from vendor_samples import SAMPLES, expected_csv, written
+    finally:
+        sys.path.pop(0)
+    folder.mkdir(exist_ok=True)
+    made = []
+    for sample in SAMPLES:
+        made.append(folder / sample.file)
+        made[-1].write_bytes(written(sample))
+    made.append(folder / EXPECTED)
+    made[-1].write_text(expected_csv(), encoding="utf-8", newline="\n")
+    return made
+
+
 if __name__ == "__main__":
-    build(Path(sys.argv[1]) if len(sys.argv) > 1 else HERE)
+    target_folder = Path(sys.argv[1]) if len(sys.argv) > 1 else HERE
+    build_datasheets(target_folder / DATASHEETS)
+    build(target_folder)

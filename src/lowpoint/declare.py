@@ -12,6 +12,7 @@ import re
 import typing
 from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
+from types import SimpleNamespace
 from typing import Any, TypeAlias, TypeVar
 
 from lowpoint import units
@@ -25,6 +26,8 @@ GROUPS = ("liquids", "valves", "indices and limits", "orifices", "working")
 BASES = ("", "tested", "published", "estimated")
 Kind: TypeAlias = Quantity | Word | Text | Table
 Kernel = TypeVar("Kernel", bound=Callable[..., Any])
+
+_meanings: dict[tuple[str, str], Any] = {}
 
 
 @dataclass(frozen=True, slots=True)
@@ -160,7 +163,18 @@ def function(
 
 
 def _hints(kernel: Callable[..., Any]) -> dict[str, Any]:
-    return typing.get_type_hints(kernel, include_extras=True)
+    return {symbol: _meaning(hint, kernel) for symbol, hint in kernel.__annotations__.items()}
+
+
+def _meaning(hint: Any, kernel: Callable[..., Any]) -> Any:
+    """What an annotation stands for. Kernels share a few of them by the hundred: each is read once a module."""
+    if not isinstance(hint, str):
+        return hint
+    key = (kernel.__module__, hint)
+    if key not in _meanings:
+        lone = SimpleNamespace(__annotations__={"it": hint})
+        _meanings[key] = typing.get_type_hints(lone, globalns=kernel.__globals__, include_extras=True)["it"]
+    return _meanings[key]
 
 
 def _kind(name: str, symbol: str, hint: Any) -> Kind:

@@ -36,6 +36,9 @@ SOURCES: dict[str, Source] = {
         Source("closed form", "Derived from the equations of IEC 60534-2-1 by eliminating the iteration", "C"),
         Source("definition", "Definition, or an identity that follows from definitions alone", "C"),
         Source("IAPWS-95", "IAPWS R6-95(2018), thermodynamic properties of ordinary water; by CoolProp", "L"),
+        Source("IAPWS-IF97", "IAPWS R7-97(2012), industrial formulation for the thermodynamic properties of water and "
+               "steam, regions 1 and 4; coefficients from memory, checked against the library iapws and the "
+               "formulation's own verification values", "L"),
         Source("IAPWS R12-08", "IAPWS R12-08, viscosity of ordinary water substance; by CoolProp", "L"),
         Source("IAPWS-08", "IAPWS R13-08, thermodynamic properties of seawater", "L"),
         Source("CoolProp", "I. H. Bell et al., Ind. Eng. Chem. Res. 53 (2014) 2498-2508, and the equations of "

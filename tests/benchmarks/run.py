@@ -19,8 +19,10 @@ from pathlib import Path
 HERE = Path(__file__).parent
 sys.path.insert(0, str(HERE))
 
+import bench_audit  # noqa: E402
 import bench_calc  # noqa: E402
 import bench_design  # noqa: E402
+import bench_fleet  # noqa: E402
 import bench_kernels  # noqa: E402
 import bench_orifices  # noqa: E402
 import bench_recalc  # noqa: E402
@@ -34,6 +36,8 @@ SUITES: dict[str, Callable[[bool], Iterator[Figure]]] = {
     "design": bench_design.figures,
     "recalc": bench_recalc.figures,
     "survey": bench_survey.figures,
+    "audit": bench_audit.figures,
+    "fleet": bench_fleet.figures,
     "start": bench_start.figures,
     "calc": bench_calc.figures,
 }

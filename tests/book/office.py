@@ -5,6 +5,7 @@ from __future__ import annotations
 import shutil
 import subprocess
 import tempfile
+from collections.abc import Sequence
 from pathlib import Path
 
 import pytest
@@ -40,18 +41,26 @@ def convert(source: Path, out: Path, *, recalculate: bool, kind: str = "xlsx", t
 
     ``kind`` is what follows ``--convert-to`` ("xlsx", "pdf", "csv:..."). Gives the path of the file written.
     """
+    return convert_all([source], out, recalculate=recalculate, kind=kind, timeout=timeout)[0]
+
+
+def convert_all(
+    sources: Sequence[Path], out: Path, *, recalculate: bool, kind: str = "xlsx", timeout: float = 240.0
+) -> list[Path]:
+    """Convert many, whose names differ, in one run of the office. Gives the paths of the files written."""
     if SOFFICE is None:
         pytest.skip("LibreOffice (soffice) is not installed on this machine")
     out.mkdir(parents=True, exist_ok=True)
     with tempfile.TemporaryDirectory(prefix="office-") as scratch:
         profile = _profile(Path(scratch) / "profile", _ALWAYS if recalculate else _NEVER)
         command = [SOFFICE, f"-env:UserInstallation={profile}", "--headless", "--norestore", "--nolockcheck"]
-        command += ["--convert-to", kind, "--outdir", str(out), str(source)]
+        command += ["--convert-to", kind, "--outdir", str(out), *map(str, sources)]
         done = subprocess.run(command, capture_output=True, text=True, timeout=timeout, check=False)
-    target = out / f"{source.stem}.{kind.split(':')[0]}"
-    if not target.is_file():
-        raise AssertionError(f"LibreOffice wrote no {target.name}: {done.stdout} {done.stderr}")
-    return target
+    targets = [out / f"{source.stem}.{kind.split(':')[0]}" for source in sources]
+    missing = [target.name for target in targets if not target.is_file()]
+    if missing:
+        raise AssertionError(f"LibreOffice wrote no {', '.join(missing)}: {done.stdout[-500:]} {done.stderr[-500:]}")
+    return targets
 
 
 def recalculated(source: Path, out: Path) -> Path:

@@ -7,10 +7,13 @@ from pathlib import Path
 from typing import Any
 
 import pytest
+from hypothesis import given
+from hypothesis import strategies as st
 
 from book.lists import Done, bare, both, cells_xml, expected, formula, number
 from book.makers import MAIN, REL, XLSX, pack, parts
 from lowpoint.book.package import Package
+from lowpoint.book.stored import number_elements, number_text
 from lowpoint.problems import CellError
 
 INPUTS = {"A1": number(10.0), "B1": number(4.0), "C1": number(0.03)}
@@ -91,6 +94,36 @@ def test_each_kind_of_value_is_written_as_the_format_wants_it(
 ) -> None:
     _, cell = _cell(tmp_path / "list.xlsx", f'<c r="A2"><f>{text}</f></c>')
     assert cell == b'<c r="A2"%b><f>%b</f>%b</c>' % (attributes, text.encode(), value)
+
+
+@pytest.mark.parametrize("tag", ['<c r="A2">', '<c r="A2" s="0">', '<c r="A2" s="0" >', '<c r="A2"\ts="0">', "<c>"])
+@pytest.mark.parametrize("old", ["<v>7</v>", "<v>-1E-3</v>", "<v></v>", "<v/>", "<v />", "<v> 7 </v>", "<v >7</v >"])
+def test_any_kind_of_value_takes_the_place_of_a_number(tmp_path: Path, tag: str, old: str) -> None:
+    kinds = (("A1*0.1/3", b"", b"0.3333333333333333"), ('"a"&amp;B1', b"str", b"a4"), ("A1&gt;B1", b"b", b"1"),
+             ("LP_SIGMA(B1,A1,C1)", b"e", b"#NUM!"))  # fmt: skip
+    tags = [tag.replace("A2", place) for place in ("A2", "B2", "C2", "D2")]
+    cells = "".join(f"{tag}<f>{text}</f>{old}</c>" for tag, (text, _, _) in zip(tags, kinds, strict=True))
+    _, row = _cell(tmp_path / "list.xlsx", cells)
+    wanted = b""
+    for tag, (text, kind, value) in zip(tags, kinds, strict=True):
+        head = tag[:-1].rstrip().encode() + b' t="%b">' % kind if kind else tag.encode()
+        wanted += b"%b<f>%b</f><v>%b</v></c>" % (head, text.encode(), value)
+    assert row == wanted
+
+
+def test_a_number_in_other_digits_stays_and_one_that_is_no_number_goes(tmp_path: Path) -> None:
+    cells = "<c><f>A1*2</f><v>2.0E1</v></c><c><f>A1*2</f><v> 20 </v></c><c><f>A1*2</f><v>much</v></c>"
+    done, row = _cell(tmp_path / "list.xlsx", cells)
+    assert row == cells.replace("much", "20").encode()
+    assert [change.old for change in done.report.unfed] == ["much"]
+
+
+@given(st.lists(st.floats(allow_nan=False, allow_infinity=False)), st.sampled_from([b"", b"x:"]))
+def test_numbers_written_at_once_are_those_written_one_by_one(numbers: list[float], prefix: bytes) -> None:
+    elements = number_elements(prefix, numbers)
+    assert elements[: len(numbers)] == [b"<%bv>%b</%bv>" % (prefix, number_text(x), prefix) for x in numbers]
+    texts = [element.partition(b">")[2].partition(b"<")[0] for element in elements[: len(numbers)]]
+    assert [float(text) for text in texts] == numbers
 
 
 def test_a_right_value_stays_as_it_is_spelled(tmp_path: Path) -> None:

@@ -187,7 +187,7 @@ def test_missing_file_empty_folder_and_no_word(tmp_path: Path, capsys: Streams) 
     assert cli.main(["recalc", str(tmp_path / "nothing.xlsx")]) == 2
     assert "nothing.xlsx" in capsys.readouterr().err
     assert cli.main(["recalc", str(tmp_path)]) == 2
-    assert "must hold workbooks" in capsys.readouterr().err
+    assert "must hold files of the kind" in capsys.readouterr().err
     assert cli.main(["recalc"]) == 2
     assert cli.main(["recalc", str(tmp_path / "nothing.xlsx"), "--json"]) == 2
     assert json.loads(capsys.readouterr().out)["exit_code"] == 2

@@ -60,14 +60,6 @@ def test_a_book_that_is_open_is_not_replaced(capsys: Streams) -> None:
     assert Path("mine.xlsx").read_bytes() == b"a year of work"
 
 
-@pytest.mark.parametrize("kind", ["datasheet"])
-def test_kinds_that_are_not_made_yet_say_so(kind: str, capsys: Streams) -> None:
-    assert cli.main(["starter", kind]) == 2
-    said = capsys.readouterr().err
-    assert f"starter {kind}: is not made by this version yet; what there is: sheet, list. Nothing was written." in said
-    assert not list(Path().iterdir())
-
-
 def test_an_unknown_kind_gets_the_list_of_kinds(capsys: Streams) -> None:
     assert cli.main(["starter", "shet"]) == 2
     said = capsys.readouterr().err

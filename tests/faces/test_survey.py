@@ -88,3 +88,17 @@ def test_the_list_is_only_read(capsys: Streams) -> None:
     cli.main(["survey", "list.csv"])
     assert path.read_bytes() == before
     assert [p.name for p in Path().iterdir()] == ["list.csv"]
+
+
+def test_items_are_wrapped_to_the_terminal_and_problems_stay_whole_in_a_pipe(
+    capsys: Streams, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.setenv("COLUMNS", "72")
+    rows = [("21-FCV-111", *GOOD[1:6], 0.3, *GOOD[7:]), ("21-FCV-112", *GOOD[1:4], "4 6", *GOOD[5:])]
+    write_csv(Path("list.csv"), HEADINGS, rows)
+    assert cli.main(["survey", "list.csv"]) == 1
+    lines = capsys.readouterr().out.splitlines()
+    told = next(line for line in lines if "list.csv!E3: Flow must be a number" in line)
+    assert len(told) > 72
+    assert max(len(line) for line in lines if line != told) <= 72
+    assert any(line.startswith("      remedy: ") for line in lines)

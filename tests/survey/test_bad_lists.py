@@ -442,4 +442,4 @@ def test_the_command_ends_with_1_and_names_the_fault(
     assert cli.main(["survey", str(path)]) == 1
     out = capsys.readouterr().out
     assert f"{SHEETS[kind]}!F3: p1 must be a number, got the text '5,8'." in out
-    assert "1 item, 2 cases; by their worst case: 1 clear" in out
+    assert "1 item, 2 cases; by their worst case: 1 without an answer" in out

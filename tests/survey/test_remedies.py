@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from dataclasses import replace
 from pathlib import Path
 from typing import Any
@@ -11,6 +12,7 @@ import pytest
 
 from lowpoint import functions
 from lowpoint.survey import Survey, survey_list
+from lowpoint.survey.best import best_words
 from lowpoint.survey.outcome import Remedy
 from lowpoint.survey.remedies import remedies_of
 from lowpoint.survey.remedies.ranking import EASE
@@ -326,6 +328,68 @@ def test_a_small_rise_of_pressure_goes_before_everything(tmp_path: Path) -> None
     rows = VALVE | {"p1 [bar a]": 6.0, "p2 [bar a]": 2.25}  # 1.594 against 1.6
     survey = _survey(tmp_path, rows)
     assert remedies_of(survey)["23-FCV-306"][0].kind == "back-pressure"
+
+
+def test_on_flashing_the_advice_stands_first(tmp_path: Path) -> None:
+    """8 bar water of 150 C (pv 4.76 bar, IAPWS tables) to 2 bar: more back-pressure may end it, practice does not."""
+    row = VALVE | {"Temperature [deg C]": 150, "p1 [bar a]": 8, "p2 [bar a]": 2}
+    found = remedies_of(_survey(tmp_path, row))["23-FCV-306"]
+    assert found[0].kind == "flashing"
+    assert any(remedy.cures for remedy in found[1:])
+
+
+def test_a_large_rise_of_pressure_goes_after_what_practice_does(tmp_path: Path) -> None:
+    """50 to 3 bar against 1.6: p2 at least 50 - (50 - 0.0234)/1.6 = 18.8, so 15.8 of the 47 bar: above a quarter."""
+    found = remedies_of(_survey(tmp_path, VALVE))["23-FCV-306"]
+    kinds = [remedy.kind for remedy in found if remedy.cures]
+    assert kinds.index("staged trim") < kinds.index("back-pressure")
+    rise = next(remedy for remedy in found if remedy.kind == "back-pressure")
+    assert rise.figures["back-pressure raised by"][0] == pytest.approx(15.76e5, rel=2e-3)
+    assert any("bare least" in caution for caution in rise.cautions)
+
+
+def test_behind_a_free_jet_nothing_holds_a_higher_pressure(tmp_path: Path) -> None:
+    row = {**VALVE, "p1 [bar a]": 2.6, "p2 [bar a]": None, "Outlet into": "free jet", "Site elevation [m]": 0}
+    # (2.6 - 0.0234)/(2.6 - 1.01325) = 1.624 against 1.63: a hundredth of the drop more would do, were there a way.
+    found = remedies_of(_survey(tmp_path, row | {"Damage": 1.63}))["23-FCV-306"]
+    assert found[0].kind != "back-pressure"
+    rise = next(remedy for remedy in found if remedy.kind == "back-pressure")
+    assert any("free jet" in caution for caution in rise.cautions)
+
+
+def test_another_valve_is_named_by_what_it_must_have(tmp_path: Path) -> None:
+    """FL is not the matter where a damage limit is crossed and nothing chokes: 1.594 against 1.6, choked at 1.02."""
+    remedy = _remedies(tmp_path, VALVE | {"p1 [bar a]": 6.0, "p2 [bar a]": 2.25})["higher recovery factor"]
+    assert remedy.title == "valve with a lower limit"
+    assert remedy.text.startswith("a valve with a damage limit (upstream form")
+
+
+def test_what_was_tried_is_named_before_what_cannot_be(tmp_path: Path) -> None:
+    survey = _survey(tmp_path, VALVE, VALVE | {"Case": "maximum", "Flow [m3/h]": None})
+    found = remedies_of(survey)["23-FCV-306"]
+    assert not np.isnan(found[0].margin)
+    words = best_words(survey.items[0], found)
+    assert words.startswith("not to be confirmed while 1 case has no answer: staged trim of 3 stages")
+
+
+def test_the_words_of_a_remedy_in_us_units(tmp_path: Path) -> None:
+    """Each number by hand from its figure: 1 psi = 6894.757 Pa, 1 ft = 0.3048 m, Cv = 1.156 Kv (IEC 60534-1)."""
+    row = VALVE | {"p1 [bar a]": 12, "p2 [bar a]": 4, "FL": 0.9, "Damage": 1.7, "Valve size [mm]": 80, "Kvs": 30}
+    found = {remedy.kind: remedy for remedy in remedies_of(_survey(tmp_path, row))["23-FCV-306"]}
+    rise = found["back-pressure"]
+    raised, p2 = (rise.figures[name][0] / 6894.757 for name in ("back-pressure raised by", "p2 at least"))
+    words = re.search(r"raised by ([\d.]+) psi, p2 at least ([\d.]+) psia", rise.in_units("us").text)
+    assert words is not None
+    for shown, value in zip(words.groups(), (raised, p2), strict=True):
+        assert value * (1.0 - 1e-6) <= float(shown) < value * 1.001
+    lower = found["lower location"]
+    deep = re.search(r"^([\d.]+) ft lower", lower.in_units("us").text)
+    assert deep is not None
+    assert 0.0 <= float(deep[1]) - lower.figures["lower by"][0] / 0.3048 + 1e-6 < 0.1
+    for remedy in found.values():
+        said = " ".join((remedy.in_units("us").text, *remedy.in_units("us").cautions))
+        assert not re.search(r"\d (bar|mm|m|deg C|K)\b|Kv", said), said
+        assert remedy.in_units("metric").text == remedy.text
 
 
 def test_a_case_without_an_answer_is_no_cure(tmp_path: Path) -> None:

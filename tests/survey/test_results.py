@@ -58,6 +58,8 @@ def test_an_item_with_a_case_without_an_answer(tmp_path: Path) -> None:
     survey = _cases(tmp_path, {}, {"FL": None})
     item = survey.items[0]
     assert (item.worst, item.unanswered, item.fails) == (0, 1, False)
+    # The case without an answer may be the worst: the item is not called clear for the sake of the other.
+    assert (item.regime, item.basis) == (None, None)
     assert "1 without an answer" in item.why
     assert survey.exit_code == 1
     nothing = _cases(tmp_path, {"FL": None}).items[0]

@@ -22,18 +22,20 @@ class Value:
     case: str | None
     """Name of the case; None for what holds for the item."""
     cell: str
-    """``Sheet1!C7``; of a PDF ``page 1, line 12``; of a csv ``row 7, column 3``."""
+    """``Sheet1!C7``; of a PDF ``page 1, line 12, part 3`` (parts from left to right); of a csv ``row 7, column 3``."""
     label: str
     """As it stands there."""
     label_cell: str
     raw: str
     """The value as shown."""
     number: float
-    """The number as shown, NaN for a word."""
+    """The number in ``unit``, NaN for a word: of a workbook as stored, of which ``raw`` and ``half`` tell the digits
+    shown; a number shown in per cent is the number of per cents."""
     unit: str
-    """Canonical label of the unit as read; empty for plain ratios and words."""
+    """Canonical label of the unit as read, with `` g`` or `` a`` only where the sheet says so (``bar g``); ``DN`` and
+    ``NPS`` for nominal sizes; empty for plain ratios and words."""
     unit_from: str
-    """``label``, ``cell``, ``beside``, ``head`` (of the column or row), ``quantity`` (Kv, DN: the name says it),
+    """``label``, ``cell``, ``beside``, ``head`` (of the column, row or block), ``quantity`` (Kv, DN: the name says it),
     ``layout``; empty where there is none."""
     gauge: bool | None
     """Of a pressure: gauge (True), absolute (False) or not said (None)."""
@@ -42,12 +44,24 @@ class Value:
     si: float
     """In SI, absolute; NaN where that cannot be said."""
     confidence: float
-    """0 to 1: how surely the label means this quantity and the cell is its value."""
+    """0 to 1: how surely the label means this quantity and the cell is its value. 0.95 and more: a standard label with
+    all its words known, the value right by it, a fitting unit; unknown words of the label, a missing unit, a meaning
+    found by a heading or by elimination take from it; 1 is a pinned cell of a layout."""
     word: str | None = None
     """A value in words: a style, a characteristic, ``no cavitation``."""
     form: str | None = None
     """Of an index or limit: the form that its label states, None where it states none."""
     note: str = ""
+
+    @property
+    def nominal(self) -> bool:
+        """Is it a nominal size, which names a pipe and does not measure it?"""
+        return self.unit in ("DN", "NPS")
+
+    @property
+    def coarse(self) -> float:
+        """Half of the last digit shown, as a share; 0 of a word."""
+        return self.half / abs(self.number) if self.half > 0.0 and self.number else 0.0
 
 
 @dataclass(frozen=True)
@@ -56,7 +70,7 @@ class Finding:
 
     kind: str
     """``ambiguous``, ``unread``, ``unit``, ``gauge``, ``case``, ``contradiction``, ``layout``, ``several``,
-    ``hidden``, ``link``, ``formula``."""
+    ``hidden``, ``link``, ``formula``; of notes also ``text`` (how texts were taken)."""
     cell: str
     text: str
     remedy: str = ""
@@ -77,15 +91,21 @@ class SheetReading:
     """Names of the cases in the sheet's order; one empty name for a sheet of one column."""
     values: tuple[Value, ...]
     findings: tuple[Finding, ...] = ()
+    """What the engineer must look at: each is a reason for exit code 1."""
+    notes: tuple[Finding, ...] = ()
+    """What else was or was not read: numbers without a known label, hidden cells; no reason for an exit code."""
     atmosphere: float = 101325.0
     """Pa; what gauge pressures were counted from."""
     atmosphere_from: str = "assumed"
     """``sheet``, ``elevation``, ``option``, ``assumed``."""
+    part_of: str = ""
+    """Of one of several items on a sheet: the name of the sheet."""
 
     def of(self, quantity: str, case: str | None) -> Value | None:
-        """The value of a quantity in a case, or for the item where no case has its own."""
+        """The value of a quantity in a case, or for the item where no case has its own; a measure before a nominal
+        size, the surer before the less sure, the finer before the coarser."""
         found = [v for v in self.values if v.quantity == quantity and v.case in (case, None)]
-        return max(found, key=lambda v: (v.case is not None, v.confidence), default=None)
+        return max(found, key=lambda v: (v.case is not None, not v.nominal, v.confidence, -v.coarse), default=None)
 
 
 @dataclass(frozen=True, eq=False)
@@ -100,6 +120,8 @@ class Document:
     sheets: tuple[SheetReading, ...]
     findings: tuple[Finding, ...] = ()
     """About the file as a whole."""
+    notes: tuple[Finding, ...] = ()
+    """What else was or was not read of it, such as covers."""
 
 
 @dataclass(frozen=True)
@@ -116,6 +138,8 @@ class Suspect:
     """Claims (quantity, case) that these mistakes explain together."""
     equal: int = 0
     """How many other suspects explain as well as this one and cannot be told from it by the numbers."""
+    numbers: tuple[str, ...] = ()
+    """The number that follows for each of ``explains``, with the digits of that claim."""
 
 
 @dataclass(frozen=True)
@@ -143,6 +167,8 @@ class Claim:
     computed_word: str | None = None
     missing: tuple[str, ...] = ()
     """Keys of what is missing for an ``unchecked`` one."""
+    tried: bool = True
+    """Of one that differs: were the usual mistakes tried on it?"""
 
 
 @dataclass(frozen=True, eq=False)

@@ -243,6 +243,9 @@ class Writer:
         return Piece(f"{PREFIX}{name}({_arguments(given)})", array, kind, None, loose)
 
     def _let(self, call: Call) -> Piece:
+        names = call.arguments[:-1:2]
+        if len(call.arguments) % 2 == 0 or any(len(name) != 1 or not isinstance(name[0], Atom) for name in names):
+            raise BlockedError("unreadable", "LET is not given pairs of a name and a value, and what to work out")
         outer = dict(self.names)
         written = []
         for place, argument in enumerate(call.arguments):

@@ -12,8 +12,8 @@ Traps of formualizer 0.13, found by trial, and how they are met here:
   ``diagnostics`` says when iteration took place.
 * Cycles are judged at run time, as spreadsheet programs do: ``=IF(TRUE,3,A4)`` in A4 is no circle.
 * An unknown function inside IFERROR is swallowed silently: such a formula must be blocked by its text.
-* The time limit is looked at between layers of cells only: one call-back or one array is not interrupted (a worker
-  process that is ended from outside is the only cure; an array is refused above ten million cells).
+* The time limit is looked at between layers of cells only: one call-back or one array (ten million cells at most) is
+  not interrupted; only a worker process that is ended from outside cures that.
 * NaN and infinity from a call-back come through as they are; 1.0 and -0.0 print as "1" and "-0".
 """
 
@@ -27,6 +27,7 @@ import threading
 import time
 import weakref
 from collections.abc import Callable, Iterable, Mapping, Sequence
+from contextlib import suppress
 from dataclasses import dataclass
 from functools import lru_cache, partial
 from typing import Any, NamedTuple
@@ -188,7 +189,7 @@ class Engine:
 
     def __init__(self, book: fz.Workbook, seconds: float, name: str = "the workbook") -> None:
         book.set_temporal_egress("serial")
-        self._book, self._name = book, name
+        self._book, self.name = book, name
         self._seconds = seconds
         self._until: float | None = None  # set when the first evaluation begins
         self._failure: BaseException | None = None
@@ -283,6 +284,13 @@ class Engine:
         """Set a rectangle of formulas, each with its ``=``."""
         self._book.set_formulas_batch(sheet, row, column, [list(line) for line in grid])
 
+    def renew(self, sheet: str, row: int, column: int, formula: str) -> bool:
+        """Set a stored formula again; False where the engine refuses a circle that it took from the file."""
+        with suppress(RuntimeError):
+            self._book.set_formulas_batch(sheet, row, column, [[formula]])
+            return True
+        return False
+
     def values(self, sheet: str, row1: int, column1: int, row2: int, column2: int) -> Grid:
         """The values of a rectangle, corners included."""
         area = fz.RangeAddress(sheet, row1, column1, row2, column2)
@@ -349,11 +357,11 @@ class Engine:
         text = str(trouble)
         if "deadline" in text or "CANCELLED" in text:
             return self._late()
-        return BookError(self._name, "must be evaluated by the engine", _short(trouble), "Please report it.")
+        return BookError(self.name, "must be evaluated by the engine", _short(trouble), "Please report it.")
 
     def _late(self) -> BookError:
-        remedy = "Nothing was written. Split the workbook, or allow more time: --limit seconds=..."
-        return BookError(self._name, f"must be evaluated within {self._seconds:g} s", "more", remedy)
+        remedy = "Nothing was written. Split the workbook, or allow more: --limit seconds=..."
+        return BookError(self.name, f"must be evaluated within {self._seconds:g} s", "more", remedy)
 
 
 def _all_plain(cells: Sequence[Any]) -> bool:

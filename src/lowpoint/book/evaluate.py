@@ -92,13 +92,14 @@ class Run:
         """Work out the formulas of failed callbacks once more: an earlier round may have made a call in a branch that
         is not taken by now."""
         cells = {(site, row) for site, row in self.failed if self.plan_sites[site][1].args is None}
-        for key in cells:
-            del self.failed[key]
+        before = {key: self.failed.pop(key) for key in cells}
         for entry, row in {(self.plan_sites[site][0], row) for site, row in cells}:
             pieces = formula_of(entry.work)
             if pieces is not None:
                 formula = "=" + instance(text_of(pieces), row)
-                self.engine.set_formulas(entry.group.sheet, row, entry.group.column, [[formula]])
+                if not self.engine.renew(entry.group.sheet, row, entry.group.column, formula):
+                    sites = {site.number for site in entry.work.sites}
+                    self.failed |= {key: why for key, why in before.items() if key[0] in sites and key[1] == row}
         if cells:
             self.engine.evaluate()
 

@@ -6,10 +6,12 @@ import re
 from collections.abc import Iterable
 
 from lowpoint.book.guard_limits import Limits, too_much
+from lowpoint.book.refs import Area
 
-__all__ = ["CellCount", "cells_of", "formula_refusal"]
+__all__ = ["CellCount", "area_size", "cells_of", "formula_refusal"]
 
-_CELL = re.compile(rb"<(?:[\w.-]+:)?c[\s>/]")
+_AFTER = (b" ", b">", b"/", b"\t", b"\n", b"\r", b"\f", b"\v")  # counting fixed words takes half the time of a pattern
+_PREFIXED = re.compile(rb"<[\w.-]+:c[\s>/]")
 
 
 class CellCount:
@@ -24,6 +26,11 @@ class CellCount:
         if self.found > self.most:
             too_much(self.book, f"hold at most {self.most} cells", f"{self.found} or more", "cells")
 
+    def add_part(self, part: bytes) -> None:
+        """The cells of a worksheet's bytes; they are looked at one by one only where there might be too many."""
+        most = part.count(b"<c") + part.count(b":c")
+        self.add(most if self.found + most <= self.most else cells_of(part))
+
 
 def cells_of(part: bytes) -> int:
     """The cells that a worksheet's bytes hold.
@@ -31,7 +38,13 @@ def cells_of(part: bytes) -> int:
     >>> cells_of(b'<row><c r="A1"/><x:c><x:v>1</x:v></x:c><col min="1"/></row>')
     2
     """
-    return sum(1 for _ in _CELL.finditer(part))
+    plain = sum(part.count(b"<c" + after) for after in _AFTER)
+    return plain + (sum(1 for _ in _PREFIXED.finditer(part)) if b":c" in part else 0)
+
+
+def area_size(area: Area) -> int:
+    """The cells that an array fills, all of which are made."""
+    return (area.r2 - area.r1 + 1) * (area.c2 - area.c1 + 1)
 
 
 def formula_refusal(length: int, kinds: Iterable[str], limits: Limits) -> str:

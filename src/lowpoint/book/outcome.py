@@ -9,6 +9,8 @@ from typing import TYPE_CHECKING, Any
 from lowpoint.cells import CellError, reason
 
 from .evaluate import Run
+from .guard_cells import CellCount
+from .guard_limits import in_force
 from .plan import Entry, Plan, mark_fed
 from .refs import Area, address
 from .report import Failure, Kept
@@ -135,12 +137,14 @@ def _spills(engine: Engine, entry: Entry, values: Sequence[Any], full: bool) -> 
     group = entry.group
     if group.kind == "plain" or (group.area is None and entry.work.single):
         return
+    counted = CellCount(engine.name, in_force())
     for row, value in zip(group.rows, values, strict=True):
         height, width = 1, 1
         if group.kind == "array" and group.area is not None:
             height, width = group.area.r2 - group.area.r1 + 1, group.area.c2 - group.area.c1 + 1
         elif not entry.work.single and value is not CellError.SPILL:
             height, width = engine.spill(group.sheet, row, group.column)
+            counted.add(height * width)
         new = Area(row, group.column, row + height - 1, group.column + width - 1)
         old = group.area or Area(row, group.column, row, group.column)
         if old == new == Area(row, group.column, row, group.column):

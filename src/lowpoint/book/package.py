@@ -230,11 +230,17 @@ class Package:
 
     # Writing
 
-    def packed(self, changed: Mapping[str, bytes], level: int = LEVEL) -> bytes:
-        """The package in memory with these parts replaced; the others keep bytes, order and marks."""
+    def packed(
+        self, changed: Mapping[str, bytes], level: int = LEVEL, added: Mapping[str, bytes] | None = None
+    ) -> bytes:
+        """The package in memory with these parts replaced and ``added`` ones behind the last; the others keep bytes,
+        order and marks."""
         self._check_changed(changed)
+        twice = {name.casefold() for name in self.names} & {name.casefold() for name in added or ()}
+        if twice:
+            raise ValueError(f"{self.name} has a part {min(twice)} already")
         sink = io.BytesIO()
-        rewrite(self._archive, sink, changed, level)
+        rewrite(self._archive, sink, changed, level, added)
         return sink.getvalue()
 
     def write(self, path: str | os.PathLike[str], changed: Mapping[str, bytes]) -> None:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import Any
 
@@ -12,7 +12,7 @@ from .refs import Area, address, column_letters
 from .report import Change
 from .sheet import Group, SheetPart
 from .spills import Spill, spill_edits
-from .stored import Edit, new_attributes, number_text, old_value, same, value_element, with_value
+from .stored import Edit, new_attributes, number_elements, old_value, same, value_element, with_value
 
 __all__ = ["Patched", "patch_sheet"]
 
@@ -45,8 +45,9 @@ def patch_sheet(
     result = Patched()
     found, spilled = spill_edits(sheet, spills, strings) if spills else ([], [])
     out = _Output(sheet.data, sorted(found))
-    for edit in _formula_cells(sheet, values, fed, kept, spills, strings, result):
-        out.put(*edit)
+    running = {group: _Column(group, results, fed(group), sheet.prefix) for group, results in values.items()}
+    ranges = {(spill.row, spill.column): spill.new for spill in spills if spill.old != spill.new}
+    _formula_cells(sheet, running, kept, ranges, strings, result, out)
     if spilled:
         for spill, change in spilled:
             result.note(change, spill.fed)
@@ -55,6 +56,21 @@ def patch_sheet(
     data = out.finished()
     result.data = sheet.encoded(data) if data is not None else None
     return result
+
+
+class _Column:
+    """The results of one group on their way into the cells, from the first row of the file to the last."""
+
+    def __init__(self, group: Group, results: Sequence[Any], fed: bool, prefix: bytes) -> None:
+        self.letters, self.fed = column_letters(group.column), fed
+        self.coming = zip(results, _elements(prefix, results), strict=True)
+
+
+def _elements(prefix: bytes, results: Sequence[Any]) -> Iterable[bytes]:
+    """The value elements of numbers and texts; nothing for other results, which are rare."""
+    numbers = iter(number_elements(prefix, [r for r in results if type(r) is float]))
+    texts = {text: value_element(prefix, text)[1] for text in {r for r in results if type(r) is str}}
+    return [next(numbers) if type(r) is float else texts[r] if type(r) is str else b"" for r in results]
 
 
 class _Output:
@@ -90,49 +106,59 @@ class _Output:
 
 def _formula_cells(
     sheet: SheetPart,
-    values: Mapping[Group, Sequence[Any]],
-    fed: Callable[[Group], bool],
+    running: Mapping[Group, _Column],
     kept: set[tuple[int, int]],
-    spills: Sequence[Spill],
+    ranges: Mapping[tuple[int, int], Area],
     strings: Sequence[str],
     result: Patched,
-) -> Iterator[Edit]:
-    """The edits of formula cells in file order; the changes into ``result``."""
-    ranges = {(spill.row, spill.column): spill.new for spill in spills if spill.old != spill.new}
-    running = {
-        group: (iter(found), fed(group), column_letters(group.column)) for group, found in values.items()
-    }  # fmt: skip
-    scanned, title = sheet.scanned, sheet.title
-    opening, closing = b"<%bv>" % sheet.prefix, b"</%bv>" % sheet.prefix
-    begin, cell_end = b"<%bv" % sheet.prefix, b"</%bc>" % sheet.prefix
-    ending = len(cell_end)
-    cells = zip(sheet.starts, sheet.ends, sheet.simple, sheet.rows, sheet.columns, sheet.groups, strict=True)
-    for start, end, simple, row, column, group in cells:
-        if group not in running:
+    out: _Output,
+) -> None:
+    """The edits of formula cells in file order, and the changes into the result."""
+    scanned, title, put = sheet.scanned, sheet.title, out.put
+    ending = len(b"</%bc>" % sheet.prefix)
+    cells = zip(sheet.starts, sheet.ends, sheet.plain, sheet.rows, sheet.columns, sheet.groups, strict=True)
+    for start, end, plain, row, column, group in cells:
+        results = running.get(group)
+        if results is None:
             continue
-        coming, feeding, letters = running[group]
-        new = next(coming)
+        new, element = next(results.coming)
         if kept and (row, column) in kept:
             continue
-        if simple and type(new) is float and not ranges and scanned.endswith(cell_end, start, end):
-            # Most cells: a number in the place of a number.
-            element, first, last = opening + number_text(new) + closing, scanned.rfind(begin, start, end), end - ending
-            stored = scanned[first:last]
-            old = new if stored == element else _plain_value(stored)
-            edit = None if same(old, new, exact=feeding) else (first, last, element)
+        if plain and element and not ranges:
+            # Most cells: there was a number.
+            stored = scanned[plain : end - ending]
+            old = new if stored == element and type(new) is float else _plain_value(stored, len(sheet.prefix))
+            right = old is not None and same(old, new, exact=results.fed)
+            edit = None if right else _replacing(sheet, start, plain, end - ending, new, element)
         else:
-            old, edit = _edited(sheet, start, new, feeding, ranges.get((row, column)), strings)
-        if same(old, new, exact=feeding):
+            old, edit = _edited(sheet, start, new, results.fed, ranges.get((row, column)), strings)
+            right = same(old, new, exact=results.fed)
+        if right:
             result.untouched += 1
         else:
-            result.note(Change(title, f"{letters}{row}", old, new), feeding)
+            result.note(Change(title, f"{results.letters}{row}", old, new), results.fed)
         if edit is not None:
-            yield edit
+            put(*edit)
 
 
-def _plain_value(element: bytes) -> Any:
-    """What the value element of a plain number holds; None where it is empty or not there."""
-    return old_value(b"", element[element.find(b">") + 1 : element.rfind(b"<")], b"", ())
+def _plain_value(element: bytes, prefix: int) -> Any:
+    """What the value element of a plain number holds; None where it is empty. ``prefix`` is the length of its own."""
+    if len(element) <= len(b"<v></v>") + 2 * prefix:
+        return None
+    try:
+        return float(element[3 + prefix : -4 - prefix])
+    except ValueError:  # nothing in it, attributes, or no number
+        return old_value(b"", element[element.find(b">") + 1 : element.rfind(b"<")], b"", ())
+
+
+def _replacing(sheet: SheetPart, start: int, first: int, last: int, new: Any, element: bytes) -> Edit | None:
+    """A number or text in the place of a number, whose value element is from ``first`` to ``last``."""
+    if type(new) is float:
+        return first, last, element
+    head = sheet.scanned.find(b"><%bf" % sheet.prefix, start, first)
+    if head < 0 or sheet.scanned[head - 1 : head].isspace():
+        return _edited(sheet, start, new, True, None, ())[1]
+    return head, last, b' t="str"%b%b' % (sheet.data[head:first], element)
 
 
 def _edited(

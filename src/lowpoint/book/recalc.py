@@ -14,7 +14,8 @@ from lowpoint.errors import BookError
 
 from .curing import cure
 from .foreign import foreign_cells, late_errors
-from .guard_cells import CellCount, cells_of
+from .garbage import uncollected
+from .guard_cells import CellCount
 from .guard_limits import Limits, in_force, limiting
 from .guard_memory import enough_memory
 from .hiding import hiding_of
@@ -57,7 +58,7 @@ def recalculate(
     >>> recalculate("kestrel-bay.xlsx").exit_code  # doctest: +SKIP
     0
     """
-    with limiting(limits or in_force()), enough_memory(path):
+    with limiting(limits or in_force()), enough_memory(path), uncollected():
         return _recalculated(path, output_path(path, out, in_place), in_place, values, per_cell)
 
 
@@ -112,7 +113,7 @@ class Book:
 
     def _part(self, sheet: Sheet, counted: CellCount) -> SheetPart:
         raw = self.package.read(sheet.path)
-        counted.add(cells_of(raw))
+        counted.add_part(raw)
         return SheetPart(sheet.title, sheet.path, raw, self.package.name, self.limits)
 
     @property

@@ -1,4 +1,4 @@
-"""Writing a zip container anew with some members' content changed and nothing else moved.
+"""Writing a zip container anew with some members' content changed, some put behind them, and nothing else moved.
 
 Untouched members go out with their compressed bytes, headers, extra fields, comments, dates and gaps as they
 came in, in the same order; with nothing changed the whole file comes out as it came in.
@@ -38,11 +38,18 @@ LEVEL = 4  # half the time of the usual 6 for sheets 2 to 3 per cent larger (mea
 ZIP64_FROM = FULL32
 ZIP64_COUNT_FROM = FULL16
 
+UTF8_FLAG = 0x0800
+FIRST_DAY = 0x0021  # 1980-01-01, the first that the format knows: a new member has no date of its own
 
-def rewrite(archive: Archive, sink: BinaryIO, changed: Mapping[str, bytes], level: int = LEVEL) -> None:
+
+def rewrite(
+    archive: Archive, sink: BinaryIO, changed: Mapping[str, bytes], level: int = LEVEL,
+    added: Mapping[str, bytes] | None = None,
+) -> None:  # fmt: skip
     """Write the archive with the content of some members replaced; all else goes out byte for byte.
 
-    A replacement equal to the content it replaces changes nothing. Changed members are deflated at ``level``.
+    A replacement equal to the content it replaces changes nothing. ``added`` members, whose names must be new, follow
+    the last one. Changed and new members are deflated at ``level``.
     """
     regions = sorted(archive.entries, key=lambda entry: entry.start)
     records: dict[str, bytes] = {}
@@ -54,9 +61,29 @@ def rewrite(archive: Archive, sink: BinaryIO, changed: Mapping[str, bytes], leve
         else:
             records[entry.name] = _moved(entry, place)
             place += sink.write(memoryview(archive.data)[entry.start : entry.stop])
-    table = b"".join(records[entry.name] for entry in archive.entries)
+    new = added or {}
+    for name, content in new.items():
+        local, records[name] = _fresh(name, content, place, level)
+        place += sink.write(local)
+    table = b"".join(records[name] for name in (*(entry.name for entry in archive.entries), *new))
     sink.write(table)
-    sink.write(_ending(archive.directory, place, len(table), len(archive.entries)))
+    sink.write(_ending(archive.directory, place, len(table), len(archive.entries) + len(new)))
+
+
+def _fresh(name: str, content: bytes, place: int, level: int) -> tuple[bytes, bytes]:
+    """A new member's local record and central record."""
+    if max(len(content), place) >= ZIP64_FROM:
+        raise ValueError(f"{name} is too large, or too far back, for a new member")
+    packed, crc, title = _deflated(content, level), zlib.crc32(content), name.encode()
+    sums = (crc, len(packed), len(content), len(title), 0)
+    head = LOCAL.pack(b"PK\x03\x04", 20, UTF8_FLAG, DEFLATED, 0, FIRST_DAY, *sums)
+    record = CENTRAL.pack(b"PK\x01\x02", 20, 20, UTF8_FLAG, DEFLATED, 0, FIRST_DAY, *sums, 0, 0, 0, 0, place)
+    return b"".join((head, title, packed)), record + title
+
+
+def _deflated(content: bytes, level: int) -> bytes:
+    engine = zlib.compressobj(level, zlib.DEFLATED, -zlib.MAX_WBITS)
+    return engine.compress(content) + engine.flush()
 
 
 def _same(archive: Archive, entry: Entry, content: bytes) -> bool:
@@ -90,8 +117,7 @@ def _field_place(extra: bytes) -> int:
 
 def _renewed(entry: Entry, content: bytes, place: int, level: int, data: bytes) -> tuple[bytes, bytes]:
     """A changed member's local record and central record."""
-    engine = zlib.compressobj(level, zlib.DEFLATED, -zlib.MAX_WBITS)
-    packed = engine.compress(content) + engine.flush()
+    packed = _deflated(content, level)
     crc, flags = zlib.crc32(content), entry.flags & ~(DESCRIPTOR_FLAG | OPTION_FLAGS)
     _, version, _, _, when, day, _, _, _, name_length, extra_length = LOCAL.unpack_from(data, entry.start)
     begin = entry.start + LOCAL.size

@@ -11,6 +11,7 @@ from contextlib import suppress
 from pathlib import Path
 from typing import BinaryIO
 
+from lowpoint.book.saving_claims import claim, remove_abandoned
 from lowpoint.errors import BookError
 
 __all__ = ["OWNER", "remove_leftovers", "replace_file"]
@@ -37,8 +38,8 @@ def replace_file(target: Path, fill: Callable[[BinaryIO], object]) -> None:
     before = _existing(target, real)
     temporary = real.with_name(f".lowpoint-{OWNER}-{secrets.token_hex(8)}.tmp")
     try:
-        _fill(temporary, before, fill)
-        os.replace(temporary, real)
+        remove_abandoned(real.parent)
+        _fill(temporary, before, fill, real)
     except OSError as problem:
         raise _explained(target, problem) from problem
     finally:
@@ -71,16 +72,23 @@ def _existing(target: Path, real: Path) -> os.stat_result | None:
     return before
 
 
-def _fill(temporary: Path, before: os.stat_result | None, fill: Callable[[BinaryIO], object]) -> None:
+def _fill(
+    temporary: Path, before: os.stat_result | None, fill: Callable[[BinaryIO], object], real: Path
+) -> None:  # fmt: skip
     flags = os.O_WRONLY | os.O_CREAT | os.O_EXCL | getattr(os, "O_BINARY", 0) | getattr(os, "O_NOFOLLOW", 0)
     # A new file gets what the umask allows; one that replaces another is private until it has that one's
     # mode.
     with os.fdopen(os.open(temporary, flags, 0o600 if before else 0o666), "wb") as sink:
+        claim(sink.fileno())
         fill(sink)
         sink.flush()
         os.fsync(sink.fileno())
-    if before is not None:
-        _keep_marks(temporary, before)
+        if before is not None:
+            _keep_marks(temporary, before)
+        if os.name != "nt":
+            os.replace(temporary, real)  # still claimed
+    if os.name == "nt":
+        os.replace(temporary, real)  # which takes no open file there
 
 
 def _keep_marks(temporary: Path, before: os.stat_result) -> None:

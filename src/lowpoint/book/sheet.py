@@ -18,7 +18,7 @@ from lowpoint.errors import BookError
 
 from .attributes import attribute, place_of
 from .formulas import OWN_ROW, Token, Unreadable, shape_key, shifted, tokenise
-from .guard_cells import formula_refusal
+from .guard_cells import CellCount, area_size, formula_refusal
 from .guard_limits import Limits, in_force
 from .parts import blanked
 from .refs import LAST_ROW, Area, address, area, column_number
@@ -86,7 +86,8 @@ def cell_pattern(prefix: bytes) -> Found:
 class SheetPart:
     """A worksheet's bytes, its formula cells in file order, and their groups.
 
-    ``simple`` says of each whether it is a number that ends with its value element: another one takes its place.
+    ``plain`` says of each cell that holds a number, and ends with its value element, where that element begins: another
+    one takes its place. It is 0 for the others.
     """
 
     def __init__(self, title: str, path: str, raw: bytes, book: str, limits: Limits | None = None) -> None:
@@ -100,7 +101,7 @@ class SheetPart:
         self.body = self._body()
         self.starts, self.ends = array("Q"), array("Q")
         self.rows, self.columns = array("L"), array("L")
-        self.simple = bytearray()
+        self.plain = array("Q")
         self.groups: list[Group] = []
         self._shapes = _Shapes(title)
         self._scan()
@@ -113,12 +114,14 @@ class SheetPart:
 
     def _bound(self, limits: Limits) -> None:
         """Formulas beyond the limits keep their values; the reason goes into the report."""
+        filled = CellCount(self.book, limits)
         for group in self.distinct:
+            filled.add(0 if group.area is None else area_size(group.area))
             refusal = "" if group.reason else formula_refusal(len(group.text), (t.kind for t in group.tokens), limits)
             group.reason = group.reason or refusal
 
     def _check(self, book: str) -> None:
-        parser = expat.ParserCreate("utf-8", " ")  # names of namespaces are checked too
+        parser = expat.ParserCreate("utf-8")  # what was in another encoding has been put into this one
         try:
             parser.Parse(self.data, True)
         except expat.ExpatError as problem:
@@ -140,8 +143,9 @@ class SheetPart:
 
     def _scan(self) -> None:
         starts, ends, rows, columns, groups = self.starts, self.ends, self.rows, self.columns, self.groups
-        simple = self.simple
+        plain, common, other = self.plain, self._shapes.common, self._shapes.group
         numbers: dict[bytes, int] = {}
+        ending = len(b"</%bc>" % self.prefix)
         unnamed: dict[int, tuple[int, int]] | None = None
         nested = re.compile(rb"<%b[cfv](?=[\s>/])" % re.escape(self.prefix))
         for cell in self.found.formula_cell.finditer(self.scanned, *self.body):
@@ -161,13 +165,16 @@ class SheetPart:
                 row = int(digits)
             if rest and nested.search(rest):
                 raise self._odd_cell(cell.start())
-            group = self._shapes.group(row, column, digits, attributes, formula, text)
+            group = None if formula or not text else common.get((column, text.replace(digits, _OWN)))
+            group = group or other(row, column, digits, attributes, formula, text)
             if group is None or not 1 <= row <= LAST_ROW:
                 continue
             group.rows.append(row)
-            starts.append(cell.start())
-            ends.append(cell.end())
-            simple.append(not rest and element is not None and b"t" not in attributes and b"vm" not in attributes)
+            start, end = cell.span()
+            starts.append(start)
+            ends.append(end)
+            typed = b"t" in attributes or b"vm" in attributes
+            plain.append(0 if rest or typed or not element or cell.end(6) + ending != end else cell.start(6))
             rows.append(row)
             columns.append(column)
             groups.append(group)
@@ -259,7 +266,8 @@ class _Shapes:
 
     def __init__(self, sheet: str) -> None:
         self.sheet = sheet
-        self._by_text: dict[tuple[int, bytes], Group | str] = {}
+        self.common: dict[tuple[int, bytes], Group] = {}  # by column and text, the row's number taken out
+        self._met: dict[tuple[int, bytes], str] = {}  # texts of which it is open, or settled, that they are not common
         self._by_shape: dict[tuple[int, str], Group] = {}
         self._masters: dict[bytes, tuple[list[Token], int, str]] = {}
         self._copies: dict[tuple[bytes, int], Group] = {}
@@ -277,23 +285,21 @@ class _Shapes:
         if not text:
             return None
         key = (column, text.replace(digits, _OWN))
-        known = self._by_text.get(key)
-        if isinstance(known, Group):
-            return known
-        return self._by_reading(row, key, text, known)
+        return self.common.get(key) or self._by_reading(row, key, text)
 
-    def _by_reading(self, row: int, key: tuple[int, bytes], text: bytes, known: str | None) -> Group:
+    def _by_reading(self, row: int, key: tuple[int, bytes], text: bytes) -> Group:
+        known = self._met.get(key)
         if known != "apart":
             try:
                 tokens = _common_tokens(_plain(key[1]), met_before=known == "once")
             except Unreadable:  # the row's number also means something else here: read each formula by itself
-                self._by_text[key] = "apart"
+                self._met[key] = "apart"
             else:
                 if tokens is not None:
                     group = Group(self.sheet, key[0], tokens, _plain(text))
-                    self._by_text[key] = group
+                    self.common[key] = group
                     return group
-                self._by_text[key] = "once"
+                self._met[key] = "once"
         return self._by_itself(row, key[0], _plain(text))
 
     def _by_itself(self, row: int, column: int, text: str, kind: str = "plain") -> Group:

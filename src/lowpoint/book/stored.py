@@ -17,6 +17,7 @@ __all__ = [
     "FILE_SPELLING",
     "Edit",
     "new_attributes",
+    "number_elements",
     "number_text",
     "old_value",
     "same",
@@ -130,6 +131,18 @@ def value_element(prefix: bytes, value: Any) -> tuple[bytes, bytes]:
     edges = text[:1].isspace() or text[-1:].isspace()
     space = b' xml:space="preserve"' if edges else b""
     return kind, b"<%bv%b>%b</%bv>" % (prefix, space, text, prefix)
+
+
+def number_elements(prefix: bytes, numbers: Sequence[float]) -> list[bytes]:
+    """The value elements of many numbers, as :func:`value_element` makes them one by one.
+
+    >>> number_elements(b"", [2.0, 0.1])
+    [b'<v>2</v>', b'<v>0.1</v>']
+    """
+    # A list is written out in one go, in the same digits as its numbers one by one.
+    digits = f"{list(numbers)!r},"[1:].replace("],", ",").replace(".0,", ",")[:-1].encode()
+    between = b"</%bv>,<%bv>" % (prefix, prefix)
+    return (b"<%bv>%b</%bv>" % (prefix, digits.replace(b", ", between), prefix)).split(b",")
 
 
 def new_attributes(attributes: bytes, kind: bytes) -> bytes:

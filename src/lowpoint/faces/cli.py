@@ -6,6 +6,7 @@ Exit codes: 0 done, 1 findings or failed items, 2 misuse, 70 our bug, 130 interr
 from __future__ import annotations
 
 import argparse
+import errno
 import importlib
 import os
 import sys
@@ -19,17 +20,20 @@ __all__ = ["main"]
 COMMANDS = {
     "recalc": "recompute the LP_ functions of workbooks, and all that depends on them, without a spreadsheet program",
     "survey": "judge a plain list of items and operating cases: verdicts, margins, the worst case of each item",
-    "compare": "what changed between two issues of a list, and which verdicts turned",
-    "explain": "the whole working of one item of a list, step by step, with equation, numbers, units and source",
+    "audit": "recalculate the claims of a vendor's data sheet, and name the mistakes that would explain what differs",
+    "compare": "tell what changed between two issues of a list, and which verdicts turned",
+    "explain": "show the whole working of one item of a list, step by step, with equation, numbers, units and source",
     "starter": "write a book to begin with",
-    "functions": "the reference of the worksheet functions",
-    "calc": "the add-in that puts the LP_ functions into the cells of LibreOffice Calc",
-    "excel": "the add-in that puts the LP_ functions into the cells of Excel",
+    "functions": "show the reference of the worksheet functions",
+    "calc": "install the add-in that puts the LP_ functions into the cells of LibreOffice Calc",
+    "excel": "install the add-in that puts the LP_ functions into the cells of Excel",
 }
 """Each command with its one line of help; its module in this package has ``fill(parser)`` and ``run(options)``."""
 
 READERS = ("recalc", "survey", "compare", "explain", "audit")
 """Commands that read files from anywhere, which may hold and take only so much."""
+
+LONGEST_NAME = 200
 
 CAUTION = (
     "Lowpoint supports a qualified engineer: vendor test data, site rules, local codes and licensed practice "
@@ -44,7 +48,8 @@ def _parser(command: str | None) -> argparse.ArgumentParser:
         description="Cavitation index, sizing and limits of control valves and orifices in liquid service.",
         epilog=CAUTION,
     )
-    parser.add_argument("--version", action="version", version=f"lowpoint {__version__}")
+    parser.add_argument("--version", action="version", version=f"lowpoint {__version__}",
+                        help="show the version and exit")  # fmt: skip
     commands = parser.add_subparsers(dest="command", metavar="COMMAND", title="commands")
     for name, line in COMMANDS.items():
         sub = commands.add_parser(
@@ -94,7 +99,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
         return 2
     except OSError as trouble:
         # A stream has no file name: the disk behind a redirected output is full, or gone.
-        return _our_bug(trouble) if trouble.filename else _unheard(trouble)
+        return _named(trouble) if trouble.filename else _unheard(trouble)
     except Exception as bug:
         return _our_bug(bug)
 
@@ -112,6 +117,17 @@ def _run(options: argparse.Namespace) -> int:
     bound_memory(limits.memory)
     with limiting(limits):
         return int(run(options))
+
+
+def _named(trouble: OSError) -> int:
+    """A file or folder that the system does not give us: no fault of ours unless it is one of our own that lacks."""
+    words = {"ENAMETOOLONG", "ELOOP", "EACCES", "EPERM", "EROFS", "ENOSPC", "EDQUOT", "EIO", "ENOTDIR", "ESTALE"}
+    if errno.errorcode.get(trouble.errno or 0) not in words:
+        return _our_bug(trouble)
+    name = os.fsdecode(trouble.filename)
+    shown = name if len(name) <= LONGEST_NAME else f"{name[:LONGEST_NAME]}..."
+    print(f"lowpoint: {shown}: cannot be used ({trouble.strerror}). Name another one.", file=sys.stderr)
+    return 2
 
 
 def _unheard(trouble: OSError) -> int:

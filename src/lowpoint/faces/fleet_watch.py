@@ -11,7 +11,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from lowpoint.errors import LowpointError
-from lowpoint.faces.fleet_options import INTERRUPTED, pool_of
+from lowpoint.faces.fleet_options import BOOKS, INTERRUPTED, Kind, pool_of
 from lowpoint.problems import counted
 
 if TYPE_CHECKING:
@@ -30,7 +30,7 @@ BEAT = 0.25
 
 
 def run_watch(
-    folder: Path, looking: Looking, task_of: Callable[[Found], Task], options: argparse.Namespace
+    folder: Path, looking: Looking, task_of: Callable[[Found], Task], options: argparse.Namespace, kind: Kind = BOOKS
 ) -> int:  # fmt: skip
     """Work on the books that are there, then on each as it lands.
 
@@ -43,10 +43,11 @@ def run_watch(
     from lowpoint.fleet.summary import Summary
     from lowpoint.fleet.watching import Landings
 
-    summary = Summary(None)
+    summary = Summary(None, kind.noun)
     with Stopper() as stopper, Records(options.trail, options.since_last, _warn) as records:
         with closing(pool_of(options, None)) as pool:
-            watch = _Watch(Landings(folder, looking), task_of, pool, records, stopper, summary, options.json)
+            watch = _Watch(Landings(folder, looking), task_of, pool, records, stopper, summary,
+                           kind if options.json else None)  # fmt: skip
             try:
                 print(f"lowpoint: watching {folder}; a signal (Ctrl-C) ends it", file=sys.stderr, flush=True)
                 for paths in beats:
@@ -57,15 +58,15 @@ def run_watch(
             left = len(watch.open)
             if not options.json:
                 print("\n".join(summary.lines()))
-            undone = f"; {counted(left, 'book')} not done and left as they were" if left else ""
+            undone = f"; {counted(left, kind.noun)} not done and left as they were" if left else ""
             print(f"lowpoint: no longer watching {folder}{undone}", file=sys.stderr)
-            return INTERRUPTED if left else summary.exit_code
+            return INTERRUPTED if left else max(summary.exit_code, int(records.broken))
 
 
 class _Watch:
     def __init__(
         self, landings: Landings, task_of: Callable[[Found], Task], pool: Pool, records: Records, stopper: Stopper,
-        summary: Summary, as_json: bool,
+        summary: Summary, as_json: Kind | None,
     ) -> None:  # fmt: skip
         self.landings, self.task_of, self.pool, self.records = landings, task_of, pool, records
         self.stopper, self.summary, self.as_json = stopper, summary, as_json
@@ -98,9 +99,9 @@ class _Watch:
         for done in self.pool.collect(BEAT) if self.open else []:
             with self.stopper.held():
                 task = self.open.pop(done.number)
-                if task.source in task.targets:
-                    self.landings.ours(task.source)
-                self._told(Result(task, done.outcome, done.attempts, done.worker))
+                for target in task.targets:
+                    self.landings.ours(target)
+                self._told(Result(task, done.outcome, done.attempts, done.worker, done.memory))
         self.stopper.heed()
 
     def _told(self, result: object) -> None:
@@ -110,8 +111,11 @@ class _Watch:
         with self.stopper.held():
             self.records.add(result)
             self.summary.add(result)
-            text = json.dumps(result.outcome.data, ensure_ascii=False) if self.as_json else result.outcome.text
-            print(text, flush=True)
+            if self.as_json is None:
+                print(result.outcome.text, flush=True)
+                return
+            for data in self.as_json.told(result):
+                print(json.dumps(data, ensure_ascii=False), flush=True)
 
 
 def _check(folder: Path, looking: Looking) -> None:

@@ -37,6 +37,11 @@ class Bar:
         self.bar = tqdm(desc=f"lowpoint: {what}", total=total or None, file=self.stream, leave=False, delay=SOON,
                         dynamic_ncols=True, unit="")  # fmt: skip
 
+    def aside(self) -> None:
+        """Make room for a line of something else; the next step shows the bar again."""
+        if self.bar is not None:
+            self.bar.clear()
+
     def close(self) -> None:
         """Take the line away."""
         if self.bar is not None:

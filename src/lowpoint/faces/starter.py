@@ -13,42 +13,38 @@ __all__ = ["fill", "run"]
 KINDS = {
     "sheet": "a valve list with LP_ formulas: items, operating cases, limits, verdicts, summary, chart",
     "list": "a blank list for lowpoint survey, with help, choices and an example",
-    "datasheet": "a vendor's data sheet (not made by this version yet)",
+    "datasheet": "a valve's data sheet to fill in, which lowpoint audit reads, with an example",
 }
-MADE = ("sheet", "list")
-NAMES = {"sheet": ("valves.xlsx", "valves-us.xlsx"), "list": ("list.xlsx", "list-us.xlsx")}
+NAMES = {"sheet": ("valves.xlsx", "valves-us.xlsx"), "list": ("list.xlsx", "list-us.xlsx"),
+         "datasheet": ("datasheet.xlsx", "datasheet-us.xlsx")}  # fmt: skip
 """The default names, without and with --us."""
 
 
 def fill(parser: argparse.ArgumentParser) -> None:
     add = parser.add_argument
-    add("kind", choices=KINDS, metavar="KIND", help="; ".join(f"{kind}: {KINDS[kind]}" for kind in MADE))
+    add("kind", choices=KINDS, metavar="KIND", help="; ".join(f"{kind}: {what}" for kind, what in KINDS.items()))
     add(
         "-o",
         "--out",
         type=Path,
         metavar="OUT",
-        help="the file to write, or its folder (default: valves.xlsx or list.xlsx)",
+        help="the file to write, or its folder (default: valves.xlsx, list.xlsx, datasheet.xlsx)",
     )
-    add("--us", action="store_true", help="US customary units, LPU_ functions (default name: valves-us.xlsx)")
+    add("--us", action="store_true", help="US customary units, LPU_ functions (default name: ...-us.xlsx)")
     add("--overwrite", action="store_true", help="replace a file of that name")
     add("--json", action="store_true", help="one JSON value on standard output")
     parser.epilog = (
-        "examples:\n  lowpoint starter sheet -o valves.xlsx\n  lowpoint starter list -o items.xlsx\n\n"
+        "examples:\n  lowpoint starter sheet -o valves.xlsx\n  lowpoint starter list -o items.xlsx\n"
+        "  lowpoint starter datasheet --us\n\n"
         "The sheet is filled with the valves of an invented utility, some rows with planted mistakes; its sheet\n"
         "'Read me' says how to make it your own."
     )
 
 
 def run(options: argparse.Namespace) -> int:
-    if options.kind not in MADE:
-        raise LowpointError(
-            f"starter {options.kind}", f"is not made by this version yet; what there is: {', '.join(MADE)}",
-            remedy="Nothing was written.",
-        )  # fmt: skip
     out = _target(options.out, NAMES[options.kind][options.us], overwrite=options.overwrite)
-    if options.kind == "list":
-        return _list(out, us=options.us, as_json=options.json)
+    if options.kind != "sheet":
+        return _form(options.kind, out, us=options.us, as_json=options.json)
     items, cases = _write(out, us=options.us)
     if options.json:
         import json
@@ -59,19 +55,28 @@ def run(options: argparse.Namespace) -> int:
     return 0
 
 
-def _list(out: Path, *, us: bool, as_json: bool) -> int:
-    """Write the blank list."""
+def _form(kind: str, out: Path, *, us: bool, as_json: bool) -> int:
+    """Write a form to fill in: the blank list, or the data sheet with its example."""
     from lowpoint.book.saving import replace_file
-    from lowpoint.starter.list_form import list_bytes
 
     _check_unlocked(out)
-    replace_file(out, lambda sink: sink.write(list_bytes(us=us)))
+    if kind == "list":
+        from lowpoint.starter.list_form import list_bytes as form_bytes
+
+        items, cases, told = 0, 0, f"Fill its sheet List; 'lowpoint survey {out}' judges it."
+    else:
+        from lowpoint.starter.datasheet_form import datasheet_bytes as form_bytes
+        from lowpoint.starter.datasheet_lines import CASES
+
+        items, cases = 1, len(CASES)
+        told = f"Type over its sheet Data sheet; 'lowpoint audit {out}' checks it."
+    replace_file(out, lambda sink: sink.write(form_bytes(us=us)))
     if as_json:
         import json
 
-        print(json.dumps({"out": str(out), "items": 0, "cases": 0}))
+        print(json.dumps({"out": str(out), "items": items, "cases": cases}))
     else:
-        print(f"Written: {out}. Fill its sheet List; 'lowpoint survey {out}' judges it.")
+        print(f"Written: {out}. {told}")
     return 0
 
 

@@ -4,10 +4,14 @@ from __future__ import annotations
 
 import argparse
 import json
+import shutil
+import sys
 from pathlib import Path
 from typing import TYPE_CHECKING
 
 from lowpoint.errors import LowpointError
+from lowpoint.faces import fleet_options, fleet_survey
+from lowpoint.faces.fleet_targets import means_many
 from lowpoint.faces.targets import checked_target
 
 if TYPE_CHECKING:
@@ -23,10 +27,12 @@ PAGES = 50
 
 def fill(parser: argparse.ArgumentParser) -> None:
     add = parser.add_argument
-    add("list", type=Path, metavar="LIST", help="the list: .xlsx, .xlsm, .csv or .ods; it is only read")
+    add("lists", nargs="*", type=Path, metavar="LIST",
+        help="a list (.xlsx .xlsm .csv .ods), a folder of them, or a pattern; it is only read")  # fmt: skip
     add("-o", "--out", type=Path, metavar="OUT", help="the workbook to write (.xlsx): the list with its results, a "
-        "summary, a page for each failing item")  # fmt: skip
-    add("--html", type=Path, metavar="PAGE", help="the page to write (.html): one file that needs no network")
+        "summary, a page for each failing item; for several lists a folder")  # fmt: skip
+    add("--html", type=Path, metavar="PAGE", help="the page to write (.html): one file that needs no network; for "
+        "several lists a folder")  # fmt: skip
     add("--overwrite", action="store_true", help="replace files of these names")
     add("--pages", type=int, default=PAGES, metavar="N", help="how many failing items get a page with charts and "
         f"working, the worst first (default {PAGES})")  # fmt: skip
@@ -38,24 +44,38 @@ def fill(parser: argparse.ArgumentParser) -> None:
     add("--seed", type=int, metavar="N", help="seed of the draws (default: a fixed one)")
     add("--no-remedies", action="store_true", help="verdicts only, nothing tried against failures")
     add("--show", action="store_true", help="show how the list is read, column by column, and stop")
-    add("--us", action="store_true", help="results in US customary units")
+    add("--us", action="store_true", help="results in US customary units; messages about the list, and cautions, "
+        "name metric ones")  # fmt: skip
     add("--json", action="store_true", help="one JSON value on standard output: an object for each item and case")
+    fleet_options.add_options(parser, "list")
     parser.epilog = (
         "examples:\n  lowpoint survey valves.xlsx --show           how each column is understood\n"
         "  lowpoint survey valves.csv --elevation 145   verdicts, the worst case of each item, what is missing\n"
-        "  lowpoint survey valves.xlsx -o verdicts.xlsx --html verdicts.html\n\n"
+        "  lowpoint survey valves.xlsx -o verdicts.xlsx --html verdicts.html\n"
+        "  lowpoint survey lists/ -o done/ --jobs 2     done/valves-survey.xlsx, and so on for every list\n\n"
         "The columns are found by their headings, in any order, with the unit in the heading: 'p1 [bar g]'.\n"
         "'lowpoint starter list' writes a blank form.\n\n"
-        "exit code 1: something is wrong with the list, or an item fails or has a case without an answer"
+        "exit code 1: something is wrong with the list, or an item fails or has a case without an answer,\n"
+        "or one of several lists could not be read; 130: stopped by a signal (finished lists stand)\n"
+        "--json: an object for one list, a list of such for several; with --watch a line a list"
     )
 
 
 def run(options: argparse.Namespace) -> int:
+    fleet_options.check_options(options)
     check_elevation(options.elevation)
+    many = means_many(options, options.lists, "list")
+    if options.show and many:
+        raise LowpointError("--show", "must be asked for with one list, and nothing of many")
+    if not many:
+        (options.list,) = options.lists
     if options.show:
         return _show(options, options.elevation)
     if options.pages < 0:
         raise LowpointError("--pages", "must be 0 or more", str(options.pages))
+    if many:
+        _wishes(options)
+        return fleet_survey.run(options)
     out, page = (
         path and checked_target(path, options.list, options.overwrite, [suffix], option)
         for path, suffix, option in ((options.out, ".xlsx", "-o"), (options.html, ".html", "--html"))
@@ -102,11 +122,14 @@ def _write(survey: Survey, out: Path | None, page: Path | None, system: str, pag
 
 
 def _print(survey: Survey, system: str, written: list[Path]) -> None:
-    from lowpoint.survey.showing import problem_lines, survey_lines
+    from lowpoint.survey.showing import WIDTH, problem_lines, survey_lines
 
     if survey.reading.missing:
         print("required columns that are not there: " + "; ".join(survey.reading.missing))
-    for line in (*problem_lines(survey.reading), *survey_lines(survey, system=system)):
+    columns = shutil.get_terminal_size((WIDTH, 24)).columns
+    # In a pipe a problem stays on one line, where grep finds the whole of it.
+    problems = problem_lines(survey.reading, width=columns if sys.stdout.isatty() else None)
+    for line in (*problems, *survey_lines(survey, system=system, width=columns)):
         print(line)
     for path in written:
         print(f"Written: {path}")

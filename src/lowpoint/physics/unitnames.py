@@ -15,7 +15,7 @@ from typing import NamedTuple
 
 from lowpoint.units import CV_PER_KV, GRAVITY, INCH, POUND, RHO0
 
-__all__ = ["LISTED", "PRESSURE", "RELATIVE_DENSITY", "TEMPERATURE", "Meaning", "meaning"]
+__all__ = ["LISTED", "PRESSURE", "RELATIVE_DENSITY", "TEMPERATURE", "Meaning", "meaning", "names_reference"]
 
 LONGEST = 40
 """Longer texts are no units."""
@@ -257,6 +257,14 @@ def _of_pressure(text: str) -> Meaning | None:
     except ValueError:
         return None
     return base._replace(gauge=reference["what"].casefold().startswith("g")) if base.dimension == PRESSURE else None
+
+
+def names_reference(text: str) -> bool:
+    """Whether a unit of pressure says what it counts from: ``bar a``, ``psig``; ``bar`` alone does not."""
+    try:
+        return _of_pressure(_plain(text)) is not None
+    except ValueError:
+        return False
 
 
 @lru_cache(4096)

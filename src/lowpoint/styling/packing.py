@@ -2,13 +2,19 @@
 
 from __future__ import annotations
 
+import gc
 import io
 import re
+import sys
+import tempfile
+import traceback
 import zipfile
-from collections.abc import Callable, Iterable, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping
+from contextlib import contextmanager
 from datetime import datetime
 from typing import Any, TypeAlias
 
+from lowpoint.errors import LowpointError
 from lowpoint.styling.strings import PART, Strings
 
 __all__ = ["DAY", "Filler", "packed"]
@@ -37,10 +43,39 @@ def packed(
     book.calculation.fullCalcOnLoad = False
     book.calculation.calcId = CURRENT
     raw = io.BytesIO()
-    book.save(raw)
+    with _scratch_needed():
+        book.save(raw)
     parts = {f"xl/worksheets/sheet{number}.xml": fill for number, sheet in enumerate(book.worksheets, 1)
              if (fill := (fillers or {}).get(sheet.title))}  # fmt: skip
     return _repacked(raw, day, parts, strings)
+
+
+@contextmanager
+def _scratch_needed() -> Iterator[None]:
+    """The library writes its sheets to the folder for temporary files first; that one may be full, too."""
+    try:
+        yield
+    except Exception as trouble:
+        # Where lxml is installed it writes, and its error is of a kind of its own.
+        if not isinstance(trouble, OSError) and type(trouble).__name__ != "SerialisationError":
+            raise
+        said = str(trouble) or type(trouble).__name__
+        _let_go(trouble)
+        must = "the folder for temporary files must take the book while it is made: the disk is full, or closed to us"
+        remedy = "Nothing was written over. Free some space there, or name another with the variable TMPDIR."
+        raise LowpointError(tempfile.gettempdir(), must, said, remedy) from None
+
+
+def _let_go(trouble: Exception) -> None:
+    """Close the half-written sheets quietly: each would complain once more of the same."""
+    hook, sys.unraisablehook = sys.unraisablehook, lambda _: None
+    try:
+        if trouble.__traceback__ is not None:
+            traceback.clear_frames(trouble.__traceback__)
+        trouble.__traceback__ = trouble.__context__ = None
+        gc.collect()
+    finally:
+        sys.unraisablehook = hook
 
 
 def _repacked(raw: io.BytesIO, day: datetime, fillers: Mapping[str, Filler], strings: Strings | None) -> bytes:

@@ -17,7 +17,7 @@ from openpyxl.worksheet.page import PageMargins
 
 __all__ = [
     "BAND", "CENTRE_TOP", "COLOURS", "FORMATS", "HEAD", "INDENTED", "INPUT", "LEFT", "LINE_BELOW", "NOTE", "PLAIN",
-    "SUBTITLE", "TITLE", "TOP", "TOP_NUMBER", "WRAP", "chart_title", "fill", "font", "heading", "mark_errors",
+    "RIGHT", "SUBTITLE", "TITLE", "TOP", "TOP_NUMBER", "WRAP", "chart_title", "fill", "font", "heading", "mark_errors",
     "mark_verdicts", "mark_word", "print_setup", "rule", "title", "verdict_colours",
 ]  # fmt: skip
 
@@ -54,6 +54,7 @@ PLAIN, INPUT = font(), font("typed")
 TITLE, SUBTITLE, NOTE = font("deep", 15, bold=True), font("mid", 10), font("quiet", 8, italic=True)
 HEAD, BAND = font("white", 9, bold=True), font("deep", 9, bold=True)
 LEFT = Alignment(horizontal="left", vertical="center")
+RIGHT = Alignment(horizontal="right", vertical="center")
 INDENTED = Alignment(horizontal="left", vertical="center", indent=1)
 WRAP = Alignment(wrap_text=True, vertical="top", indent=1)
 TOP = Alignment(horizontal="left", vertical="top", indent=1)

@@ -13,6 +13,7 @@ from lowpoint.survey.limiting import LIMITS
 from lowpoint.survey.model import Findings, Survey
 from lowpoint.survey.outcome import Remedy
 from lowpoint.survey.staying import stay_words
+from lowpoint.survey.worded import in_system
 from lowpoint.units import dimension
 
 __all__ = ["as_json", "unit_labels"]
@@ -37,6 +38,7 @@ def unit_labels(system: str) -> dict[str, str]:
 
 def as_json(survey: Survey, system: str = "metric") -> dict[str, Any]:
     """The whole survey. Where ``errors`` stand, ``regime`` is null."""
+    survey = in_system(survey, system)
     said = {tag: [_remedy(remedy, system) for remedy in found] for tag, found in survey.remedies.items()}
     columns = _columns(survey, system)
     cases = [

@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
+import unicodedata
 from collections.abc import Mapping, Sequence
 from dataclasses import replace
 from typing import Any
 
 import numpy as np
 
+from lowpoint.problems import shown
 from lowpoint.survey.fields import BY_KEY, ESTIMATE, FIELDS, TYPICAL
 from lowpoint.survey.grids import cell_name
 from lowpoint.survey.model import Cases, Problem, TravelTable, absent, number_fields, word_fields
@@ -15,6 +17,8 @@ from lowpoint.survey.sheet import SheetColumns
 
 __all__ = ["assemble", "blank_cases"]
 
+UNSEEN = frozenset({"Cc", "Cf", "Zs", "Zl", "Zp"})
+"""Unicode categories of spaces, and of signs that take no room."""
 ELSEWHERE = "Save the list as .xlsx or .ods, and give the table on a second sheet with the columns Table and Travel."
 SOURCED = ("p2", "pv", "pc", "density", "viscosity", "sound_speed", "fl", "fd", "incipient", "flow")
 """Fields whose values can come from more than the cell of their row."""
@@ -68,6 +72,7 @@ def assemble(
     codes = np.unique(columns["tag"].astype(str), return_inverse=True)[1] if starts[-1] else np.zeros(0, int)
     told += _contradictions(columns, codes, problems, letters)
     _of_the_item(columns, source, estimate, codes)
+    told += _alike(columns, problems, letters)
     told += _twins(columns, codes, problems, letters)
     columns["kind"] = np.where(absent(columns["kind"]), "valve", columns["kind"])
     spoiled += _strange_tables(columns, tables, problems, letters, one_sheet)
@@ -99,10 +104,11 @@ def _named(columns: Mapping[str, Any], place: int, key: str, letters: Letters) -
 
 
 def _tags(columns: dict[str, Any], problems: list[Problem], letters: Letters) -> list[tuple[int, str]]:
-    """Rows without a tag get one by their row, and a fault."""
+    """Rows without a tag get one that says so, and a fault."""
     spoiled = []
-    for place in np.flatnonzero(absent(columns["tag"])).tolist():
-        columns["tag"][place] = f"(row {columns['row'][place]})"
+    for number, place in enumerate(np.flatnonzero(absent(columns["tag"])).tolist(), 1):
+        # Counted among themselves: in the workbook of the results the same row has another number.
+        columns["tag"][place] = f"(no tag {number})"
         problem = Problem(str(columns["sheet"][place]), _named(columns, place, "tag", letters), "a blank cell",
                           "Tag must be given", "Write the item's tag into each of its rows.", place)  # fmt: skip
         problems.append(problem)
@@ -164,6 +170,7 @@ def _twins(columns: Mapping[str, Any], codes: Any, problems: list[Problem], lett
     """Rows with the tag and case of an earlier one."""
     seen: dict[tuple[int, Any], int] = {}
     told = []
+    named: set[int] = set()
     for place, (code, case) in enumerate(zip(codes.tolist(), columns["case"].tolist(), strict=True)):
         first = seen.setdefault((code, case and case.casefold()), place)
         if first == place:
@@ -177,7 +184,38 @@ def _twins(columns: Mapping[str, Any], codes: Any, problems: list[Problem], lett
             "Give every case of an item its own name, or delete one row.", place, False,
         )  # fmt: skip
         problems.append(problem)
-        told += [(first, problem.sentence()), (place, problem.sentence())]
+        told.append((place, problem.sentence()))
+        if first not in named:  # once is enough, however often its twins stand there
+            named.add(first)
+            told.append((first, problem.sentence()))
+    return told
+
+
+def _folded(tag: str) -> str:
+    """A tag without what the eye may miss: capitals, spaces, kinds of dashes, signs that are not seen."""
+    kinds = ((sign, unicodedata.category(sign)) for sign in unicodedata.normalize("NFKC", tag))
+    return "".join("-" if kind == "Pd" else sign for sign, kind in kinds if kind not in UNSEEN).casefold()
+
+
+def _alike(columns: Mapping[str, Any], problems: list[Problem], letters: Letters) -> list[tuple[int, str]]:
+    """Tags that differ so little from an earlier one that the two may be one item."""
+    places: dict[str, int] = {}
+    for place, tag in enumerate(columns["tag"].tolist()):
+        places.setdefault(tag, place)
+    seen: dict[str, int] = {}
+    told = []
+    for tag, place in places.items():
+        first = seen.setdefault(_folded(tag), place)
+        if first == place:
+            continue
+        problem = Problem(
+            str(columns["sheet"][place]), _named(columns, place, "tag", letters), shown(tag),
+            f"Tag differs from {shown(columns['tag'][first])[4:]} of row {columns['row'][first]} only by capitals, "
+            "spaces, dashes or signs that are not seen; they were judged as two items",
+            "Spell it alike in all rows of one item.", place, False,
+        )  # fmt: skip
+        problems.append(problem)
+        told.append((place, problem.sentence()))
     return told
 
 

@@ -36,8 +36,10 @@ def book_bytes(survey: Survey, *, system: str = "metric", pages: int = PAGES, to
     from lowpoint.styling.packing import packed
     from lowpoint.styling.strings import Strings
     from lowpoint.survey.output.assembling import assembled
+    from lowpoint.survey.worded import in_system
 
     day = today or date.today()
+    survey = in_system(survey, system)
     strings = Strings()
     book, fillers = assembled(survey, system, pages, day, strings)
     return packed(book, datetime.combine(day, time()), fillers, strings)

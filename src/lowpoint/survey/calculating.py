@@ -20,10 +20,12 @@ from lowpoint.survey.model import Cases, Findings, Flags, absent, number_fields,
 from lowpoint.survey.plating import plate_findings
 from lowpoint.survey.setting import set_findings
 
-__all__ = ["at_opening", "calculate", "filled_pipes", "possible", "valve_findings"]
+__all__ = ["FULLY_OPEN", "at_opening", "calculate", "filled_pipes", "possible", "valve_findings"]
 
 LOW_TRAVEL, HIGH_TRAVEL = 0.1, 0.9
 ROUNDING = 1.0 + 1e-12
+FULLY_OPEN = 1.0 - 1e-9
+"""Travel from which on the last row of a table is the open valve."""
 
 
 def calculate(cases: Cases) -> Findings:
@@ -87,10 +89,13 @@ def valve_findings(cases: Cases) -> dict[str, Any]:
 
 
 def _rated(cases: Cases) -> Any:
+    """The coefficient fully open; of a valve with a table the smaller of the two, where both say one."""
     rated = cases.rated
     for name, table in cases.tables.items():
         if table.coefficient is not None:
-            rated = np.where((cases.table == name) & np.isnan(rated), table.coefficient[-1], rated)
+            whole = np.isnan(rated) | (table.travel[-1] >= FULLY_OPEN)
+            last = np.fmin(rated, table.coefficient[-1])
+            rated = np.where((cases.table == name) & whole, last, rated)
     return rated
 
 
@@ -144,7 +149,7 @@ def _verdicts(cases: Cases, columns: dict[str, Any]) -> Findings:
     columns["choked_limit"] = np.where(of_set, columns["choked_limit"], head / columns["choked_drop"])
     head = np.where(of_set, sigma * columns["drop"], head)  # of the plate that decides
     limits = {name: columns[name] for name in LIMITS} | {"choked": columns["choked_limit"]}
-    wrong = (limits["incipient"] <= 1.0) | (limits["constant"] <= 1.0) | (limits["damage"] <= 1.0)
+    wrong = np.logical_or.reduce([limits[name] <= 1.0 for name in LIMITS])
     word = regime_word(sigma, *(limits[name] for name in (*LIMITS, "choked")))
     judged = ~np.isnan(sigma) & ~np.isnan(columns["choked_limit"]) & ~wrong
     columns["regime"] = np.where(judged & (word != ""), word.astype(object), np.array(None, object))
@@ -166,7 +171,10 @@ def _verdicts(cases: Cases, columns: dict[str, Any]) -> Findings:
 
 
 def _kept(cases: Cases, columns: dict[str, Any], limits: dict[str, Any]) -> None:
-    """The limit that the margin counts to: the one asked for where it is given, else the mildest that is."""
+    """The limit that the margin counts to: the one asked for where it is given, else the mildest that is.
+
+    Where a more severe one lies above it, that one: a case at the damage limit never passes by its incipient one.
+    """
     names = np.array([*limits], object)
     values = np.array([limits[name] for name in limits])
     given = ~np.isnan(values)
@@ -174,6 +182,9 @@ def _kept(cases: Cases, columns: dict[str, Any], limits: dict[str, Any]) -> None
     asked = np.array([cases.keep == name for name in limits], np.bool_)
     possible_ask = (asked & given).any(axis=0)
     place = np.where(possible_ask, np.argmax(asked, axis=0), mildest)
+    scaling = np.arange(len(LIMITS))[:, None]
+    counted = np.where(given[:-1] & (scaling >= place), values[:-1], -np.inf)
+    place = np.where(place < len(LIMITS), np.argmax(counted, axis=0), place)
     columns["keep"] = np.where(given.any(axis=0), names[place], np.array(None, object))
     columns["limit"] = np.take_along_axis(values, place[None], axis=0)[0] if cases.count else values[0]
     columns["margin"] = columns["sigma"] / columns["limit"] - 1.0

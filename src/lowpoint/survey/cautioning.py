@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from itertools import combinations
 from typing import Any
 
 import numpy as np
@@ -10,7 +11,7 @@ from lowpoint.physics.flashing import flash_sound_speed
 from lowpoint.physics.names import resolve
 from lowpoint.survey.calculating import filled_pipes
 from lowpoint.survey.judged_plates import caution_plates
-from lowpoint.survey.limiting import scale_factors, stated
+from lowpoint.survey.limiting import LIMITS, scale_factors, stated
 from lowpoint.survey.model import Cases, Findings, absent
 from lowpoint.survey.speaking import Lines, cautions_of, why
 
@@ -22,13 +23,19 @@ NOT_CARRIED = (
 )
 NO_INCIPIENT = "no incipient limit is given, so the state is not judged clear however high the index"
 NOT_KEPT = "the limit to keep is not given: the margin counts to the mildest one that is"
-SWAPPED_ORDER = "the limits are not in their usual order (incipient above constant above damage): check their forms"
+SWAPPED_ORDER = (
+    "the limits are not in their usual order (incipient above constant above damage above vibration): check their "
+    "forms and columns; the margin counts to the highest of the limit to keep and those more severe"
+)
 TOO_SMALL = (
     "the required coefficient is above the rated one: the flow does not pass, and the index is that of no opening"
 )
 LOW, HIGH = "the opening is below 10 per cent of travel", "the opening is above 90 per cent of travel"
 NO_PURE = "how much flashes is not known: it can be computed for pure liquids of known name and temperature only"
-
+BEYOND = (
+    "the valve would be {} open than the {} row of its table: the limits there are not known, and FL is that row's "
+    "where the list gives none"
+)
 SONIC = (
     "the flashing mixture would leave at {:.4g} m/s, faster than its own sound of {:.4g} m/s (homogeneous "
     "equilibrium): the outlet chokes there and p2 is not reached at the valve; a wider outlet, or a vessel behind it"
@@ -106,10 +113,15 @@ def _of_travel(cases: Cases, findings: Findings, rows: Any, state: dict[str, Any
             arguments = {"coefficient": state["coefficient"], "rated": state["rated"], "characteristic": word,
                          "rangeability": state["rangeability"]}  # fmt: skip
             why(lines, "TRAVEL", rows, lost, arguments, caution=True)
-    below = ~by_word & np.isnan(travel) & ~findings.over_capacity[rows]
-    lines.caution_at(
-        rows[below], "the valve would be less open than the first row of its table: FL there is that row's"
-    )
+    _beyond_table(cases, findings, rows[~by_word & np.isnan(travel) & ~findings.over_capacity[rows]], lines)
+
+
+def _beyond_table(cases: Cases, findings: Findings, rows: Any, lines: Lines) -> None:
+    """Valves whose table has no opening for the flow, at either end."""
+    last = {name: table.coefficient[-1] for name, table in cases.tables.items() if table.coefficient is not None}
+    more = findings.coefficient[rows] > np.array([last[name] for name in cases.table[rows].tolist()], float)
+    lines.caution_at(rows[~more], BEYOND.format("less", "first"))
+    lines.caution_at(rows[more], BEYOND.format("more", "last"))
 
 
 def _of_limits(cases: Cases, findings: Findings, answered: Any, lines: Lines) -> None:
@@ -128,11 +140,12 @@ def _of_limits(cases: Cases, findings: Findings, answered: Any, lines: Lines) ->
     of_fl = answered & (cases.kind == "valve") & absent(cases.fl_basis)
     lines.caution(of_fl, "the basis of FL is not stated: taken as tested")
     lines.caution(answered & np.isnan(findings.incipient), NO_INCIPIENT)
-    order = np.fmax.reduce([findings.constant - findings.incipient, findings.damage - findings.incipient,
-                            findings.damage - findings.constant])  # fmt: skip
+    order = np.fmax.reduce([getattr(findings, severe) - getattr(findings, mild)
+                            for mild, severe in combinations(LIMITS, 2)])  # fmt: skip
     lines.caution(answered & (order > 0.0), SWAPPED_ORDER)
     asked = ~absent(cases.keep)
-    lines.caution(answered & asked & (findings.keep != cases.keep), NOT_KEPT)
+    not_given = [(cases.keep == name) & np.isnan(getattr(findings, name)) for name in LIMITS]
+    lines.caution(answered & asked & np.any(not_given, axis=0), NOT_KEPT)
     acoustic = np.isnan(stated(cases, findings.travel)["incipient"]) & ~np.isnan(findings.incipient)
     lines.caution(answered & acoustic & (cases.kind == "valve"), "the incipient limit is 1/xFz, acoustic: a screening "
                   "value, never a damage limit")  # fmt: skip

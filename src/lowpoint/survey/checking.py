@@ -20,6 +20,10 @@ from lowpoint.survey.speaking import Lines, why
 __all__ = ["add_errors"]
 
 BOILS = "the liquid would boil before the valve: check temperature and inlet pressure, and gauge against absolute"
+NO_FL = (
+    "FL (liquid pressure recovery factor FL at the operating travel) must be given in the row of every case, as it "
+    "moves with the opening; or name a Table, or write 'typical' for the screening value of the style"
+)
 OTHER_FORM = "the {} limit must be above 1 in upstream form, got {:.4g}: was another form meant? Name it in column Form"
 
 
@@ -91,8 +95,6 @@ def _needs(cases: Cases, lines: Lines) -> None:
 def _forms(cases: Cases, findings: Findings, lines: Lines) -> None:
     form = np.where(absent(cases.form), "upstream", cases.form)
     for name, limit in stated(cases, findings.travel).items():
-        if name == "vibration":
-            continue
         for place in np.flatnonzero(limit <= 1.0).tolist():
             lines.errors.append((place, OTHER_FORM.format(name, float(limit[place]))))
     for name in LIMITS:
@@ -122,7 +124,10 @@ def _unanswered(cases: Cases, findings: Findings, lines: Lines) -> None:
     """Valves that have everything and still no coefficient: the reason in the words of the function."""
     failed = np.zeros(cases.count, np.bool_)
     failed[[place for place, _ in lines.errors]] = True
-    rows = np.flatnonzero((cases.kind == "valve") & ~failed & np.isnan(findings.coefficient))
+    silent = (cases.kind == "valve") & ~failed & np.isnan(findings.coefficient)
+    nothing = silent & np.isnan(findings.fl) & absent(cases.table)
+    lines.error(nothing, NO_FL)
+    rows = np.flatnonzero(silent & ~nothing)
     if len(rows):
         sizes = dict(zip(("valve_size", "pipe_in", "pipe_out"), filled_pipes(cases), strict=True))
         state = {name: getattr(cases, name) for name in ("flow", "p1", "p2", "pv", "pc", "density", "viscosity", "fd")}

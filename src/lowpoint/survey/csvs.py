@@ -26,8 +26,10 @@ SEPARATORS = (",", ";", "\t", "|")
 _DECIMAL_COMMA = re.compile(r"[+-]?\d+,\d+(?:[eE][+-]?\d+)?")
 _DECIMAL_POINT = re.compile(r"[+-]?\d*\.\d+(?:[eE][+-]?\d+)?")
 _THOUSANDS = re.compile(r"[+-]?\d{1,3}[.,]\d{3}")
-_LONGEST = 100_000
-"""Longest single value; longer ones are no list."""
+LOOKED_THROUGH = 20_000
+"""Signs from the beginning of a file among which a separator must be."""
+_LONGEST = 32_767
+"""Longest single value: what the cell of a workbook holds. Longer ones are rows run together."""
 
 
 def read_text(path: str | os.PathLike[str]) -> Sheets:
@@ -41,7 +43,9 @@ def read_text(path: str | os.PathLike[str]) -> Sheets:
     if decimal == ",":
         notes.append("numbers were read with a decimal comma, as all of them are written")
     notes.append(f"values are set apart by {_NAMES[separator]}")
-    return Sheets("csv", (Grid(Path(path).name, rows, all_text=True, decimal=decimal),), tuple(notes))
+    return Sheets(
+        "csv", (Grid(Path(path).name, rows, all_text=True, decimal=decimal, separator=separator),), tuple(notes)
+    )
 
 
 _NAMES = {",": "commas", ";": "semicolons", "\t": "tabs", "|": "strokes"}
@@ -65,14 +69,21 @@ def _separated(text: str, name: str) -> tuple[str, list[list[str]]]:
     declared = re.fullmatch(r"sep=(.)\r?", first.strip("\ufeff "))
     if declared:
         return declared[1], [[], *parsed(rest, declared[1], name)]
-    best, lines, most = ",", parsed(text, ",", name), -1
-    for separator in SEPARATORS:
-        if separator in text[:20_000]:
+    found: tuple[int, str, list[list[str]]] | None = None
+    failure: BookError | None = None
+    for separator in [sign for sign in SEPARATORS if sign in text[:LOOKED_THROUGH]] or [","]:
+        try:
             trial = parsed(text, separator, name)
-            known = max((_known(values) for values in trial[:LOOKED_AT]), default=0)
-            if known > most:
-                best, lines, most = separator, trial, known
-    return best, lines
+        except BookError as problem:  # a wrong sign may run a whole file into one value
+            failure = failure or problem
+            continue
+        known = max((_known(values) for values in trial[:LOOKED_AT]), default=0)
+        if found is None or known > found[0]:
+            found = known, separator, trial
+    if found is None:
+        assert failure is not None
+        raise failure
+    return found[1], found[2]
 
 
 def _known(values: list[str]) -> int:
@@ -85,14 +96,17 @@ def _known(values: list[str]) -> int:
 def parsed(text: str, separator: str, name: str) -> list[list[str]]:
     """The values of each line; BookError where one is longer than any list has, or there are too many."""
     csv.field_size_limit(_LONGEST)
-    counted, lines = CellCount(name, in_force()), []
+    counted, lines, ended = CellCount(name, in_force()), [], 0
+    reader = csv.reader(io.StringIO(text, newline=""), delimiter=separator)
     try:
-        for values in csv.reader(io.StringIO(text, newline=""), delimiter=separator):
+        for values in reader:
             counted.add(len(values))
             lines.append(values)
+            ended = reader.line_num
         return lines
-    except csv.Error as problem:
-        raise BookError(name, f"cannot be read as a list ({problem})", remedy="Save it anew as .csv.") from None
+    except csv.Error:
+        must = f"cannot be read as a list: a value of line {ended + 1} is longer than {_LONGEST} signs"
+        raise BookError(name, must, remedy="See whether a quotation mark there has no partner.") from None
 
 
 def _decimal(values: list[str], separator: str) -> str:

@@ -94,27 +94,33 @@ def _text(key: str, group: str, heading: str, help: str, *others: str, scope: st
 def _number(key: str, group: str, heading: str, reference: str, alias: object, help: str, *others: str,
             scope: str = "item", inherent: tuple[tuple[str, str], ...] = (), asks: str = "") -> ListField:  # fmt: skip
     return ListField(key, group, heading, others, "number", reference, inherent, scope,
-                     None if alias is None else _of(alias), asks=asks, help=help)  # fmt: skip
+                     alias if isinstance(alias, Quantity) else _of(alias), asks=asks, help=help)  # fmt: skip
 
 
 _LIMIT = "Of the bare valve, at the test size and head, in the form of column Form. Leave blank what was not tested."
 _LENGTH = Quantity("length", "length", "size", low=0.0)
+_ATMOSPHERE = Quantity("atmosphere", "barometric pressure at the site", "pressure", low=0.2, high=2.0,
+                       zero_is_blank=True, remedy="No site has it (0.22 bar at 11000 m, 1.8 bar at -5000 m by the "
+                       "standard atmosphere): check the unit.")  # fmt: skip
+_PLACE = Quantity("pressure there", "pressure in the place of the outlet, absolute", "pressure", low=0.0)
+_LOSS = Quantity("loss", "friction loss", "pressure", low=0.0, closed_low=True,
+                 remedy="A loss is counted positive; leave it blank where it is not known.")  # fmt: skip
 
 FIELDS: tuple[ListField, ...] = (
     _text("tag", "item", "Tag", "The item's tag; the rows of one tag are its cases.", "Tag no", "Tag number", "Item",
           "Item no", "Valve tag", "Valve", "Equipment", "Position", scope="case"),
     _text("case", "item", "Case", "Name of the operating case: start-up, minimum, normal, maximum, upset.",
-          "Operating case", "Condition", "Operating condition", "Flow case", scope="case"),
+          "Operating case", "Op case", "Op. case", "Condition", "Operating condition", "Flow case", scope="case"),
     _word("kind", "item", "Kind", tuple(KINDS), "valve (blank), orifice (one plate), plates (several in series).",
           "Item kind", "Item type", "Kind of item"),
     _text("service", "item", "Service", "What it does.", "Description", "Duty", "Service description"),
     _number("elevation", "site", "Site elevation", "m", q.Elevation,
             "Height above sea level: gives the atmosphere that gauge pressures need.", "Elevation", "Altitude",
             "Site altitude"),
-    _number("atmosphere", "site", "Atmosphere", "bar", q.Atmosphere, "Barometric pressure, instead of the elevation.",
+    _number("atmosphere", "site", "Atmosphere", "bar", _ATMOSPHERE, "Barometric pressure, instead of the elevation.",
             "Barometric pressure", "Atmospheric pressure", "Ambient pressure", "Site atmosphere", "Patm", "p atm"),
     _text("fluid", "liquid", "Liquid", "A liquid by its usual name; 'lowpoint functions LP_DENSITY' lists them. Blank "
-          "where pv, pc and density are given.", "Medium", "Fluid name"),
+          "where pv, pc and density are given.", "Medium", "Fluid", "Process fluid", "Fluid name"),
     _number("salinity", "liquid", "Salinity", "g/kg", q.Salinity, "Of sea water and brine, needed for these.",
             "Salt content"),
     _number("t", "liquid", "Temperature", "K", q.T, "At the inlet.", "T", "Temp", "T1", "Inlet temperature",
@@ -122,11 +128,11 @@ FIELDS: tuple[ListField, ...] = (
     _number("flow", "liquid", "Flow", "m3/h", q.Flow, "Volume or mass flow, at flowing conditions.", "Q", "Flow rate",
             "Volume flow", "Mass flow", "Flowrate", "W", scope="case"),
     _number("p1", "liquid", "p1", "bar", q.P1, "At the inlet, before the reducer. Say bar a or bar g in the heading.",
-            "Inlet pressure", "Upstream pressure", "Pressure in", "Inlet pressure p1", "Inlet pressure p1, absolute",
-            "P in", "Pin", scope="case"),
+            "Inlet pressure", "Upstream pressure", "Pressure in", "Inlet press", "Inlet press.",
+            "Inlet pressure p1", "Inlet pressure p1, absolute", "P in", "Pin", scope="case"),
     _number("p2", "liquid", "p2", "bar", q.P2, "At the outlet, behind the expander; or give the place of the outlet.",
-            "Outlet pressure", "Downstream pressure", "Pressure out", "Outlet pressure p2",
-            "Outlet pressure p2, absolute", "P out", "Pout", "Back pressure", scope="case"),
+            "Outlet pressure", "Downstream pressure", "Pressure out", "Outlet press", "Outlet press.",
+            "Outlet pressure p2", "Outlet pressure p2, absolute", "P out", "Pout", "Back pressure", scope="case"),
     _number("pv", "liquid", "pv", "bar", q.PV, "Vapour pressure at the inlet temperature; goes before the computed "
             "one.", "Vapour pressure", "Vapor pressure", "Vapour pressure pv", "Psat", "Saturation pressure",
             scope="case"),
@@ -143,13 +149,13 @@ FIELDS: tuple[ListField, ...] = (
     _word("outlet", "outlet", "Outlet into", tuple(OUTLETS), "pipe: outlet pressure there is given; submerged: below "
           "the level of an open or closed tank; free jet: into the open; falling leg: down a filled leg to its end.",
           "Outlet", "Discharge", "Place of the outlet", "Discharge into", "Outlet place"),
-    _number("outlet_pressure", "outlet", "Pressure there", "bar", None, "Of the pipe, or of the gas over the liquid; "
+    _number("outlet_pressure", "outlet", "Pressure there", "bar", _PLACE, "Of the pipe, or of the gas over the liquid; "
             "blank: the atmosphere (not for a pipe).", "Pressure at the outlet place", "Tank pressure",
             "Discharge pressure", "Outlet place pressure", scope="case"),
     _number("outlet_rise", "outlet", "Rise to the place", "m", q.Rise, "From the valve up to the liquid's level, the "
             "end of the leg or the point in the pipe; downward negative.", "Rise", "Elevation change", "Static rise",
             "Outlet rise", scope="case"),
-    _number("outlet_loss", "outlet", "Friction to the place", "bar", None, "Friction loss between the valve and the "
+    _number("outlet_loss", "outlet", "Friction to the place", "bar", _LOSS, "Friction loss between the valve and the "
             "place; blank: none.", "Friction loss", "Line loss", "Outlet loss", scope="case"),
     _text("style", "valve", "Style", "Valve style as 'lowpoint functions LP_TYPICAL' lists it.", "Valve style",
           "Valve type", "Body type"),
@@ -175,7 +181,8 @@ FIELDS: tuple[ListField, ...] = (
     _text("table", "valve", "Table", "Name of the valve's table on a sheet with columns Table, Travel and more.",
           "Travel table", "Vendor table"),
     _word("trim", "valve", "Trim", ("full", "reduced"), "Trim class, for viscous liquids.", "Trim class"),
-    _number("fl", "valve", "FL", "", q.FL, "Recovery factor at the opening of this case.", "Recovery factor",
+    _number("fl", "valve", "FL", "", q.FL, "Recovery factor at the opening of this case: every row needs its own.",
+            "Recovery factor",
             "Liquid pressure recovery factor", scope="case", asks=f"'{TYPICAL}': the typical value of the style"),
     _word("fl_basis", "valve", "Basis of FL", BASES, "Blank: tested (somebody gave it).", "FL basis"),
     _number("fd", "valve", "Fd", "", q.Fd, "Valve style modifier, for noise, estimates and viscous liquids.",
@@ -205,7 +212,7 @@ FIELDS: tuple[ListField, ...] = (
     _word("method", "limits", "Scale method", METHODS, "How the effects enter: isa (blank), upstream, tullis.",
           "Scaling method", "Method"),
     _word("keep", "limits", "Limit to keep", KEEPS, "The limit above which the index must stay; blank: the mildest "
-          "that is given.", "Keep", "Required limit"),
+          "that is given, incipient before constant before damage before vibration.", "Keep", "Required limit"),
     _number("bore", "plate", "Bore", "mm", q.OrificeBore, "Diameter of the bore, or of each hole.", "Orifice bore",
             "Plate bore"),
     _number("bore_length", "plate", "Bore length", "mm", q.BoreLength, "Parallel part of the bore; blank: a thin "

@@ -28,6 +28,8 @@ class Grid:
     all_text: bool = False
     """Whether every cell is text, as in a csv."""
     decimal: str = "."
+    separator: str = ""
+    """Of a csv: what sets its values apart."""
 
     @property
     def empty(self) -> bool:

@@ -14,6 +14,7 @@ from lowpoint.physics.unitnames import Meaning, meaning
 from lowpoint.survey.fields import CARRIED, FIELDS, TABLE_FIELDS, ListField
 from lowpoint.survey.grids import Grid
 from lowpoint.survey.own_sheet import LEFT_ALONE, first_line, is_own
+from lowpoint.survey.values import without_controls
 
 __all__ = ["Heading", "Place", "are_units", "find_headings", "read_heading"]
 
@@ -23,6 +24,9 @@ LEAST = 3
 """Headings that a row must have to be the heading of a list."""
 OPERATING = frozenset({"flow", "p1", "p2"})
 """One of them must be there: a summary of items has tags and cases too."""
+NEVER_GAUGE = {"atmosphere": "the atmosphere itself", "head_ref": "a difference of pressures",
+               "outlet_loss": "a difference of pressures"}  # fmt: skip
+"""Pressures that no gauge can count from the atmosphere, and why."""
 _PLAIN_SIGNS = frozenset({"", "-", "–", "—", "1", "ratio"})
 _UNIT_BEHIND = re.compile(r"(?P<name>.*?)\s*[\[(](?P<unit>[^\[\]]*)[\])]\s*", re.DOTALL)
 
@@ -149,6 +153,9 @@ def with_unit(heading: Heading) -> Heading:
         return _unfit(heading, f"the unit of {field.heading} is not understood: {unknown}", remedy)
     if found.dimension not in allowed(field):
         return _unfit(heading, f"'{unit}' is a unit of another kind of quantity than {field.heading}", remedy)
+    if found.gauge and field.key in NEVER_GAUGE:
+        return _unfit(heading, f"{field.heading} is {NEVER_GAUGE[field.key]}, which is not gauge",
+                      "Take the g out of its unit.")  # fmt: skip
     return heading
 
 
@@ -172,7 +179,9 @@ def _unfit(heading: Heading, problem: str, remedy: str, status: str = "") -> Hea
 
 def text_of(value: Any) -> str:
     """A heading's cell as text: spaces made plain, line ends kept."""
-    return "\n".join(" ".join(line.split()) for line in str(value).splitlines()).strip() if value is not None else ""
+    if value is None:
+        return ""
+    return "\n".join(" ".join(line.split()) for line in without_controls(str(value)).splitlines()).strip()
 
 
 def _known(values: Sequence[Any], catalogue: tuple[ListField, ...]) -> set[str]:
@@ -204,12 +213,22 @@ def find_headings(grid: Grid) -> Place | None:
         if own and first_line(text) in LEFT_ALONE:
             headings[column] = Heading(text, None, left=True)
         elif text:
-            found = read_heading(text, catalogue)
-            if found.unit is None and units and column < len(units) and units[column]:
-                found = Heading(text, found.field, units[column])
-            headings[column] = with_unit(found)
+            headings[column] = _with_unit_below(read_heading(text, catalogue), units[column : column + 1])
     return Place(row, grid.rows[place + (2 if units else 1)][0] if _more(grid, place, units) else row + 1, headings,
                  catalogue, own)  # fmt: skip
+
+
+def _with_unit_below(heading: Heading, below: list[str]) -> Heading:
+    """The heading with the unit that stands below it, which must not be another one than its own."""
+    unit = below[0] if below else ""
+    if not unit or heading.field is None:
+        return with_unit(heading)
+    if heading.unit is None:
+        return with_unit(Heading(heading.text, heading.field, unit))
+    if heading.field.reference and _unit_of(heading.unit) != _unit_of(unit):
+        return _unfit(heading, f"the heading of {heading.field.heading} says '{heading.unit}' and the cell below it "
+                      f"'{unit}'", "Keep one of the two.")  # fmt: skip
+    return with_unit(heading)
 
 
 def _more(grid: Grid, place: int, units: list[str]) -> bool:

@@ -348,13 +348,16 @@ class Item:
     why: str
     """Why that is the worst, in a sentence."""
     regime: str | None
-    """Of the worst case."""
+    """Of the worst case; None where no case fails and one has no answer, since that one may be the worst."""
     margin: float
+    """Of the worst case that has an answer."""
     basis: str | None
     fails: bool
     """Does a case fail?"""
     unanswered: int
     """Cases without a verdict."""
+    template: str = ""
+    """``why`` as a template of :mod:`lowpoint.survey.worded`."""
 
 
 @dataclass(frozen=True, eq=False)

@@ -20,10 +20,9 @@ __all__ = ["read_open_document"]
 
 MUST = "must be an OpenDocument spreadsheet"
 _NUMBERS = frozenset({"float", "percentage", "currency"})
-WIDEST = 1024
-"""Columns that are read; a list has far fewer, and empty cells are declared to the edge of the sheet."""
-MOST_EQUAL = 10_000
-"""Equal rows that one element may stand for."""
+_LOGICAL = ("of:=TRUE()", "of:=FALSE()")
+WIDEST = 16_384
+"""Columns of the widest sheet that programs write."""
 
 
 class _Share(float):
@@ -51,7 +50,9 @@ def read_open_document(path: str | os.PathLike[str]) -> Sheets:
     if body is None:
         raise BookError(name, MUST, "another kind of document", "Save it as .ods or .xlsx.")
     counted = CellCount(name, in_force())
-    return Sheets("ods", tuple(_grid(table, counted) for table in body if local_name(table.tag) == "table"))
+    unseen = _unseen_styles(root)
+    tables = [table for table in body if local_name(table.tag) == "table"]
+    return Sheets("ods", tuple(_grid(table, counted, unseen) for table in tables))
 
 
 def _check(entry: Entry, name: str) -> None:
@@ -75,6 +76,24 @@ def _count(item: ElementTree.Element, name: str) -> int:
     return int(text) if text.isdecimal() and len(text) < 10 else 1
 
 
+def _unseen_styles(root: ElementTree.Element) -> frozenset[str]:
+    """Names of the styles of hidden sheets."""
+    styles = (style for style in root.iter() if local_name(style.tag) == "style")
+    return frozenset(_get(style, "name") for style in styles
+                     if any(_get(part, "display", "true") == "false" for part in style))  # fmt: skip
+
+
+def _hidden_columns(table: ElementTree.Element) -> Iterator[int]:
+    """Numbers of the columns that are hidden or filtered away, out of their groups."""
+    first = 1
+    for item in table.iter():
+        if local_name(item.tag) == "table-column":
+            after = first + _count(item, "number-columns-repeated")
+            if _get(item, "visibility", "visible") != "visible":
+                yield from range(first, min(after, WIDEST + 1))
+            first = after
+
+
 def _rows(parent: ElementTree.Element) -> Iterator[ElementTree.Element]:
     """The rows in order, out of their groups, however deep these are nested."""
     open_groups = [iter(parent)]
@@ -89,8 +108,9 @@ def _rows(parent: ElementTree.Element) -> Iterator[ElementTree.Element]:
             open_groups.append(iter(item))
 
 
-def _grid(table: ElementTree.Element, counted: CellCount) -> Grid:
-    grid = Grid(_get(table, "name"))
+def _grid(table: ElementTree.Element, counted: CellCount, unseen: frozenset[str]) -> Grid:
+    grid = Grid(_get(table, "name"), hidden_columns=frozenset(_hidden_columns(table)))
+    grid.state = "hidden" if _get(table, "style-name") in unseen else "visible"
     hidden: set[int] = set()
     merged: list[tuple[int, int, int, int]] = []
     unvalued: set[tuple[int, int]] = set()
@@ -99,15 +119,15 @@ def _grid(table: ElementTree.Element, counted: CellCount) -> Grid:
     for item in _rows(table):
         repeats = _count(item, "number-rows-repeated")
         values: list[Any] = []
-        for cell in item:
+        for cell in _to_the_last(item):
             _take_cell(cell, number, values, merged, unvalued)
         shares = [column for column, value in enumerate(values) if isinstance(value, _Share)]
         values = [float(value) if isinstance(value, _Share) else value for value in values]
         while values and values[-1] is None:
             values.pop()
         if values:
-            counted.add(len(values) * min(repeats, MOST_EQUAL))
-            for row in range(number, number + min(repeats, MOST_EQUAL)):
+            counted.add(len(values) * repeats)
+            for row in range(number, number + repeats):
                 grid.rows.append((row, list(values)))
                 percent.update((row, column + 1) for column in shares)
                 if _get(item, "visibility", "visible") != "visible":
@@ -116,6 +136,19 @@ def _grid(table: ElementTree.Element, counted: CellCount) -> Grid:
     grid.hidden_rows, grid.merged, grid.unvalued = frozenset(hidden), tuple(merged), frozenset(unvalued)
     grid.percent = frozenset(percent)
     return grid
+
+
+def _to_the_last(row: ElementTree.Element) -> list[ElementTree.Element]:
+    """The cells of a row without the blank ones that fill it up to the edge of the sheet."""
+    cells = list(row)
+    while cells and _is_filling(cells[-1]):
+        cells.pop()
+    return cells
+
+
+def _is_filling(cell: ElementTree.Element) -> bool:
+    told = ("formula", "value-type", "number-rows-spanned", "number-columns-spanned")
+    return not len(cell) and not any(_get(cell, name) for name in told)
 
 
 def _take_cell(
@@ -137,6 +170,8 @@ def _take_cell(
 
 def _value(cell: ElementTree.Element) -> Any:
     kind = _get(cell, "value-type")
+    if _get(cell, "formula") in _LOGICAL:  # how a program keeps a logical value: as a number, which it is not
+        return _get(cell, "formula") == _LOGICAL[0]
     if kind in _NUMBERS:
         try:
             return (_Share if kind == "percentage" else float)(_get(cell, "value"))

@@ -8,9 +8,10 @@ says that it is for the eye.
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 from lowpoint.survey.model import Cases, Flags, Numbers, Words
+from lowpoint.survey.worded import said
 from lowpoint.units import dimension
 
 __all__ = ["Line", "Picture", "Remedy", "Sensitivity", "Step", "Tolerance", "Working"]
@@ -70,7 +71,7 @@ class Remedy:
     """``staged trim``, ``plate downstream``, ``plates in series``, ``back-pressure``, ``lower location``,
     ``lower temperature``, ``higher recovery factor``, ``split``, ``larger valve``, ``flashing`` (advice only)."""
     text: str
-    """The whole in one sentence, with its number, in metric units."""
+    """The whole in one sentence, with its number, in metric units (``in_units`` for others)."""
     figures: Mapping[str, tuple[float, str]]
     """What must be done, and what comes of it: name -> (value in SI, kind of quantity as ``units.dimension``
     knows it)."""
@@ -84,6 +85,24 @@ class Remedy:
     cases: Cases | None = None
     """The item's cases (and those of what is added to it) with the remedy applied, ready to be surveyed again;
     None for advice."""
+    brief: str = ""
+    """What must be done, in a few words, without what comes of it; empty where ``text`` is as short."""
+    templates: tuple[str, ...] = ()
+    """``text``, ``brief`` and ``cautions`` as templates of :mod:`lowpoint.survey.worded`; empty: as they stand."""
+
+    @property
+    def title(self) -> str:
+        """The kind as a heading has it: another valve is named by what it must have."""
+        if self.kind == "higher recovery factor" and self.figures and "FL at least" not in self.figures:
+            return "valve with a lower limit"
+        return self.kind
+
+    def in_units(self, system: str) -> Remedy:
+        """The same with its sentences in a set of units."""
+        if not self.templates:
+            return self
+        text, brief, *cautions = (said(template, system) for template in self.templates)
+        return replace(self, text=text, brief=brief, cautions=tuple(cautions))
 
 
 @dataclass(frozen=True)

@@ -14,9 +14,10 @@ from lowpoint.survey.assembling import assemble
 from lowpoint.survey.fields import FIELDS
 from lowpoint.survey.grids import Grid, Sheets
 from lowpoint.survey.headers import Place, find_headings
+from lowpoint.survey.listed_columns import listed
 from lowpoint.survey.model import Cases, Problem, Reading
 from lowpoint.survey.own_sheet import note_for, put_method
-from lowpoint.survey.sheet import SheetColumns, listed, read_sheet
+from lowpoint.survey.sheet import SheetColumns, read_sheet
 from lowpoint.survey.tolerances import SHEET as TOLERANCES
 from lowpoint.survey.tolerances import listed_tolerances
 from lowpoint.survey.travel_tables import read_tables

@@ -15,6 +15,7 @@ from typing import Any
 
 import numpy as np
 
+from lowpoint.survey.best import best_words
 from lowpoint.survey.items import verdict
 from lowpoint.survey.model import Survey, absent
 from lowpoint.survey.tolerances import NAMES
@@ -160,7 +161,7 @@ def _first_remedy(survey: Survey) -> list[str | None]:
     for item in survey.items:
         remedies = survey.remedies.get(item.tag, ())
         for place in item.rows if remedies else ():
-            found[place] = remedies[0].text
+            found[place] = best_words(item, remedies)
     return found
 
 

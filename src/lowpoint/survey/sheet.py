@@ -9,27 +9,32 @@ from typing import Any
 
 import numpy as np
 
+from lowpoint.kinds import Quantity
 from lowpoint.physics.site import barometric_pressure
-from lowpoint.physics.unitnames import meaning
+from lowpoint.physics.unitnames import meaning, names_reference
 from lowpoint.problems import shown
 from lowpoint.survey import values
 from lowpoint.survey.above import SITE, above_table, of_its_item
 from lowpoint.survey.fields import BY_KEY, NOT_JUDGED, ListField
 from lowpoint.survey.grids import Grid, cell_name
 from lowpoint.survey.headers import LEAST, Heading, Place, are_units, is_carried, nearest, text_of
+from lowpoint.survey.listed_columns import listed
 from lowpoint.survey.listed_rows import ListRows, listed_rows
 from lowpoint.survey.model import Numbers, Problem, ReadColumn
 from lowpoint.survey.own_sheet import REMARK, is_remark
 from lowpoint.survey.result_columns import is_result
 from lowpoint.units import KV
 
-__all__ = ["SheetColumns", "listed", "read_sheet"]
+__all__ = ["SheetColumns", "read_sheet"]
 
 GAUGE = "Add a column 'Site elevation [m]' or 'Atmosphere [bar]', a line 'Site elevation [m]' with its number above " \
     "the table, or --elevation METRES; or write bar a where the pressures are absolute."  # fmt: skip
+EITHER = frozenset({"p1", "p2", "outlet_pressure"})
+"""Pressures that lists give as gauge as often as absolute."""
+POSITIVE = Quantity("carried", "mass flow or kinematic viscosity", "ratio", low=0.0)
+"""Bounds of what the density carries over to the field's own kind."""
 BELOW_NOTHING = "A gauge pressure cannot lie further below nought than the atmosphere of the site."
-DIFFERENCES = frozenset({"head_ref", "outlet_loss"})
-"""Differences of pressure, which are neither gauge nor absolute."""
+ABSOLUTE = "{} of {}: read as absolute, as the unit in the heading says neither a nor g"
 
 
 @dataclass(eq=False)
@@ -178,6 +183,17 @@ class _Reader:
                 cells.extend([None] * (column + 1 - len(cells)))
                 cells[column] = value
 
+    def controls(self) -> None:
+        """Signs that nobody sees, and that steer whatever shows them, are taken out of every text, and told."""
+        for place, (number, cells) in enumerate(self.data):
+            for column, cell in enumerate(cells):
+                if not isinstance(cell, str) or cell.isprintable():
+                    continue
+                cells[column] = values.without_controls(cell)
+                if len(cells[column]) < len(cell.replace("\r\n", "\n")):
+                    self.tell(cell_name(number, column), shown(cell), "the text holds control signs, which were left "
+                              "out", "Type it anew.", place, spoils=False)  # fmt: skip
+
     def unvalued(self, used: dict[int, Heading]) -> None:
         for row, column in sorted(self.grid.unvalued):
             if column - 1 in used and row in self.index:
@@ -186,6 +202,16 @@ class _Reader:
                 self.tell(cell_name(row, column - 1), "", f"{what.heading} is a formula without a value",
                           "Open the book in a spreadsheet program and save it there, or recompute it with 'lowpoint "
                           "recalc'.", self.index[row], what.key not in NOT_JUDGED)  # fmt: skip
+
+    def run_together(self) -> None:
+        """Rows of a csv that a quotation mark without its partner ran into one value."""
+        sign = self.grid.separator
+        for place, (number, cells) in enumerate(self.data if sign else ()):
+            for column, cell in enumerate(cells):
+                if isinstance(cell, str) and "\n" in cell and sign in cell:
+                    self.tell(cell_name(number, column), shown(cell), "the value runs on over several lines, and rows "
+                              "may be lost in it: a quotation mark has no partner", "Take the mark out, or double it.",
+                              place)  # fmt: skip
 
     # --- values --------------------------------------------------------------------------------------------------
 
@@ -236,8 +262,9 @@ class _Reader:
         if what.quantity is not None and what.quantity.zero_is_blank and what.scope == "item":
             x = np.where(x == 0.0, np.nan, x)
         key, si = self._si(what, heading, x)
-        if what.quantity is not None and key == what.key:
-            si = self._bounded(what, heading, column, x, si)
+        quantity = what.quantity if key == what.key else POSITIVE
+        if quantity is not None:
+            si = self._bounded(what, quantity, heading, column, x, si)
         self.out.numbers[key] = si
 
     def _shown_percent(self, what: ListField, column: int, x: Numbers) -> Numbers:
@@ -272,14 +299,14 @@ class _Reader:
             return "kinematic", si
         return what.key, si
 
-    def _bounded(self, what: ListField, heading: Heading, column: int, x: Numbers, si: Numbers) -> Numbers:
-        assert what.quantity is not None
-        bad, clause = values.out_of_bounds(what.quantity, si)
+    def _bounded(self, what: ListField, quantity: Quantity, heading: Heading, column: int, x: Numbers, si: Numbers,
+                 ) -> Numbers:  # fmt: skip
+        bad, clause = values.out_of_bounds(quantity, si)
         if not bad.any():
             return si
         for place in np.flatnonzero(bad).tolist():
             value = shown(float(x[place]), heading.unit or "")
-            remedy = BELOW_NOTHING if heading.unit and meaning(heading.unit).gauge else what.quantity.remedy
+            remedy = BELOW_NOTHING if heading.unit and meaning(heading.unit).gauge else quantity.remedy
             self.tell(cell_name(self.out.rows[place], column), value, f"{what.heading} {clause(place)}", remedy, place,
                       what.key not in NOT_JUDGED)  # fmt: skip
         return np.where(bad, np.nan, si)
@@ -292,38 +319,16 @@ def _runs(numbers: Sequence[int]) -> Iterator[tuple[int, int]]:
         yield members[0], members[-1]
 
 
-def listed(grid: Grid, place: Place) -> list[ReadColumn]:
-    """The columns of a sheet as the reading reports them."""
-    seen: dict[str, int] = {}
-    for heading in place.headings.values():
-        if heading.field is not None:
-            seen[heading.field.key] = seen.get(heading.field.key, 0) + 1
-    found = []
-    for column, heading in place.headings.items():
-        key = heading.field.key if heading.field else ""
-        if not key:
-            known = "result" if is_result(heading.text) else "carried"
-            status = known if heading.left or is_carried(heading.text) or known == "result" else "unknown"
-        elif seen[key] > 1:
-            status = "twice"
-        elif heading.problem:
-            status = "no unit" if not heading.unit else "wrong unit"
-        else:
-            status = "used"
-        found.append(
-            ReadColumn(grid.sheet, cell_name(place.row, column), heading.text, key, heading.unit or "", status)
-        )
-    return found
-
-
 def read_sheet(grid: Grid, place: Place, elevation: float | None, problems: list[Problem]) -> SheetColumns:
     """The columns of one list; problems are added to those of the file."""
     reader = _Reader(grid, place, problems)
     used = reader.usable()
+    reader.controls()
     reader.nameless()
     reader.hidden(used)
     reader.merged(used)
     reader.unvalued(used)
+    reader.run_together()
     first = [(column, heading) for column, heading in used.items() if _is(heading, "tag", *SITE)]
     for column, heading in first:
         reader.read(column, heading)
@@ -347,7 +352,7 @@ def _site(reader: _Reader, elevation: float | None) -> dict[str, float]:
     Gives what holds for all rows, by field, SI.
     """
     out, count = reader.out, len(reader.data)
-    above = dict(above_table(reader.grid, reader.place))
+    above = above_table(reader.grid, reader.place, reader.tell)
     out.elevation = above.get("elevation")
     for key, value in above.items():
         out.notes.append(f"{BY_KEY[key].heading} was read from above the table of {reader.grid.sheet}")
@@ -367,16 +372,16 @@ def _site(reader: _Reader, elevation: float | None) -> dict[str, float]:
 def _with_atmosphere(reader: _Reader, used: dict[int, Heading]) -> dict[int, Heading]:
     """The headings without those of gauge pressures that no row can make absolute; rows that cannot are told."""
     kept = {}
+    plain = [heading.field.heading for heading in used.values() if heading.field is not None
+             and heading.field.key in EITHER and not names_reference(heading.unit or "")]  # fmt: skip
+    if plain and not reader.place.own:
+        reader.out.notes.append(ABSOLUTE.format(", ".join(plain), reader.grid.sheet))
     lacking = np.isnan(reader.out.numbers["atmosphere"])
     for column, heading in used.items():
         what = heading.field
         gauge = (
             what is not None and what.reference == "bar" and bool(heading.unit) and meaning(heading.unit or "").gauge
         )
-        if gauge and what is not None and what.key in DIFFERENCES:
-            reader.tell(cell_name(reader.place.row, column), shown(heading.text), f"{what.heading} is a difference of "
-                        "pressures, which is not gauge", "Take the g out of its unit.")  # fmt: skip
-            continue
         if gauge and lacking.any() and what is not None:
             cells = reader.cells(column)
             if lacking.all():

@@ -3,19 +3,31 @@
 from __future__ import annotations
 
 import math
+import re
+import textwrap
 from collections import Counter
 from collections.abc import Iterator
 
 from lowpoint.problems import counted
+from lowpoint.survey.best import best_of, best_words
 from lowpoint.survey.fields import BY_KEY
 from lowpoint.survey.items import ORDER, verdict
 from lowpoint.survey.model import Item, Reading, Survey
 from lowpoint.survey.staying import stay_words
+from lowpoint.survey.worded import in_system
 
-__all__ = ["reading_lines", "survey_lines"]
+__all__ = ["WIDTH", "problem_lines", "reading_lines", "survey_lines", "wrapped"]
 
 SHOWN = 20
 """Problems and items that are shown; the rest is counted."""
+WIDTH, LEAST = 100, 60
+"""Columns of a terminal whose width is not known, and the fewest that lines are broken to."""
+HANGING = "      "
+ALSO = 3
+"""Other remedies that are named on a terminal."""
+_WORST_OF = re.compile(r"; the worst of \d+ cases")
+_UNITS = re.compile(r"(\d) (%|bar|psia?|mm|Kv|Cv)(?!\w)")
+"""A number and its unit, which stay on one line."""
 
 
 def reading_lines(reading: Reading, most: int = SHOWN) -> Iterator[str]:
@@ -38,11 +50,12 @@ def reading_lines(reading: Reading, most: int = SHOWN) -> Iterator[str]:
     yield from problem_lines(reading, most)
 
 
-def problem_lines(reading: Reading, most: int = SHOWN) -> Iterator[str]:
-    """What is wrong with a list, cell by cell."""
+def problem_lines(reading: Reading, most: int = SHOWN, width: int | None = None) -> Iterator[str]:
+    """What is wrong with a list, cell by cell; a problem a line where no width is given."""
     if reading.problems:
         yield f"wrong with the list ({len(reading.problems)}):"
-        yield from (f"  {problem.sentence()}" for problem in reading.problems[:most])
+        for problem in reading.problems[:most]:
+            yield from wrapped(problem.sentence(), width, "  ", HANGING)
         if len(reading.problems) > most:
             yield f"  ... and {len(reading.problems) - most} more; --json names them all"
 
@@ -55,54 +68,86 @@ def _shortened(texts: list[str], most: int) -> str:
     return ", ".join(texts[:most]) + (f" ... and {len(texts) - most} more" if len(texts) > most else "")
 
 
-def survey_lines(survey: Survey, most: int = SHOWN, system: str = "metric") -> Iterator[str]:
-    """Counts, the items that fail or have no answer, and the nearest of the others."""
+def survey_lines(
+    survey: Survey, most: int = SHOWN, system: str = "metric", width: int = WIDTH
+) -> Iterator[str]:  # fmt: skip
+    """Counts, the items that fail or have no answer and why, and the nearest of the others; lines of some width."""
+    survey = in_system(survey, system)
     counts = Counter(item.regime for item in survey.items)
     said = [f"{counts[word]} {word}" for word in ORDER if counts[word]]
     said += [f"{counts[None]} without an answer"] if counts[None] else []
     items, cases = counted(len(survey.items), "item"), counted(survey.cases.count, "case")
-    yield f"{items}, {cases}; by their worst case: {', '.join(said) or 'none'}"
+    yield from wrapped(f"{items}, {cases}; by their worst case: {', '.join(said) or 'none'}", width)
     failing = sorted((i for i in survey.items if i.fails), key=_by_margin)
-    yield from _listed(survey, "fail", failing, most, system)
+    yield from _listed(survey, "fail", failing, most, system, width)
     unanswered = [i for i in survey.items if i.unanswered and not i.fails]
-    yield from _listed(survey, "have cases without an answer", unanswered, most, system)
+    yield from _listed(survey, "have cases without an answer", unanswered, most, system, width)
+    yield from _errors(survey, most, width)
     kept = sorted((i for i in survey.items if not i.fails and not i.unanswered), key=_by_margin)
-    yield from _listed(survey, "are kept, nearest first", kept, 5, system)
-    yield from _errors(survey, most)
+    yield from _listed(survey, "are kept, nearest first", kept, 5, system, width)
 
 
-def _by_margin(item: Item) -> float:
-    return math.inf if math.isnan(item.margin) else item.margin
+def wrapped(text: str, width: int | None, first: str = "", then: str | None = None) -> list[str]:
+    """A text in lines of some width, never cut within a word; None: in one line.
+
+    ``first``: what stands before the first line. ``then``: before the others, four spaces where it is not given.
+    """
+    if width is None:
+        return [first + text]
+    hanging = "    " if then is None else then
+    lines = textwrap.wrap(_UNITS.sub("\\1\xa0\\2", text), max(width, LEAST), initial_indent=first,
+                          subsequent_indent=hanging, break_long_words=False, break_on_hyphens=False)  # fmt: skip
+    return [line.replace("\xa0", " ") for line in lines]
 
 
-def _listed(survey: Survey, what: str, items: list[Item], most: int, system: str) -> Iterator[str]:
-    if items:
-        yield f"{len(items)} {what}:"
-        width = max(len(item.tag) for item in items[:most])
-        for item in items[:most]:
-            yield f"  {item.tag:<{width}}  {verdict(item.regime, item.basis):<20}  {item.why}"
-            yield from (f"  {'':<{width}}    {line}" for line in _more(survey, item, system))
-        if len(items) > most:
-            yield f"  ... and {len(items) - most} more"
+def _by_margin(item: Item) -> tuple[bool, float]:
+    return item.regime != "flashing", math.inf if math.isnan(item.margin) else item.margin
+
+
+def _listed(survey: Survey, what: str, items: list[Item], most: int, system: str, width: int) -> Iterator[str]:
+    if not items:
+        return
+    yield f"{len(items)} {what}:"
+    shown = items[:most]
+    tags = max(len(item.tag) for item in shown)
+    states = max(len(verdict(item.regime, item.basis)) for item in shown)
+    for item in shown:
+        state = verdict(item.regime, item.basis)
+        first = f"  {item.tag:<{tags}}  {state:<{states}}  "
+        yield from wrapped(_in_short(survey, item), width, first, HANGING)
+        for line in _more(survey, item, system):
+            yield from wrapped(line, width, HANGING, HANGING + "  ")
+    if len(items) > most:
+        yield f"  ... and {len(items) - most} more; -o, --html and --json tell of them all"
+
+
+def _in_short(survey: Survey, item: Item) -> str:
+    """Why, without the verdict that stands beside it."""
+    why = item.why.replace(f"{verdict(item.regime, item.basis)}: ", "", 1)
+    case = survey.cases.case[item.worst] if item.worst >= 0 else None
+    if case:
+        why = case + why.removeprefix(f"case '{case}'")
+    for long, short in ((" is not above the ", " <= "), (" is above the ", " > "), (", margin ", ", ")):
+        why = why.replace(long, short, 1)
+    return _WORST_OF.sub("", why)
 
 
 def _more(survey: Survey, item: Item, system: str) -> Iterator[str]:
-    """How sure the verdict is, and what would cure a failure."""
-    if survey.sensitivity is not None and item.worst >= 0 and not math.isnan(item.margin):
-        yield stay_words(survey.sensitivity, item.worst, survey.findings, system)
+    """How sure the verdict is, where that is not plain, and what would cure a failure."""
+    found = survey.sensitivity
+    told = found is not None and item.worst >= 0 and not math.isnan(item.margin)
+    plain = found is not None and item.fails and found.stays[item.worst] <= 0.0
+    if found is not None and told and not plain and (item.fails or not item.unanswered):
+        yield stay_words(found, item.worst, survey.findings, system)
     remedies = survey.remedies.get(item.tag, ())
-    for remedy in remedies:
-        if remedy.kind == "flashing":
-            yield from (remedy.text, *(f"  {line}" for line in remedy.cautions))
-    found = [remedy for remedy in remedies if remedy.kind != "flashing"]
-    cures = [remedy for remedy in found if remedy.cures]
-    for remedy in cures[:1] or found[:1]:
-        yield f"{'remedy' if remedy.cures else 'no cure was found; nearest to it'}: {remedy.text}"
-    if len(cures) > 1:
-        yield "also: " + ", ".join(dict.fromkeys(remedy.kind for remedy in cures[1:]))
+    if remedies:
+        best = best_of(remedies)
+        also = list(dict.fromkeys(remedy.title for remedy in remedies if remedy.cures and remedy is not best))
+        head = "" if best is not None and best.kind == "flashing" else "remedy: "
+        yield f"{head}{best_words(item, remedies, brief=True)}" + (f"; also: {_shortened(also, ALSO)}" if also else "")
 
 
-def _errors(survey: Survey, most: int) -> Iterator[str]:
+def _errors(survey: Survey, most: int, width: int) -> Iterator[str]:
     """Why cases have no answer, but for what the list's problems have said."""
     told = {problem.sentence() for problem in survey.reading.problems}
     lines = []
@@ -111,6 +156,7 @@ def _errors(survey: Survey, most: int) -> Iterator[str]:
         lines += [f"  {tag} {case}: {error}" for error in errors if error not in told]
     if lines:
         yield "without an answer, because:"
-        yield from lines[:most]
+        for line in lines[:most]:
+            yield from wrapped(line.lstrip(), width, "  ", HANGING)
         if len(lines) > most:
             yield f"  ... and {len(lines) - most} more; --json names them all"

@@ -156,7 +156,7 @@ def _loaded(path: str | os.PathLike[str]) -> Mapping[str, Any]:
     name = Path(path).name
     try:
         data = json.loads(guard.load(path).decode("utf-8-sig"))
-    except (UnicodeDecodeError, json.JSONDecodeError, RecursionError):
+    except (ValueError, RecursionError):  # no text, no JSON, a number without end
         raise BookError(name, NOT_OURS, "text that is no JSON", REMEDY) from None
     if not isinstance(data, dict) or "cases" not in data:
         raise BookError(name, NOT_OURS, "another JSON", REMEDY)

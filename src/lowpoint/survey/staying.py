@@ -27,8 +27,9 @@ def stay_words(sensitivity: Sensitivity, place: int, findings: Findings, system:
     if dominant is not None:
         size = next(t.words(system) for t in sensitivity.tolerances if t.field == dominant)
         verb = "matter" if dominant == "limits" else "matters"
-        swing = float(f"{sensitivity.swing[place]:.2g}")
-        said.append(f"the {NAMES[dominant]} {verb} most ({size} moves the margin by {swing:g} from end to end)")
+        swing = float(f"{100.0 * sensitivity.swing[place]:.2g}")
+        unit = "percentage point" if swing == 1.0 else "percentage points"
+        said.append(f"the {NAMES[dominant]} {verb} most ({size} moves the margin by {swing:g} {unit} from end to end)")
     return "; ".join(said)
 
 
@@ -54,14 +55,14 @@ def _passing(sensitivity: Sensitivity, place: int, findings: Findings) -> str:
     keep = findings.keep[place]
     state = {"incipient": "clear", "choked": "free of choking"}.get(keep, f"above the {keep} limit")
     if sensitivity.proven[place]:
-        return f"stays {state} whatever the inputs within their tolerances"
+        return f"stays {state} whatever the inputs are within their tolerances"
     return f"stays {state} {share_words(float(sensitivity.stays[place]), sensitivity.draws)}"
 
 
 def _failing(sensitivity: Sensitivity, place: int) -> str:
     share = float(sensitivity.stays[place])
     if sensitivity.proven[place]:
-        return "fails whatever the inputs within their tolerances"
+        return "fails whatever the inputs are within their tolerances"
     if share <= 0.0:
         return f"fails, and so it does in all {sensitivity.draws} draws"
     return f"fails with the inputs as given, and that stands, though it passes {share_words(share, sensitivity.draws)}"

@@ -19,7 +19,8 @@ from lowpoint.survey.fields import ESTIMATE, KINDS, OUTLETS, TYPICAL, ListField
 from lowpoint.survey.model import Numbers, Words
 from lowpoint.units import dimension
 
-__all__ = ["Fault", "NumberCells", "as_text", "bores", "is_formula_like", "numbers", "out_of_bounds", "words"]
+__all__ = ["Fault", "NumberCells", "as_text", "bores", "is_formula_like", "numbers", "out_of_bounds",
+           "without_controls", "words"]  # fmt: skip
 
 RETYPE = "Type the number, and format the cell as one."
 DATED = "A program may have made a date of a number such as 5.8: format the cell as a number, and type it again."
@@ -28,7 +29,8 @@ BLANKS = frozenset({"", "-", "–", "—"})
 _PLAIN = frozenset({float, int, type(None)})
 _NUMBER = re.compile(r"[+-]?(?:\d+(?P<mark>[.,])?\d*|(?P<lead>[.,])\d+)(?:[eE][+-]?\d+)?")
 _ERROR = re.compile(r"#(?:N/A|NUM!|VALUE!|REF!|NAME\?|DIV/0!|NULL!|SPILL!|CALC!)|Err:\d+")
-_FORMULA = re.compile(r"[=@\t\r]|[+-](?=[^\d\s.,])")
+_FORMULA = re.compile(r"[=@\t\r]|[+-](?=[^\d\s.,])|[+-][\d.,]+ *[-+*/^&(|=<>!]")
+_CONTROL = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f\x7f-\x9f\u202a-\u202e\u2066-\u2069\ud800-\udfff\ufffe\uffff]")
 ASKED = {"fl": TYPICAL, "fd": TYPICAL, "incipient": ESTIMATE}
 """The word that may stand in place of a number, by field."""
 
@@ -144,7 +146,7 @@ def words(what: ListField, cells: Sequence[Any]) -> tuple[Words, list[Fault]]:
             faults.append(Fault(place, cell, f"{what.heading} holds an error", "Cure its formula, or type the text."))
             continue
         if what.what == "text":
-            found[place] = text
+            found[place] = " ".join(text.split())
             continue
         word = known.get(" ".join(text.split()).casefold())
         if word is None:
@@ -157,6 +159,11 @@ def words(what: ListField, cells: Sequence[Any]) -> tuple[Words, list[Fault]]:
 def _spellings(what: ListField) -> dict[str, str]:
     spelled = _SPELLED.get(what.key, {word: (word,) for word in what.words})
     return {other: word for word, others in spelled.items() for other in (word, *others)}
+
+
+def without_controls(text: str) -> str:
+    """A text without the signs that steer a terminal or turn the reading direction; line ends made plain."""
+    return _CONTROL.sub("", text.replace("\r\n", "\n").replace("\r", "\n"))
 
 
 def as_text(cell: Any) -> str | None:

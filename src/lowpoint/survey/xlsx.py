@@ -116,10 +116,18 @@ def _telling(rows: Iterator[Any], total: int, progress: Progress) -> Iterator[An
 
 
 def _percent(sheet: Any, rows: list[tuple[int, list[Any]]]) -> Iterator[tuple[int, int]]:
-    """Cells formatted as per cent, in columns under a heading with that sign; no other columns are looked at."""
-    for column in sorted({place for _, cells in rows[:LOOKED_AT] for place, cell in enumerate(cells)
-                          if isinstance(cell, str) and _PER_CENT.search(cell)}):  # fmt: skip
-        for (cell,) in sheet.iter_rows(min_col=column + 1, max_col=column + 1):
+    """Cells formatted as per cent, in columns under a heading with that sign; no other columns are looked at.
+
+    Formats cost a second pass over the sheet: one, however many columns, and none without such a heading.
+    """
+    columns = sorted({place for _, cells in rows[:LOOKED_AT] for place, cell in enumerate(cells)
+                      if isinstance(cell, str) and _PER_CENT.search(cell)})  # fmt: skip
+    if not columns:
+        return
+    first = columns[0]
+    for row in sheet.iter_rows(min_col=first + 1, max_col=columns[-1] + 1):
+        for column in columns:
+            cell = row[column - first]
             if isinstance(cell.value, int | float) and "%" in cell.number_format:
                 yield cell.row, column + 1
 

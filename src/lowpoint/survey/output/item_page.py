@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import re
 from collections.abc import Mapping, Sequence
 from typing import Any
 
@@ -12,9 +11,10 @@ from openpyxl.worksheet.pagebreak import Break
 from lowpoint.styling import style
 from lowpoint.survey.items import verdict
 from lowpoint.survey.model import Item, Survey
-from lowpoint.survey.outcome import Remedy, Step, Working
+from lowpoint.survey.outcome import Remedy, Working
 from lowpoint.survey.output.cells import SHARE, band, format_of, number, put, sentence, wide_text
 from lowpoint.survey.output.charts import Area, index_chart, pressure_chart
+from lowpoint.survey.output.steps import WIDE, WIDTHS, put_heads, put_steps, underline
 from lowpoint.survey.pictures import index_picture, pressure_picture
 from lowpoint.survey.result_columns import RESULT_COLUMNS, result_heading
 from lowpoint.survey.sensed import sensed_words
@@ -22,10 +22,8 @@ from lowpoint.survey.working import working
 
 __all__ = ["CASES", "write"]
 
-WIDE = 12
 CASES = 10
 """Cases that the table has room for: the worst ones."""
-WIDTHS = (27.0, 10.0, *(12.5,) * (WIDE - 2))
 CHART_ROWS, CHART_POINTS = 20, 15.0
 SHOWN = (
     "verdict", "fails", "reasons", "margin", "keep_here", "limit", "flow_used", "p1_used", "p2_used", "pv_used",
@@ -53,7 +51,7 @@ def write(book: Any, survey: Survey, item: Item, name: str, values: Values, syst
     row = charts + CHART_ROWS + 1
     row = _cases(sheet, row, survey, item, values, system)
     row = _sensed(sheet, row, survey, item, system)
-    row = _remedies(sheet, row, survey.remedies.get(item.tag, ()), system)
+    row = _remedies(sheet, row, survey.remedies.get(item.tag, ()))
     row = _said(sheet, row, "Cautions of the worst case", survey.findings.cautions, item.worst)
     sheet.row_breaks.append(Break(id=row - 1))
     row = _working(sheet, row, working(survey, item.worst, system))
@@ -152,76 +150,28 @@ def _said(sheet: Any, row: int, title: str, lists: Sequence[Sequence[str]], plac
     return row + 1
 
 
-def _remedies(sheet: Any, row: int, remedies: Sequence[Remedy], system: str) -> int:
-    units = "" if system == "metric" else "; in metric units"
-    title = f"Remedies, the best first; each was tried on every case by the same calculation{units}"
-    row = band(sheet, row, title, WIDE)
+def _remedies(sheet: Any, row: int, remedies: Sequence[Remedy]) -> int:
+    row = band(sheet, row, "Remedies, the best first; each was tried on every case by the same calculation", WIDE)
     if not remedies:
         wide_text(sheet, row, 1, WIDE, "None was worked out in this survey.")
         return row + 2
-    _heads(sheet, row, (("Remedy", 1, 1), ("Cures", 2, 2), ("What must be done", 3, 7), ("Least margin", 8, 8),
+    put_heads(sheet, row, (("Remedy", 1, 1), ("Cures", 2, 2), ("What must be done", 3, 7), ("Least margin", 8, 8),
                         ("Cautions", 9, WIDE)))  # fmt: skip
     for remedy in remedies:
         row += 1
-        put(sheet, row, 1, remedy.kind)
+        put(sheet, row, 1, remedy.title)
         put(sheet, row, 2, "yes" if remedy.cures else "no")
         put(sheet, row, 8, number(remedy.margin), SHARE)
         wide_text(sheet, row, 3, 7, sentence(remedy.text))
         wide_text(sheet, row, 9, WIDE, " ".join(map(sentence, remedy.cautions)))
-        _underline(sheet, row)
+        underline(sheet, row)
     return row + 2
-
-
-def _heads(sheet: Any, row: int, heads: Sequence[tuple[str, int, int]]) -> None:
-    for text, first, last in heads:
-        style.heading(put(sheet, row, first, text))
-        for place in range(first + 1, last + 1):
-            style.heading(sheet.cell(row, place))
-        if last > first:
-            sheet.merge_cells(start_row=row, start_column=first, end_row=row, end_column=last)
-
-
-def _underline(sheet: Any, row: int) -> None:
-    for place in range(1, WIDE + 1):
-        sheet.cell(row, place).border = style.LINE_BELOW
 
 
 # --- the working ------------------------------------------------------------------------------------------------
 
 
 def _working(sheet: Any, row: int, paper: Working) -> int:
-    row = band(sheet, row, f"Working of {paper.title}", WIDE)
-    for title, steps in paper.sections:
-        put(sheet, row, 1, title, look="bold")
-        row += 1
-        _heads(sheet, row, (("Meaning", 1, 1), ("Symbol", 2, 2), ("Equation", 3, 5), ("With its numbers", 6, 8),
-                            ("Value", 9, 9), ("Unit", 10, 10), ("Source", 11, 12)))  # fmt: skip
-        for step in steps:
-            row += 1
-            _step(sheet, row, step)
-        row += 2
+    row = put_steps(sheet, band(sheet, row, f"Working of {paper.title}", WIDE), paper)
     wide_text(sheet, row, 1, WIDE, f"Verdict: {paper.verdict}.")
     return row + 2
-
-
-def _value(sheet: Any, row: int, column: int, text: str) -> None:
-    """A printed value: a number with as many digits, where it is one, so that it can be reckoned with."""
-    if not _PRINTED.fullmatch(text):
-        wide_text(sheet, row, column, column, text)
-        return
-    digits = len(text.partition(".")[2])
-    put(sheet, row, column, float(text), "0." + "0" * digits if digits else "0")
-
-
-_PRINTED = re.compile(r"-?\d{1,15}(\.\d{1,15})?")
-
-
-def _step(sheet: Any, row: int, step: Step) -> None:
-    wide_text(sheet, row, 1, 1, step.meaning)
-    put(sheet, row, 2, step.symbol)
-    wide_text(sheet, row, 3, 5, step.equation)
-    wide_text(sheet, row, 6, 8, step.numbers)
-    _value(sheet, row, 9, step.value)
-    wide_text(sheet, row, 10, 10, step.unit)
-    wide_text(sheet, row, 11, 12, "; ".join(x for x in (step.source, step.note) if x))
-    _underline(sheet, row)

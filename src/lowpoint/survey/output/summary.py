@@ -15,6 +15,7 @@ from openpyxl.worksheet.hyperlink import Hyperlink
 from lowpoint.problems import counted
 from lowpoint.styling import style
 from lowpoint.styling.strings import clean
+from lowpoint.survey.best import best_words
 from lowpoint.survey.fields import BY_KEY
 from lowpoint.survey.items import ORDER, verdict
 from lowpoint.survey.model import Item, Survey, absent
@@ -143,7 +144,7 @@ def _worst(sheet: Any, row: int, survey: Survey, pages: Mapping[str, str]) -> in
         put(sheet, row, 5, number(item.margin), SHARE)
         wide_text(sheet, row, 6, 6, item.why)
         remedies = survey.remedies.get(item.tag, ())
-        wide_text(sheet, row, 7, 7, remedies[0].text if remedies else "none was worked out")
+        wide_text(sheet, row, 7, 7, best_words(item, remedies))
         _link(put(sheet, row, 8, pages.get(item.tag)), pages.get(item.tag))
         _underline(sheet, row)
     return row + 2

@@ -21,6 +21,7 @@ from lowpoint.survey.page.contents import foundations, numbered_notes, problems_
 from lowpoint.survey.page.rows import Column, Mark, columns_of, marks_of
 from lowpoint.survey.page.sections import item_pages
 from lowpoint.survey.taken import CAUTION
+from lowpoint.survey.worded import in_system
 
 if TYPE_CHECKING:
     from jinja2 import Environment
@@ -47,6 +48,7 @@ def write_page(survey: Survey, path: str | os.PathLike[str], *, system: str = "m
 
 def page_text(survey: Survey, *, system: str = "metric", pages: int = 50, today: datetime.date | None = None) -> str:
     """The whole page as text."""
+    survey = in_system(survey, system)
     failing = [item for item in worst_first(survey) if item.fails]
     notes = numbered_notes(survey)
     sections = {item.tag: number for number, item in enumerate(failing[:pages], start=1)}

@@ -18,7 +18,8 @@ from lowpoint.survey.outcome import Remedy
 from lowpoint.survey.remedies import wording
 from lowpoint.survey.remedies.failing import Failing, as_strict, index_fails
 from lowpoint.survey.remedies.searching import least
-from lowpoint.survey.remedies.trying import Trial, advice, enlarged, tried
+from lowpoint.survey.remedies.trying import BARELY, Trial, advice, enlarged, tried
+from lowpoint.survey.worded import amount
 
 __all__ = ["lower_temperatures"]
 
@@ -60,10 +61,11 @@ def _cooled(failing: Failing, numbers: Any, highest: Any) -> Iterator[tuple[int,
         rows = failing.rows_of(item)
         fall = float((failing.cases.t[rows] - trial.cases.t[rows]).max())
         hottest = rows.start + int(np.argmax(failing.cases.t[rows] - trial.cases.t[rows]))
-        text = (f"at most {wording.celsius(float(highest[item]))} at the inlet, {fall:.1f} K less in "
-                f"{failing.name(hottest)}: {trial.comes_to(item)}")  # fmt: skip
+        less = amount(fall, "temperature difference", ".1f", "up")
+        what = (f"at most {wording.celsius(float(highest[item]), 'down')} at the inlet, {less} less in "
+                f"{failing.name(hottest)}")  # fmt: skip
         figures = {"temperature at most": (float(highest[item]), "temperature"), "cooler by": (fall, "ratio")}
-        yield int(numbers[item]), trial.remedy(item, "lower temperature", text, figures, [_HOW])
+        yield int(numbers[item]), trial.remedy(item, "lower temperature", what, figures, [BARELY, _HOW])
 
 
 def _names(cases: Cases) -> Any:

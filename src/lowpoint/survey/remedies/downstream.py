@@ -208,8 +208,8 @@ def bores_words(bores: Sequence[float]) -> str:
     """``one plate, bore 42 mm`` or ``two plates, bores 42 and 51.5 mm``."""
     number = ("one", "two", "three", "four", "five", "six", "seven", "eight", "nine", "ten", "eleven", "twelve")
     if len(bores) == 1:
-        return f"one plate, bore {wording.mm(bores[0])} mm"
-    return f"{number[len(bores) - 1]} plates, bores {wording.spoken([wording.mm(bore) for bore in bores])} mm"
+        return f"one plate, bore {wording.size(bores[0])}"
+    return f"{number[len(bores) - 1]} plates, bores {wording.sizes(bores)}"
 
 
 def _remedy(trial: Trial) -> Remedy:
@@ -220,11 +220,11 @@ def _remedy(trial: Trial) -> Remedy:
     coefficient = float(np.nanmax(found.coefficient[~added]))
     of = wording.limit_words(found.keep[added])
     pipe = float(cases.pipe_in[plate])
-    text = (f"{bores_words(bores)} behind the valve in the pipe of {wording.mm(pipe)} mm, with a least margin to the "
-            f"{of} of {wording.share(least)}; of the valve {trial.comes_to(0)}, at most "
-            f"{wording.kv(coefficient)}")  # fmt: skip
+    what = f"{bores_words(bores)} behind the valve in the pipe of {wording.size(pipe)}"
+    text = (f"{what}, with a least margin to the {of} of {wording.share(least)}; of the valve {trial.comes_to(0)}, "
+            f"at most {wording.kv(coefficient, 'up')}")  # fmt: skip
     figures = {f"bore {i}": (float(bore), "size") for i, bore in enumerate(bores, 1)}
     figures |= {"margin of the plates": (least, "ratio"), "greatest coefficient of the valve": (coefficient,
                 "coefficient"), "pipe": (pipe, "size")}  # fmt: skip
     cautions = [_ESTIMATE, _STRENGTH] + ([_APART] if len(bores) > 1 else [])
-    return trial.remedy(0, "plate downstream", text, figures, cautions)
+    return trial.remedy(0, "plate downstream", what, figures, cautions, text=text)

@@ -9,6 +9,7 @@ from typing import Any
 import numpy as np
 
 from lowpoint.physics.fittings import large_capacity
+from lowpoint.survey import worded
 from lowpoint.survey.calculating import calculate
 from lowpoint.survey.model import Cases, TravelTable, absent
 from lowpoint.survey.outcome import Remedy
@@ -54,15 +55,15 @@ def _remedy(trial: Trial, failing: Failing, item: int) -> Remedy:
     row = rows.start
     rated, size = float(_full(trial.cases)[row]), float(trial.cases.valve_size[row])
     before = float(_full(failing.cases)[failing.rows_of(item).start])
-    text = f"a rated coefficient of at least {wording.kv(rated)} (now {wording.kv(before)})"
+    text = f"a rated coefficient of at least {wording.kv(rated, 'up')} (now {wording.kv(before)})"
     figures = {"rated coefficient": (rated, "coefficient")}
     if size > failing.cases.valve_size[failing.rows_of(item).start]:
-        text += f", nominal size {wording.mm(size)} mm"
+        text += f", nominal size {worded.amount(size, 'nominal size', '.5g')}"
         figures["valve size"] = (size, "size")
     cautions = [_SAME_STYLE]
     cautions += [] if absent(trial.cases.table[rows]).all() else [_TABLE]
     cautions += [_LOW] if (trial.found.travel[rows] < 0.1).any() else []
-    return trial.remedy(item, "larger valve", f"{text}: {trial.comes_to(item)}", figures, cautions)
+    return trial.remedy(item, "larger valve", text, figures, cautions)
 
 
 def _full(cases: Cases) -> Any:

@@ -14,9 +14,9 @@ from lowpoint.survey.remedies.trying import advice
 __all__ = ["flashing_advice"]
 
 _TEXT = (
-    "flashing: staging cannot help, nor a higher FL or a plate behind the valve, since p2 {} bar a is not above pv {} "
-    "bar a in {}"
+    "flashing: staging cannot help, nor a higher FL or a plate behind the valve, since p2 {} is not above pv {} in {}"
 )
+_BRIEF = "flashing: staging cannot help; hardened trim, an angle valve into the vessel, a wide outlet (common practice)"
 PRACTICE = (
     "live with the vapour: hardened trim and outlet, an angle valve that blows straight into the vessel, its outlet "
     "and the pipe behind it wide enough for the velocity of the mixture (common practice)",
@@ -33,6 +33,6 @@ def flashing_advice(failing: Failing) -> Iterator[tuple[int, Remedy]]:
         rows = failing.rows_of(item)
         p2, pv = failing.cases.p2[rows], failing.cases.pv[rows]
         worst = int(np.argmin(np.where(failing.found.flashing[rows], p2 - pv, np.inf)))
-        text = _TEXT.format(wording.bar(float(p2[worst])), wording.bar(float(pv[worst])),
+        text = _TEXT.format(wording.absolute(float(p2[worst])), wording.absolute(float(pv[worst])),
                             failing.name(rows.start + worst))  # fmt: skip
-        yield item, advice(failing, item, "flashing", text, PRACTICE)
+        yield item, advice(failing, item, "flashing", text, PRACTICE, _BRIEF)

@@ -66,8 +66,10 @@ def _designed(failing: Failing) -> Trial | None:
 
 def _remedy(trial: Trial) -> Remedy:
     bores = trial.cases.bores[0] or (float(trial.cases.bore[0]),)
-    text = (f"{bores_words(bores)}, in place of the present: the {wording.limit_words(trial.found.keep)} is kept "
+    what = f"{bores_words(bores)}, in place of the present"
+    text = (f"{what}: the {wording.limit_words(trial.found.keep)} is kept "
             f"{wording.in_cases(len(trial.of), trial.failing.items[0].unanswered)}, least margin "
             f"{wording.share(float(trial.margin[0]))}")  # fmt: skip
     figures = {f"bore {i}": (float(bore), "size") for i, bore in enumerate(bores, 1)}
-    return trial.remedy(0, "plates in series", text, figures, [_FIT, _MARCH, *([_REST] if len(trial.of) > 1 else [])])
+    cautions = [_FIT, _MARCH, *([_REST] if len(trial.of) > 1 else [])]
+    return trial.remedy(0, "plates in series", what, figures, cautions, text=text)

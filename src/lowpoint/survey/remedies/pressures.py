@@ -11,6 +11,7 @@ from typing import Any
 
 import numpy as np
 
+from lowpoint.survey import worded
 from lowpoint.survey.calculating import calculate
 from lowpoint.survey.model import Cases
 from lowpoint.survey.outcome import Remedy
@@ -18,7 +19,7 @@ from lowpoint.survey.outlets import outlet_pressures
 from lowpoint.survey.remedies import wording
 from lowpoint.survey.remedies.failing import Failing, as_strict, index_fails
 from lowpoint.survey.remedies.searching import least, rounded_up
-from lowpoint.survey.remedies.trying import enlarged, tried
+from lowpoint.survey.remedies.trying import BARELY, enlarged, tried
 from lowpoint.units import GRAVITY
 
 __all__ = ["DEEP", "back_pressures", "lower_locations", "raise_needed"]
@@ -30,6 +31,7 @@ DEEP, DEEPEST = 30.0, 100.0
 STEP = 0.1
 """m, steps in which a lower place is named."""
 _HOW = "who holds the outlet's pressure must be asked whether it can be raised; the flow was taken as it is"
+_PLACE = "a free jet has the pressure of the open air behind it: only a line, a leg or a plate there can raise it"
 _COLUMN = "the column of liquid alone was reckoned, both lines going on to where they go now"
 _FAR = "a place this far down is seldom practical"
 
@@ -50,12 +52,12 @@ def back_pressures(failing: Failing) -> Iterator[tuple[int, Remedy]]:
         rows = failing.rows_of(item)
         most = rows.start + int(np.nanargmax(raised[rows]))
         amount = float(raised[most])
-        text = (f"back-pressure raised by {wording.bar(amount)} bar, p2 at least {p2[most] / 1e5:.5g} bar a in "
-                f"{failing.name(most)}")  # fmt: skip
-        text += f" and less in {_others(int(changed[rows].sum()) - 1)}" if changed[rows].sum() > 1 else ""
+        what = (f"back-pressure raised by {wording.pressure(amount, 'up')}, p2 at least "
+                f"{wording.absolute(float(p2[most]), '.5g', 'up')} in {failing.name(most)}")  # fmt: skip
+        what += f" and less in {_others(int(changed[rows].sum()) - 1)}" if changed[rows].sum() > 1 else ""
         figures = {"back-pressure raised by": (amount, "pressure"), "p2 at least": (float(p2[most]), "pressure")}
-        yield int(numbers[item]), trial.remedy(item, "back-pressure", f"{text}: {trial.comes_to(item)}", figures,
-                                               [_HOW])  # fmt: skip
+        cautions = [BARELY, _HOW, *([_PLACE] if (failing.cases.outlet[rows] == "free jet").any() else [])]
+        yield int(numbers[item]), trial.remedy(item, "back-pressure", what, figures, cautions)
 
 
 def _others(count: int) -> str:
@@ -104,12 +106,11 @@ def lower_locations(failing: Failing) -> Iterator[tuple[int, Remedy]]:
     for item in range(failing.count):
         row = failing.rows_of(item).start
         gained = float(trial.cases.p1[row] - failing.cases.p1[row])
-        text = (
-            f"{depth[item]:.1f} m lower, where p1 and p2 are {wording.bar(gained)} bar higher: {trial.comes_to(item)}"
-        )
+        fall = worded.amount(float(depth[item]), "elevation", ".1f", "up")
+        what = f"{fall} lower, where p1 and p2 are {wording.pressure(gained)} higher"
         figures = {"lower by": (float(depth[item]), "elevation"), "pressures raised by": (gained, "pressure")}
-        cautions = [_COLUMN, _FAR] if depth[item] > DEEP else [_COLUMN]
-        yield int(numbers[item]), trial.remedy(item, "lower location", text, figures, cautions)
+        cautions = [BARELY, _COLUMN, *([_FAR] if depth[item] > DEEP else [])]
+        yield int(numbers[item]), trial.remedy(item, "lower location", what, figures, cautions)
 
 
 def _lowered(cases: Cases, depth: Any) -> Cases:

@@ -15,14 +15,16 @@ say otherwise)::
     lower location                piping is moved
     lower temperature             a cooler, and its duty for good
     what is hard to have          a valve with FL above 0.95 or a limit below nine tenths of the present one, which has
-                                  yet to be found; a place more than 30 m lower
+                                  yet to be found; a place more than 30 m lower; a back-pressure that takes more than
+                                  a quarter of the drop, or any behind a free jet
 
-What does not cure alone follows in the same order where its reason tells something, the advice on flashing first.
+Where a case flashes, the advice on flashing stands first: a higher back-pressure may end it on paper, and what practice
+does is to live with it. What does not cure alone follows in the same order, what was tried before what cannot be.
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Sequence
 from typing import Any
 
 import numpy as np
@@ -46,6 +48,8 @@ EASE = ("larger valve", "higher recovery factor", "plate downstream", "plates in
         "back-pressure", "split", "lower location", "lower temperature")  # fmt: skip
 SMALL_RAISE, SMALL_COOLING = 0.1, 5.0
 """Share of the drop, and K, up to which a change of operation counts as small."""
+LARGE_RAISE = 0.25
+"""Share of the drop above which a plant behind seldom bears a higher back-pressure (common practice)."""
 HIGH_FL, FAR_LIMIT = 0.95, 0.9
 """FL that single-stage trims seldom have; share of the present limit that another valve of the kind may reach."""
 
@@ -78,22 +82,31 @@ def remedies_of(
         for maker in (plates_downstream, plates_in_series):
             for item, remedy in maker(failing, plates_for):
                 found[item].append(remedy)
-        drop = failing.by_item(np.fmin, failing.cases.p1 - failing.cases.p2)
-    return {item.tag: tuple(sorted(found[number], key=lambda remedy: _rank(remedy, float(drop[number]))))
-            for number, item in enumerate(failing.items)}  # fmt: skip
+        drop = failing.cases.p1 - failing.cases.p2
+        drops = np.stack([failing.by_item(how, drop) for how in (np.fmin, np.fmax)], axis=1).tolist()
+        jets = failing.any(failing.cases.outlet == "free jet").tolist()
+    return {item.tag: tuple(sorted(own, key=lambda remedy: _rank(remedy, least_most, jet)))
+            for item, own, least_most, jet in zip(failing.items, found, drops, jets, strict=True)}  # fmt: skip
 
 
-def _rank(remedy: Remedy, drop: float) -> tuple[Any, ...]:
-    """Cures first, the easier first, then what comes out with the greater margin."""
+def _rank(remedy: Remedy, drops: Sequence[float], jet: bool) -> tuple[Any, ...]:
+    """Advice on flashing, then cures, the easier first, then what comes out with the greater margin.
+
+    ``drops``: the least and the largest of the item's cases. ``jet``: does a case end in a free jet?
+    """
     advice = remedy.kind == "flashing"
+    tried = not np.isnan(remedy.margin)
     ease = EASE.index(remedy.kind) if remedy.kind in EASE else -1
     figures = {name: value for name, (value, _) in remedy.figures.items()}
     if figures.get("lower by", 0.0) > DEEP or figures.get("FL at least", 0.0) > HIGH_FL:
         ease = len(EASE)
     if figures.get("limit at most", np.inf) < FAR_LIMIT * figures.get("limit now", 1.0):
         ease = len(EASE)
-    if figures.get("back-pressure raised by", np.inf) <= SMALL_RAISE * drop:
+    raised = figures.get("back-pressure raised by", np.nan)
+    if raised > LARGE_RAISE * drops[1] or (jet and not np.isnan(raised)):
+        ease = len(EASE)
+    if raised <= SMALL_RAISE * drops[0] and not jet:
         ease = -1
     if figures.get("cooler by", np.inf) <= SMALL_COOLING:
         ease = -1
-    return (not remedy.cures, not advice, ease, -np.nan_to_num(remedy.margin))
+    return (not advice, not remedy.cures, not tried, ease, -np.nan_to_num(remedy.margin))

@@ -22,13 +22,15 @@ from lowpoint.survey.outcome import Remedy
 from lowpoint.survey.remedies import wording
 from lowpoint.survey.remedies.failing import Failing, as_strict, index_fails
 from lowpoint.survey.remedies.searching import least
-from lowpoint.survey.remedies.trying import enlarged, tried
+from lowpoint.survey.remedies.trying import BARELY, enlarged, tried
 
 __all__ = ["other_valves"]
 
 HIGHEST_FL = 0.99
 """FL of trims with three stages and more (IEC 60534-2-1, table of typical values, from memory)."""
 LOWEST_LIMIT = 1.001
+CLEARLY = 0.01
+"""Margin above which a remedy does more than just keep the limit."""
 FL_STEP, LIMIT_STEP = 0.001, 0.001
 STAGED = 1.25
 """Limits below this (upstream form) are those of staged trims rather than of one throttling place (common practice)."""
@@ -62,8 +64,9 @@ def other_valves(failing: Failing) -> Iterator[tuple[int, Remedy]]:
     for item in range(failing.count):
         now = float(bare[item])
         text, figures, cautions = _said(failing, item, float(needed[item]), float(limit[item]), now)
-        yield int(numbers[item]), trial.remedy(item, "higher recovery factor", f"{text}: {trial.comes_to(item)}",
-                                               figures, [_VENDOR, *cautions])  # fmt: skip
+        barely = [] if np.isinf(limit[item]) and trial.margin[item] > CLEARLY else [BARELY]
+        yield int(numbers[item]), trial.remedy(item, "higher recovery factor", text, figures,
+                                               [*barely, _VENDOR, *cautions])  # fmt: skip
 
 
 def _said(
@@ -81,9 +84,9 @@ def _said(
     if np.isfinite(limit):
         kept = failing.found.keep[rows]
         of = wording.limit_words(kept[kept != "choked"])
-        words.append(
-            f"{of} (upstream form, bare, at this size and pressure) of at most {limit:.3f} (now {limit_now:.4g})"
-        )
+        of = of if of.endswith("s") else f"{'an' if of.startswith('i') else 'a'} {of}"
+        words.append(f"{of} (upstream form, bare, at this size and pressure) of at most {limit:.3f} "
+                     f"(now {limit_now:.4g})")  # fmt: skip
         figures |= {"limit at most": (limit, "ratio"), "limit now": (limit_now, "ratio")}
         cautions += [_LOW] if limit < STAGED else []
     return f"a valve with {wording.spoken(words)}", figures, cautions

@@ -7,6 +7,7 @@ from typing import Any
 
 import numpy as np
 
+from lowpoint.survey import worded
 from lowpoint.survey.model import Cases, absent
 from lowpoint.survey.outcome import Remedy
 from lowpoint.survey.remedies import wording
@@ -49,13 +50,13 @@ def _remedy(trial: Trial, failing: Failing, item: int) -> Remedy:
     rows = trial.rows_of(item)
     size, rated = (float(x[rows.start]) for x in (trial.cases.valve_size, trial.cases.rated))
     what = "two valves in parallel, each with half the flow"
-    what += "" if np.isnan(size) else f", nominal size {wording.mm(size)} mm"
+    what += "" if np.isnan(size) else f", nominal size {worded.amount(size, 'nominal size', '.5g')}"
     what += "" if np.isnan(rated) else f", rated {wording.kv(rated)}"
     figures = {"valves": (2.0, "ratio")}
     figures |= {} if np.isnan(size) else {"valve size": (size, "size")}
     figures |= {} if np.isnan(rated) else {"rated coefficient": (rated, "coefficient")}
     cautions = [_BOTH] if size == failing.cases.valve_size[rows.start] or np.isnan(size) else [_SIMILAR, _BOTH]
-    return trial.remedy(item, "split", f"{what}: {trial.comes_to(item)}", figures, cautions)
+    return trial.remedy(item, "split", what, figures, cautions)
 
 
 def halved(cases: Cases, steps: int) -> Cases:

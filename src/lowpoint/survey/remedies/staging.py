@@ -60,9 +60,9 @@ def _remedy(trial: Trial, failing: Failing, item: int, count: int) -> Remedy:
     mine = np.flatnonzero(trial.of[rows] == of) + rows.start
     pressures = [float(failing.cases.p1[of]), *(float(p) for p in trial.cases.p2[mine])]
     index = float(trial.found.sigma[worst])
-    shown = " to ".join(wording.bar(p) for p in pressures)
-    text = (f"staged trim of {count} stages, each with an index of {index:.3g} in {failing.name(of)} ({shown} bar a): "
-            f"{trial.comes_to(item)}")  # fmt: skip
+    shown = " to ".join([*(wording.absolute(p, bare=True) for p in pressures[:-1]), wording.absolute(pressures[-1])])
+    brief = f"staged trim of {count} stages"
+    what = f"{brief}, each with an index of {index:.3g} in {failing.name(of)} ({shown})"
     figures = {"stages": (float(count), "ratio"), "index of each stage": (index, "ratio")}
     figures |= {f"pressure after stage {i}" if i else "pressure before the trim": (p, "pressure")
                 for i, p in enumerate(pressures)}  # fmt: skip
@@ -70,7 +70,8 @@ def _remedy(trial: Trial, failing: Failing, item: int, count: int) -> Remedy:
     figures["coefficient of the whole trim"] = (needed, "coefficient")
     cautions = [_VENDOR, _SIZE.format(wording.kv(needed)), _START]
     piped = ~np.isnan(failing.cases.pipe_in[of]) or ~np.isnan(failing.cases.pipe_out[of])
-    return trial.remedy(item, "staged trim", text, figures, [*cautions, _REDUCERS] if piped else cautions)
+    cautions += [_REDUCERS] if piped else []
+    return trial.remedy(item, "staged trim", what, figures, cautions, brief=brief)
 
 
 def _counts(failing: Failing) -> Any:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 from typing import Any
 
@@ -18,10 +18,12 @@ from lowpoint.survey.remedies.failing import Failing, as_strict, index_fails
 from lowpoint.survey.remedies.searching import rounded_up
 from lowpoint.units import KV
 
-__all__ = ["OPEN_TO", "Trial", "advice", "enlarged", "fully_open", "tried"]
+__all__ = ["BARELY", "OPEN_TO", "Trial", "advice", "enlarged", "fully_open", "tried"]
 
 OPEN_TO = 0.9
 """Opening up to which a valve is chosen: the tenth above it is kept in hand (common practice)."""
+BARELY = "the bare least is named, which just keeps the limit: add what the tolerances of the inputs ask for"
+"""Caution of remedies that are sought until the limit is kept, and no further."""
 _TOO_SMALL = "the rated coefficient is too small with it: {} is needed, {} is rated"
 _PASS_LESS = "the plates pass less than the flow wanted with it: they must be made anew"
 _UNANSWERED = "{} of the item's cases {} no verdict and {} not tried: cure what is wrong with the list first"
@@ -93,7 +95,7 @@ class Trial:
         if np.isnan(self.rated[item]):
             more = ""
         else:
-            more = f" with a rated coefficient of at least {wording.kv(float(self.rated[item]))}"
+            more = f" with a rated coefficient of at least {wording.kv(float(self.rated[item]), 'up')}"
         margin = wording.share(float(self.margin[item]))
         return f"{words}{more}, least margin {margin}{wording.openings(found.travel[rows][own])}"
 
@@ -117,9 +119,13 @@ class Trial:
         return [_TOO_SMALL.format(wording.kv(float(needed[worst])), wording.kv(float(needed[worst] / share[worst])))]
 
     def remedy(
-        self, item: int, kind: str, text: str, figures: Mapping[str, tuple[float, str]], cautions: Sequence[str] = (),
+        self, item: int, kind: str, what: str, figures: Mapping[str, tuple[float, str]], cautions: Sequence[str] = (),
+        *, text: str = "", brief: str = "",
     ) -> Remedy:  # fmt: skip
-        """The remedy of one item; it cures where every case passed, and says why it does not where one did not."""
+        """The remedy of one item; it cures where every case passed, and says why it does not where one did not.
+
+        ``what`` must be done, with what comes of it, is its text, if that is not given; and its brief form.
+        """
         rows = self.rows_of(item)
         said, numbers, whole = list(cautions), dict(figures), self.failing.items[item]
         if not np.isnan(self.rated[item]):
@@ -128,8 +134,15 @@ class Trial:
         if whole.unanswered:
             one = whole.unanswered == 1
             said.append(_UNANSWERED.format(whole.unanswered, "has" if one else "have", "was" if one else "were"))
-        return Remedy(kind, text, numbers, bool(self.cures[item]) and not whole.unanswered, float(self.margin[item]),
-                      self._verdicts(item), tuple(said), self.cases.take(np.arange(rows.start, rows.stop)))  # fmt: skip
+        cures = bool(self.cures[item]) and not whole.unanswered
+        return worded(Remedy(kind, text or f"{what}: {self.comes_to(item)}", numbers, cures, float(self.margin[item]),
+                             self._verdicts(item), tuple(said), self.cases.take(np.arange(rows.start, rows.stop)),
+                             brief or what))  # fmt: skip
+
+
+def worded(remedy: Remedy) -> Remedy:
+    """A remedy whose sentences are templates, put into metric words; the templates go with it."""
+    return replace(remedy, templates=(remedy.text, remedy.brief, *remedy.cautions)).in_units("metric")
 
 
 def _worse(one: str | None, other: str | None) -> str | None:
@@ -176,9 +189,9 @@ def enlarged(trial: Trial) -> Trial:
     return Trial(again.failing, again.cases, again.of, again.found, again.added, needed)
 
 
-def advice(failing: Failing, item: int, kind: str, text: str, cautions: Sequence[str] = ()) -> Remedy:
+def advice(failing: Failing, item: int, kind: str, text: str, cautions: Sequence[str] = (), brief: str = "") -> Remedy:
     """Words without a trial: what cannot help, and why, or what practice does."""
     rows = failing.rows_of(item)
     regimes = dict(zip(failing.places[rows].tolist(), failing.found.regime[rows].tolist(), strict=True))
-    return Remedy(kind, text, {}, False, float("nan"), tuple(regimes.get(place) for place in failing.items[item].rows),
-                  tuple(cautions))  # fmt: skip
+    verdicts = tuple(regimes.get(place) for place in failing.items[item].rows)
+    return worded(Remedy(kind, text, {}, False, float("nan"), verdicts, tuple(cautions), brief=brief))

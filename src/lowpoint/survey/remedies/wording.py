@@ -1,34 +1,46 @@
-"""The words of remedies: numbers in metric units, and what comes of a remedy in one clause."""
+"""The words of remedies: numbers as marks (:mod:`lowpoint.survey.worded`), and what comes of a remedy in one clause."""
 
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from typing import Any
 
 import numpy as np
 
-from lowpoint.units import KV, dimension
+from lowpoint.survey.worded import amount
 
-__all__ = ["bar", "kv", "mm", "share", "span", "spoken"]
-
-
-def bar(x: float) -> str:
-    """A pressure or a drop, in bar."""
-    return f"{x / 1e5:.4g}"
+__all__ = ["absolute", "celsius", "kv", "pressure", "share", "size", "sizes", "span", "spoken"]
 
 
-def kv(x: float) -> str:
+def pressure(x: float, rounding: str = "") -> str:
+    """A drop or a difference, ``1.5 bar``."""
+    return amount(x, "pressure", rounding=rounding)
+
+
+def absolute(x: float, form: str = ".4g", rounding: str = "", *, bare: bool = False) -> str:
+    """A pressure, ``1.5 bar a``; ``bare``: without its unit."""
+    return amount(x, "absolute pressure", form, rounding, bare=bare)
+
+
+def kv(x: float, rounding: str = "") -> str:
     """A flow coefficient, ``Kv 63``."""
-    return f"Kv {x / KV:.4g}"
+    return amount(x, "coefficient", rounding=rounding)
 
 
-def mm(x: float) -> str:
-    """A size in mm, without needless digits."""
-    return f"{1e3 * x:.5g}"
+def size(x: float) -> str:
+    """A bore, ``42.5 mm``, without needless digits."""
+    return amount(x, "size", ".5g")
 
 
-def celsius(t: float) -> str:
-    return f"{dimension('temperature').metric.from_si(t):.1f} deg C"
+def sizes(several: Sequence[float]) -> str:
+    """Bores with one unit, ``42 and 51.5 mm``."""
+    return spoken([amount(x, "size", ".5g", bare=True) for x in several[:-1]] + [size(several[-1])])
+
+
+def celsius(t: float, rounding: str = "") -> str:
+    """A temperature, ``80.5 deg C``."""
+    return amount(t, "temperature", ".1f", rounding)
 
 
 def share(x: float) -> str:

@@ -51,10 +51,7 @@ def write_margins(paper: Paper, row: Row) -> None:
     kept = row.found("keep")
     if kept is None or not paper.has(SYMBOLS[kept]):
         return
-    asked = row.word("keep")
-    why = row.where("keep") if asked == kept else "the mildest limit that is given"
-    note = f"'{asked}' is asked for and not given" if asked not in (None, kept) else ""
-    paper.say("keep", "limit that the margin counts to", str(kept), why, note)
+    paper.say("keep", "limit that the margin counts to", str(kept), *_why_kept(paper, row, str(kept)))
     limit = SYMBOLS[kept]
     if paper.number(limit) > 1.0:
         head = "sigma*dp_plate" if paper.has("dp_plate") else "(p1 - pv)"
@@ -63,6 +60,20 @@ def write_margins(paper: Paper, row: Row) -> None:
         if not paper.has("dp_plate"):
             paper.work("p2_allowed", "lowest outlet pressure that keeps it", "p1 - dp_allowed", "bar", "definition",
                        finding="allowed_outlet")  # fmt: skip
+
+
+def _why_kept(paper: Paper, row: Row, kept: str) -> tuple[str, str]:
+    """Where the limit that counts was taken from, and what is to be said of it."""
+    asked = row.word("keep")
+    if asked == kept:
+        return row.where("keep"), ""
+    mildest = next(name for name in (*LIMITS, "choked") if paper.has(SYMBOLS[name]))
+    there = asked is not None and paper.has(SYMBOLS[asked])
+    note = f"'{asked}' is asked for and not given" if asked is not None and not there else ""
+    wanted = asked if there else mildest
+    if wanted == kept:
+        return "the mildest limit that is given", note
+    return "the highest of the limit to keep and those more severe", note or f"the {wanted} limit lies below it"
 
 
 def write_verdict(paper: Paper, row: Row) -> None:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
+from lowpoint.survey.calculating import FULLY_OPEN
 from lowpoint.survey.model import Numbers, TravelTable
 from lowpoint.survey.workings.paper import Paper
 from lowpoint.survey.workings.row import Row, there
@@ -100,12 +101,18 @@ def write_opening(paper: Paper, row: Row) -> None:
         else:
             _by_formula(paper, row)
     rated = "C_rated"
-    if not row.has("rated") and table is not None and table.coefficient is not None:
+    if table is not None and table.coefficient is not None and (not row.has("rated") or _rules(table, paper)):
         paper.take("C_last", "coefficient of the table's last row", float(table.coefficient[-1]) / KV, "Kv",
                    f"table {table.name}")  # fmt: skip
         rated = "C_last"
     paper.work("share", "required over rated coefficient", f"100*C/{rated}", "%", "definition",
                "above 100 % the flow does not pass", "capacity")  # fmt: skip
+
+
+def _rules(table: TravelTable, paper: Paper) -> bool:
+    """Does the table say that the open valve passes less than its rated coefficient?"""
+    assert table.coefficient is not None
+    return bool(table.travel[-1] >= FULLY_OPEN and table.coefficient[-1] / KV < paper.number("C_rated"))
 
 
 def _by_table(paper: Paper, table: TravelTable) -> None:

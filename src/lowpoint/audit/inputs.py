@@ -15,6 +15,7 @@ import numpy as np
 
 from lowpoint.audit import water
 from lowpoint.audit.model import SheetReading, Value
+from lowpoint.audit.words import folded
 from lowpoint.kinds import Floats
 from lowpoint.physics import liquids
 from lowpoint.physics.names import is_salty, resolve
@@ -239,10 +240,20 @@ def _valve(found: Inputs, source: Source) -> None:
     c, h = found.columns, found.halves
     if "valve_size" in found.units:
         _fill(found, source, "pipe_in", c["valve_size"], ASSUMED)
-        _fill(found, source, "pipe_out", c["pipe_in"], ASSUMED, h["pipe_in"])
+        _fill(found, source, "pipe_out", c["pipe_in"], ON_SHEET if _both_pipes(found) else ASSUMED, h["pipe_in"])
+    for name in ("pipe_in", "pipe_out"):
+        size = found.reading.of(name, None)
+        if size is not None and size.nominal:  # it names a pipe; the bore depends on the wall
+            source[name] = [ASSUMED] * found.count
     for name in ("fl", "fd"):
         if np.isnan(c[name]).any() and found.words["style"]:
             _fill(found, source, name, np.full(found.count, typical(found.words, name)), ASSUMED)
+
+
+def _both_pipes(found: Inputs) -> bool:
+    """Does the sheet give one bore of the pipe, and not that of the inlet?"""
+    stated = found.reading.of("pipe_in", None)
+    return stated is not None and not folded(stated.label).tokens & {"inlet", "@d1"}
 
 
 def typical(words: dict[str, str | None], name: str, direction: str | None = None) -> float:

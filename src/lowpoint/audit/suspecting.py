@@ -9,6 +9,7 @@ numbers, explains as much alone. No suspect is ever stated as fact.
 
 from __future__ import annotations
 
+import re
 from collections import defaultdict
 from collections.abc import Sequence
 from dataclasses import dataclass
@@ -26,6 +27,8 @@ __all__ = ["alike", "suspects"]
 
 MOST = 3
 """Suspects named for a claim; of equal ones beyond them the number is told."""
+ROUND = re.compile(r"(?<=pv_at_)\d+(?=_c$)")
+"""The degrees of a key."""
 STILL = 1e-9
 """A number that moves by no more than this share is not moved."""
 ROOMY = 3.0
@@ -248,8 +251,21 @@ def _settled(found: list[_Candidate], differs: Any) -> bool:
 def _named(
     checked: Checked, mistakes: Sequence[Mistake], found: list[_Candidate], claim: int
 ) -> tuple[Suspect, ...]:  # fmt: skip
-    ranked = sorted((c for c in found if claim in c.explained), key=lambda c: c.rank)
+    ranked = _varied(mistakes, sorted((c for c in found if claim in c.explained), key=lambda c: c.rank))
     return tuple(_suspect(checked, mistakes, c, claim, ranked) for c in ranked[:MOST])
+
+
+def _varied(mistakes: Sequence[Mistake], ranked: list[_Candidate]) -> list[_Candidate]:
+    """Equal ones that differ in a degree only (pv at 15, 20 or 25 deg C) behind those of other kinds: few are named."""
+    equal = [c for c in ranked if c is ranked[0] or _tied(c, ranked[0])]
+    kinds: set[tuple[str, ...]] = set()
+    first: list[_Candidate] = []
+    again: list[_Candidate] = []
+    for one in equal:
+        kind = tuple(ROUND.sub("", mistakes[k].key) for k in one.members)
+        (again if kind in kinds else first).append(one)
+        kinds.add(kind)
+    return [*first, *again, *(c for c in ranked if not any(c is one for one in equal))]
 
 
 def _suspect(

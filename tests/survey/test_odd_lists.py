@@ -10,7 +10,7 @@ import pytest
 
 from lowpoint.survey import survey_list
 from lowpoint.survey.as_json import as_json
-from survey_lists import kestrel_rows, write_csv, write_xlsx
+from survey_lists import GOOD, HEADINGS, kestrel_rows, write_csv, write_xlsx
 
 MORE = ("Kind", "Outlet into", "Rise to the place [m]", "Pressure there [bar g]", "Bore [mm]", "Bores [mm]", "Holes",
         "Viscosity [cSt]", "Trim", "Form", "Scale method", "Table", "xFz", "Pipe wall [mm]")  # fmt: skip
@@ -39,3 +39,8 @@ def test_anything_anywhere(seed: int, tmp_path: Path) -> None:
         assert case["regime"] != "clear" or case["limits"]["incipient"] is not None
         assert not (case["fails"] and case["errors"])
     assert {i for item in survey.items for i in item.rows} == set(range(25))
+
+
+def test_a_sheet_named_example_is_read_where_it_is_the_only_list(tmp_path: Path) -> None:
+    survey = survey_list(write_xlsx(tmp_path / "list.xlsx", HEADINGS, [GOOD], "Example"))
+    assert survey.findings.regime.tolist() == ["clear"]

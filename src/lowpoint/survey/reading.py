@@ -26,7 +26,7 @@ __all__ = ["FORMATS", "open_list", "read_list", "read_sheets"]
 
 FORMATS = (".xlsx", ".xlsm", ".xltx", ".xltm", ".csv", ".txt", ".tsv", ".ods")
 EXAMPLE = "example"
-"""A sheet of this name is left alone: the blank form has one."""
+"""A sheet of this name is left alone beside another list: the blank form has one."""
 NAMED = 6
 """Sheets without a list that are named; the rest is counted."""
 ABSENT = "Name the columns as 'lowpoint starter list' does; that command writes a blank form."
@@ -96,12 +96,11 @@ Found = list[tuple[Grid, Place]]
 
 def _sorted(sheets: Sheets) -> tuple[Found, Found, list[Grid]]:
     """Sheets with a list, sheets with vendors' tables, and empty ones."""
-    lists: Found = []
-    tables: Found = []
-    for grid in sheets.grids:
-        place = None if grid.sheet.casefold() == EXAMPLE else find_headings(grid)
-        if place is not None:
-            (lists if place.catalogue is FIELDS else tables).append((grid, place))
+    found = [(grid, place) for grid in sheets.grids if (place := find_headings(grid)) is not None]
+    lists = [(grid, place) for grid, place in found if place.catalogue is FIELDS]
+    named = [(grid, place) for grid, place in lists if grid.sheet.casefold() != EXAMPLE]
+    tables = [(grid, place) for grid, place in found if place.catalogue is not FIELDS]
+    lists = named or lists  # the example is read where it is the only list
     return lists, tables, [grid for grid in sheets.grids if grid.empty]
 
 

@@ -10,6 +10,7 @@ import pytest
 
 from audit_readings import kinds, one, reading
 from lowpoint.audit.numbers import decimal_sign, numbers_of, shown_number
+from lowpoint.audit.reading import read_sheet
 from lowpoint.audit.unitsigns import unit_sign
 
 
@@ -184,3 +185,32 @@ def test_spellings_of_one_unit(text: str) -> None:
 @pytest.mark.parametrize("text", ["P1", "p2", "T1", "D1", "valve", "", "dBm"])
 def test_what_is_no_unit(text: str) -> None:
     assert unit_sign(text) is None
+
+
+@pytest.mark.parametrize(("raw", "unit", "findings"), [(55, "%", 0), (0.55, "", 1)])
+def test_an_opening_without_a_unit(tmp_path: Path, raw: float, unit: str, findings: int) -> None:
+    """Above 1 it can only be per cent; below, a share or per cent, which is asked."""
+    rows = [["Tag", "21-FV-1"], ["P1 bar(a)", 8], ["P2 bar(a)", 6], ["Valve opening", raw]]
+    found = reading(tmp_path, rows)
+    value = one(found, "travel")
+    assert value.unit == unit
+    assert math.isfinite(value.si) == bool(unit)
+    assert len([f for f in found.findings if f.kind == "unit"]) == findings
+
+
+def test_numbers_that_may_be_read_two_ways_are_told(tmp_path: Path) -> None:
+    """Too few others make it a data sheet, and what is the matter is said all the same."""
+    path = tmp_path / "sheet.csv"
+    path.write_text("Tag;1-FV-1\nP1 kPa(a);1,200\nP2 kPa(a);1,050\nT °C;120\n", encoding="utf-8")
+    (sheet,) = read_sheet(path).sheets
+    assert [finding.cell for finding in sheet.findings] == ["row 2, column 2", "row 3, column 2"]
+
+
+@pytest.mark.parametrize("unit", ["", " [Cv]"])
+def test_a_row_of_labels_is_no_value_of_its_first(tmp_path: Path, unit: str) -> None:
+    """The characteristic stands below its label; beside it stands another label, which is not clear alone."""
+    rows = [["Characteristic", f"Flow coefficient at full travel Cv100{unit}", "Pipe inside diameter [mm]"],
+            ["equal percentage", 92.8, 80.0]]  # fmt: skip
+    found = reading(tmp_path, [["Required Cv", 31.0], *rows])
+    assert one(found, "characteristic").word == "equal percentage"
+    assert one(found, "rated").number == 92.8

@@ -101,3 +101,36 @@ def test_coefficients_of_named_cases(tmp_path: Path) -> None:
     (sheet,) = read_sheet(text(tmp_path, lines.replace("Normal Cv;60\n", ""))).sheets
     assert [(v.quantity, v.number) for v in sheet.values if v.unit == "Cv"] == [("rated", 110)]
     assert "'Min Cv' may be" in sheet.findings[0].text
+
+
+WATER = """Tag;1-FV-1
+Fluid;Water
+Valve size;mm;80
+{pipe}
+Flow;m3/h;40
+P1;bar(a);8.00
+P2;bar(a);6.50
+Density;kg/m3;943.4
+Vapour pressure;bar(a);1.987
+FL;;0.9
+Required Kv;;31.75
+"""
+
+
+@pytest.mark.parametrize(
+    ("pipe", "basis"),
+    [
+        ("Pipe inside diameter;mm;102.3", "every input stands on the sheet"),
+        ("Inlet pipe inside diameter;mm;102.3", "pipe_out assumed"),
+        ("Line size;;DN 100", "pipe_in assumed; pipe_out assumed"),
+    ],
+)  # fmt: skip
+def test_what_is_known_of_the_pipes(tmp_path: Path, pipe: str, basis: str) -> None:
+    """One bore of "the pipe" is that of both sides; one of the inlet is not; a nominal size is no bore.
+
+    Kv by hand (IEC 60534-2-1): 40 (0.9443/1.5)^0.5 = 31.74 over FP 0.998.
+    """
+    found = audited(text(tmp_path, WATER.format(pipe=pipe))).claims[0]
+    (claim,) = [c for c in found if c.quantity == "coefficient"]
+    assert claim.basis.endswith(basis)
+    assert claim.computed == pytest.approx(31.8, abs=0.03)

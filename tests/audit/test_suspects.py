@@ -211,3 +211,23 @@ def test_an_index_without_a_stated_form_is_no_mistake_of_form() -> None:
     wrong_ones = [judged for judged in audit_sheet(reading) if judged.verdict == "differs"]
     assert {judged.quantity for judged in wrong_ones} >= {"sigma", "coefficient"}
     assert {judged.suspects[0].mistakes for judged in wrong_ones} == {("gauge_as_absolute_p2",)}
+
+
+def test_a_pair_that_explains_no_more_than_one_of_it_is_not_offered() -> None:
+    """p1 and p2 read as gauge, and each of them by itself, are one and the same."""
+    for name in ("gauge_as_absolute_both", "no_fittings", "pv_left_out"):
+        found = [c for c in audit_sheet(with_mistakes(name)) if c.suspects]
+        assert found
+        for judged in found:
+            alone = [s for s in judged.suspects if len(s.mistakes) == 1]
+            for pair in (s for s in judged.suspects if len(s.mistakes) == 2):
+                assert not any(set(pair.explains) <= set(one.explains) for one in alone), (name, pair)
+
+
+def test_few_are_named_and_of_different_kinds() -> None:
+    """Hot water: vapour pressure at 15, 20 or 25 deg C and none at all are next to the same."""
+    judged = claim(with_mistakes("pv_left_out"), "dp_choked", "maximum")
+    assert len(judged.suspects) <= 3
+    assert ("pv_left_out",) in [s.mistakes for s in judged.suspects]
+    assert sum(s.mistakes[0].startswith("pv_at_") for s in judged.suspects[:2]) <= 1
+    assert all(len(s.numbers) == len(s.explains) for s in judged.suspects)

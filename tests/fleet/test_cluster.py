@@ -12,6 +12,7 @@ from pathlib import Path
 
 import pytest
 
+from audit.outputs import small, small_csv
 from fleet.helping import TESTS, Command, Running, all_done, book, index, leftovers, text_tasks, wait_for
 from fleet.kinds import KILL
 from lowpoint.errors import LowpointError
@@ -21,6 +22,7 @@ from lowpoint.fleet.cluster import Cluster
 from lowpoint.fleet.pools import Finished
 from lowpoint.fleet.remote import Errand, run_errand
 from lowpoint.fleet.tasks import Task
+from survey_lists import GOOD, HEADINGS, write_csv, write_xlsx
 
 Streams = pytest.CaptureFixture[str]
 
@@ -97,6 +99,28 @@ def test_the_command_gives_the_same_as_here_in_the_same_order(
     assert len(trail) == 7
     assert len({line["worker"] for line in trail if line["result"] == "done"}) == 2
     assert list(trail[0]["written"]) == [str(Path("there") / Path(trail[0]["book"]).name)]
+
+
+def test_lists_and_sheets_give_the_same_as_here(
+    address: str, tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capsys: Streams
+) -> None:
+    monkeypatch.chdir(tmp_path)
+    for folder in ("lists", "offers"):
+        Path(folder).mkdir()
+    write_csv(Path("lists/a.csv"), HEADINGS, [GOOD])
+    write_xlsx(Path("lists/b.xlsx"), HEADINGS, [GOOD])
+    small(Path("offers"), "a.xlsx", sigma=3.25)
+    small_csv(Path("offers"), "b.csv")
+    assert cli.main(["audit", "offers/a.xlsx", "--write-layout", "v.toml"]) == 1
+    for words in (["survey", "lists", "--draws", "5"], ["audit", "offers", "--layout", "v.toml"]):
+        said = []
+        for where in ([], ["--dask", address]):
+            capsys.readouterr()
+            assert cli.main([*words, "-o", "out", "--overwrite", "--json", *where]) in (0, 1)
+            files = {path.name: path.read_bytes() for path in sorted(Path("out").iterdir())}
+            said.append((json.loads(capsys.readouterr().out), files))
+        assert len(said[0][0]) == 2
+        assert said[0] == said[1]
 
 
 def test_in_place_and_since_last(address: str, tmp_path: Path, capsys: Streams) -> None:

@@ -253,7 +253,7 @@ def _valve(found: Inputs, source: Source) -> None:
 def _both_pipes(found: Inputs) -> bool:
     """Does the sheet give one bore of the pipe, and not that of the inlet?"""
     stated = found.reading.of("pipe_in", None)
-    return stated is not None and not folded(stated.label).tokens & {"inlet", "@d1"}
+    return stated is not None and not stated.nominal and not folded(stated.label).tokens & {"inlet", "@d1"}
 
 
 def typical(words: dict[str, str | None], name: str, direction: str | None = None) -> float:

@@ -35,6 +35,7 @@ STANDARD = 101325.0
 """Pa; taken where neither sheet nor caller tells the site's pressure."""
 LEAST = 3
 """Quantities in number that make a sheet a data sheet."""
+TWO_WAYS = "may have a decimal comma or one between thousands"
 MOST_UNREAD = 12
 """Unread numbers that are named one by one."""
 Note = tuple[str, str, str, str]
@@ -113,7 +114,8 @@ def read_sheet(
 def _is_data(reading: SheetReading) -> bool:
     """Does a sheet give quantities? A cover names a tag and a service at most."""
     numbers = {v.quantity for v in reading.values if v.word is None}
-    return len(numbers) >= LEAST or any(
+    two_ways = sum(TWO_WAYS in finding.text for finding in reading.findings)
+    return len(numbers) + two_ways >= LEAST or any(
         v.unit_from == "layout" or (v.confidence == 1.0 and not v.label_cell) for v in reading.values
     )
 
@@ -236,7 +238,7 @@ def _findings(found: Found, valued: Valued, layout: Layout | None) -> list[Findi
                                 f"Ask the vendor to {remedy}, or name the cell in a layout."))  # fmt: skip
     for cell in found.ambiguous_numbers:
         findings.append(Finding("ambiguous", cell.address,
-                                f"'{cell.text}' may have a decimal comma or one between thousands, and was not read",
+                                f"'{cell.text}' {TWO_WAYS}, and was not read",
                                 "Ask the vendor; a layout can say decimal = ',' or '.'."))  # fmt: skip
     if found.nameless:
         first, *others = found.nameless

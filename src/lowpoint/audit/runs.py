@@ -5,7 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from lowpoint.audit.cells import Cell
-from lowpoint.audit.matching import Label
+from lowpoint.audit.matching import UNSURE, Label
 from lowpoint.audit.numbers import Number
 from lowpoint.audit.roles import HEADS, Role, Roles, ends_run, is_formula, is_sentence, is_symbol, takes
 from lowpoint.audit.statements import is_answer, keeps_to, statement_of
@@ -140,9 +140,11 @@ def texts_along(roles: Roles, role: Role, row: int, several: bool) -> list[Taken
             continue
         if not found and _is_own_symbol(other, role.label) and not other.numbers and other.label.key:
             continue
-        if other.label.key and other.label.score >= 0.9 and not _says_it(cell.text, role.label):
+        # A flow coefficient is a label even where it is not clear which; a pressure may be part of a service.
+        sure = 0.8 if other.label.key == UNSURE and "coefficient" in other.label.words else 0.9
+        if other.label.key and other.label.score >= sure and not _says_it(cell.text, role.label):
             break
-        if other.label.known and other.label.unit is not None:
+        if (other.label.known or other.label.key == UNSURE) and other.label.unit is not None:
             break  # a label with a unit asks for a number
         if other.inline is not None or is_sentence(cell.text):
             break

@@ -126,7 +126,7 @@ def _head(document: Document, sheet: SheetReading, width: int) -> Iterator[str]:
     doubtful = sum(value.confidence < 0.8 for value in sheet.values)
     unsure = f", {doubtful} of them with a confidence below 0.8 (--show tells which)" if doubtful else ""
     remarks = "1 remark" if len(sheet.notes) == 1 else f"{len(sheet.notes)} remarks"
-    notes = f" {remarks} on what was not read: --show." if sheet.notes else ""
+    notes = f" {remarks} on how it was read: --show." if sheet.notes else ""
     yield from _wrapped(f"{len(sheet.values)} values were read{unsure}.{told}{notes}", "", width)
 
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 from lowpoint.audit.found import Claimed, Found
 from lowpoint.audit.model import Finding, Value
@@ -46,11 +46,15 @@ def values_of(found: Found) -> Valued:
             valued.findings.append(problem)
         key = becomes(claimed.label.key, sign.meaning) if sign else claimed.label.key
         sign, gauge = _reference(key, claimed, sign, found)
-        if sign is None and BY_KEY[key].kind not in PLAIN_KINDS:
+        note = ""
+        if sign is None and BY_KEY[key].kind == "share" and number.value > 1.0:
+            sign, source, note = unit_sign("%"), "quantity", "no unit is given; above 1 it is in per cent"
+        if sign is None and (BY_KEY[key].kind not in PLAIN_KINDS or key == "travel"):
             without.setdefault(claimed.label.text, []).append(claimed)
         if key in PRESSURES and sign is not None and gauge is None:
             unsaid.append((claimed, sign.label))
-        valued.values.append((_number(claimed, key, sign, source, gauge), sign))
+        value = _number(claimed, key, sign, source, gauge)
+        valued.values.append((replace(value, note=value.note or note), sign))
     for label, many in without.items():
         cells = ", ".join(dict.fromkeys(c.taken.cell.address for c in many[:4]))
         valued.findings.append(Finding("unit", cells, f"'{_short(label)}' has a value and no unit that is understood",

@@ -8,7 +8,7 @@ from pathlib import Path
 
 __all__ = ["fill", "run"]
 
-KINDS = "a list (.xlsx, .csv, .ods), a survey's workbook (.xlsx), or a survey's --json (.json)"
+KINDS = "a list (.xlsx .xlsm .csv .ods), a survey's workbook (.xlsx), or a survey's --json (.json)"
 
 
 def fill(parser: argparse.ArgumentParser) -> None:

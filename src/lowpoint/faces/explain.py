@@ -17,7 +17,7 @@ ENDINGS = (".txt", ".md")
 
 def fill(parser: argparse.ArgumentParser) -> None:
     add = parser.add_argument
-    add("list", type=Path, metavar="LIST", help="the list: .xlsx, .xlsm, .csv or .ods; it is only read")
+    add("list", type=Path, metavar="LIST", help="a list (.xlsx .xlsm .csv .ods); it is only read")
     add("tag", metavar="TAG", help="the item's tag, as in the list")
     add("--case", metavar="CASE", help="one case of it; without it all of them, in the order of the list")
     add("--elevation", type=float, metavar="METRES", help="height of the site above sea level, for gauge pressures, "

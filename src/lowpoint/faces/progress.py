@@ -35,7 +35,7 @@ class Bar:
         self.close()
         self.what = what
         self.bar = tqdm(desc=f"lowpoint: {what}", total=total or None, file=self.stream, leave=False, delay=SOON,
-                        dynamic_ncols=True, unit="")  # fmt: skip
+                        dynamic_ncols=True, miniters=1, unit="")  # fmt: skip
 
     def aside(self) -> None:
         """Make room for a line of something else; the next step shows the bar again."""

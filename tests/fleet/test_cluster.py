@@ -11,6 +11,7 @@ from contextlib import ExitStack, closing
 from pathlib import Path
 
 import pytest
+from distributed import Client
 
 from audit.outputs import small, small_csv
 from fleet.helping import TESTS, Command, Running, all_done, book, index, leftovers, text_tasks, wait_for
@@ -47,6 +48,8 @@ def address(tmp_path_factory: pytest.TempPathFactory) -> Iterator[str]:
         workers = ("--scheduler-file", str(known), "--nworkers", "2", "--nthreads", "1", "--memory-limit", "0")
         guard = stack.enter_context(start("worker", *workers))
         found = wait_for(lambda: _address(known), "its address")
+        with Client(found, set_as_default=False) as client:
+            client.wait_for_workers(2, timeout=30)
         yield found
         guard.process.send_signal(signal.SIGINT)  # so that the nannies take their workers with them
         guard.end()

@@ -50,6 +50,7 @@ def test_books_are_recomputed_as_they_land(command: Command, inbox: Path) -> Non
     assert index(done / "late.xlsx") == pytest.approx(11.98 / 7, rel=1e-14)
     book(inbox / "late.xlsx", p1=9.0)  # saved once more
     wait_for(lambda: index(done / "late.xlsx") == pytest.approx(8.98 / 4, rel=1e-14), "the newer one")
+    wait_for(lambda: running.out.count("Written") == 3, "what is told of it")
     assert stop(running) == 0
     assert "3 books: 3 without findings, 3 written, 0 failed." in running.out
     assert f"no longer watching {inbox}" in running.err
@@ -68,6 +69,7 @@ def test_a_book_that_is_written_in_pieces_is_done_once_and_whole(command: Comman
             sink.flush()
             time.sleep(0.5)
     wait_for((inbox.parent / "done" / "slow.xlsx").exists, "the book")
+    wait_for(lambda: "Written" in running.out, "what is told of it")
     assert stop(running) == 0
     assert "1 book: 1 without findings, 1 written, 0 failed." in running.out
 
@@ -96,7 +98,7 @@ def test_a_signal_amid_a_book_leaves_it_as_it_was(command: Command, inbox: Path)
     assert source.read_bytes() == before or index(source) == 1.996
     if code != 0:
         assert code == 130
-        assert "1 book not done and left as they were" in running.err
+        assert "1 book not done; no file is half written" in running.err
     assert leftovers(inbox) == []
 
 

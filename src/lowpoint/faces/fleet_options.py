@@ -106,7 +106,7 @@ def run_fleet(tasks: Sequence[Task], options: argparse.Namespace, kind: Kind = B
                 bar.close()
                 _end(summary, options.json)
                 left = counted(len(tasks) - summary.books, kind.noun)
-                print(f"lowpoint: interrupted; {left} not done and left as they were", file=sys.stderr)
+                print(f"lowpoint: interrupted; {left} not done; no file is half written", file=sys.stderr)
                 return INTERRUPTED
         bar.close()
     _end(summary, options.json)

@@ -58,7 +58,7 @@ def run_watch(
             left = len(watch.open)
             if not options.json:
                 print("\n".join(summary.lines()))
-            undone = f"; {counted(left, kind.noun)} not done and left as they were" if left else ""
+            undone = f"; {counted(left, kind.noun)} not done; no file is half written" if left else ""
             print(f"lowpoint: no longer watching {folder}{undone}", file=sys.stderr)
             return INTERRUPTED if left else max(summary.exit_code, int(records.broken))
 

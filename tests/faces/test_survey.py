@@ -27,7 +27,8 @@ def test_a_list_that_is_kept(capsys: Streams) -> None:
     assert "21-FCV-110  clear (tested)" in out
 
 
-def test_failing_and_unanswered_items_are_findings(capsys: Streams) -> None:
+def test_failing_and_unanswered_items_are_findings(capsys: Streams, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setenv("COLUMNS", "200")  # lines are wrapped to the width
     rows = [GOOD, ("21-FCV-111", *GOOD[1:6], 0.3, *GOOD[7:]), ("21-FCV-112", *GOOD[1:8], None, *GOOD[9:])]
     write_csv(Path("list.csv"), HEADINGS, rows)
     assert cli.main(["survey", "list.csv"]) == 1

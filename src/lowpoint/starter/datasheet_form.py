@@ -63,9 +63,9 @@ def _form(sheet: Any, us: bool, *, filled: bool) -> None:
     for group, heading in GROUPS.items():
         lines = [line for line in LINES if line.group == group]
         _band(sheet, row, heading, cases=lines[0].by_case)
-        for row, line in enumerate(lines, row + 1):  # noqa: B020
-            _line(sheet, row, line, us, filled=filled)
-        row += 2
+        for below, line in enumerate(lines, 1):
+            _line(sheet, row + below, line, us, filled=filled)
+        row += len(lines) + 2
     sheet.freeze_panes = "A4"
     style.print_setup(sheet)
     sheet.page_setup.orientation, sheet.page_setup.fitToHeight = "portrait", 1
